@@ -81,3 +81,25 @@ class MachineFault(ChartgenError):
         super().__init__(problem)
         self.problem = problem
         self.remedy = remedy
+
+
+class WordMissing(ChartgenError, KeyError):
+    """A key that no word list has, or a placeholder that was not filled: a fault of the program, not of an edition."""
+
+    exit_code = 3
+
+    def __init__(self, tag: str, key: str, detail: str = "") -> None:
+        super().__init__(f"{tag}: {key}")
+        self.tag = tag
+        self.key = key
+        self.detail = detail
+
+    def __str__(self) -> str:
+        reason = self.detail or "no word list has this key"
+        return f"word {self.key!r} ({self.tag}): {reason}"
+
+
+class Unprintable(ChartgenError, ValueError):
+    """A number that must not be printed as it is: not finite, or not rounded yet where only a rounded one may stand."""
+
+    exit_code = 3
