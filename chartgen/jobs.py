@@ -144,15 +144,12 @@ def crew(workers: int) -> Iterator[Crew]:
         try:
             yield team
         except BaseException:
-            if team._pool is not None:
-                team._pool.shutdown(wait=False, cancel_futures=True)
-                for worker in set(multiprocessing.active_children()) - before:
-                    worker.kill()
-                    worker.join()
+            for worker in set(multiprocessing.active_children()) - before:
+                worker.kill()
             raise
         finally:
             if team._pool is not None:
-                team._pool.shutdown()
+                team._pool.shutdown(cancel_futures=True)
 
 
 @contextlib.contextmanager
