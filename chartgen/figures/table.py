@@ -1,0 +1,166 @@
+"""Edition -> one tidy table. A figure is computed once, rounded once, here; everything above reads these rows."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from typing import Final
+
+import numpy as np
+import numpy.typing as npt
+import pandas as pd
+
+from chartgen.edition.catalogue import GAP_RULES
+from chartgen.edition.model import Edition, Source
+from chartgen.figures.gaps import gaps
+from chartgen.figures.notices import notices
+from chartgen.figures.record import Figures, Notice
+from chartgen.figures.rounding import print_parts
+from chartgen.figures.stops import stops
+from chartgen.figures.units import from_metres
+
+__all__ = ["COLUMNS", "Figures", "Notice", "figures", "select"]
+
+Floats = npt.NDArray[np.float64]
+
+KEY: Final = ["driver", "vehicle", "surface", "grade", "speed"]
+"""What makes two rows the same row, whichever case asks for it."""
+
+PRINTED: Final = ("reaction", "lag", "braking", "stopping")
+
+COLUMNS: Final = (
+    "row", "case", "driver", "vehicle", "surface", "grade", "load", "state", "method", "speed", "speed_mps",
+    "reaction_time_s", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
+    "friction_mu", "friction_f60", "friction_sp_kmh", "friction_max_mu", "friction", "full_deceleration_mps2",
+    "reaction_distance_m", "lag_distance_m", "braking_distance_m", "stopping_distance_m", "stopping_time_s",
+    "stops", "reason",
+    "printed_speed", "printed_reaction", "printed_lag", "printed_braking", "printed_stopping",
+    "printed_also_reaction", "printed_also_lag", "printed_also_braking", "printed_also_stopping",
+    "gap_s", "printed_gap_s", "printed_gap_distance", "printed_also_gap_distance",
+)  # fmt: skip
+"""Columns of the table, in order.
+
+`case` counts from 1; the case that first asks for a row keeps it. `grade` is a fraction, uphill +. `load` and `state`
+are "" where the edition does not say. `friction` is the coefficient at the row's speed, nan where none is used.
+`full_deceleration_mps2` is the deceleration as full braking begins, slope included. Distances in m, unrounded, nan
+where the vehicle does not stop; `printed_…` in the printed unit after rounding, `printed_also_…` in the second unit,
+from the unrounded value. `gap_…` nan without a following-gap rule.
+"""
+
+
+def figures(edition: Edition) -> Figures:
+    """All figures of an edition: computed by its method, rounded by its rule, with their notices.
+
+    A row that does not stop keeps its reaction and lag; its braking, total and time are nan and `reason` says why.
+    Where the edition leaves a choice open the longer distance is printed.
+    """
+    table = _assumptions(edition)
+    table = table.assign(**stops(table, edition.method))
+    table = table.assign(**_printed(table, edition), **gaps(table, edition))
+    table = table[list(COLUMNS)]
+    return Figures(
+        edition_id=edition.id,
+        speed_unit=edition.speed_unit,
+        distance_unit=edition.distance_unit,
+        also_unit=edition.also_unit,
+        method=edition.method,
+        rounding=edition.rounding,
+        table=table,
+        notices=notices(table, edition),
+        sources=_sources(edition),
+        gap_rule=edition.cards.gap if edition.cards else None,
+    )
+
+
+def select(
+    figures: Figures,
+    *,
+    driver: str | Iterable[str] | None = None,
+    vehicle: str | Iterable[str] | None = None,
+    surface: str | Iterable[str] | None = None,
+    grade: float | None = None,
+) -> pd.DataFrame:
+    """The rows with these ids (one, several, or None for any) and this grade, in speed order; may be empty."""
+    table = figures.table
+    keep = np.ones(len(table), dtype=bool)
+    for column, wanted in (("driver", driver), ("vehicle", vehicle), ("surface", surface)):
+        if wanted is not None:
+            ids = [wanted] if isinstance(wanted, str) else list(wanted)
+            keep &= table[column].isin(ids).to_numpy()
+    if grade is not None:
+        keep &= np.isclose(table["grade"].to_numpy(), grade, rtol=0.0, atol=1e-12)
+    return table[keep].sort_values("speed_mps", kind="stable")
+
+
+def _assumptions(edition: Edition) -> pd.DataFrame:
+    """One row a combination, each once, in the order case, driver, vehicle, surface, grade, speed, with its inputs."""
+    rows = pd.concat(
+        [
+            pd.MultiIndex.from_product(
+                [[number], case.drivers, case.vehicles, case.surfaces, case.grades, range(len(edition.speeds))],
+                names=["case", "driver", "vehicle", "surface", "grade", "speed"],
+            ).to_frame(index=False)
+            for number, case in enumerate(edition.cases, start=1)
+        ]
+    )
+    rows = rows.drop_duplicates(KEY).reset_index(drop=True)
+    which = rows["speed"].to_numpy()
+    rising = np.argsort(np.array(edition.speeds_mps), kind="stable")
+    speed = np.array(edition.speeds)[rising][which]
+    ids = {name: rows[name].to_numpy() for name in ("driver", "vehicle", "surface")}
+    drivers = {d.id: d for d in edition.drivers}
+    vehicles = {v.id: v for v in edition.vehicles}
+    surfaces = {s.id: s for s in edition.surfaces}
+    friction = [surfaces[i].friction for i in ids["surface"]]
+    vehicle = [vehicles[i] for i in ids["vehicle"]]
+    return rows.assign(
+        row=np.arange(len(rows)),
+        # Adding zero turns a grade of "-0 %" into plain 0.
+        grade=rows["grade"].to_numpy(dtype=np.float64) + 0.0,
+        load=[v.load or "" for v in vehicle],
+        state=[surfaces[i].state or "" for i in ids["surface"]],
+        method=edition.method,
+        speed=speed,
+        printed_speed=speed,
+        speed_mps=np.array(edition.speeds_mps)[rising][which],
+        reaction_time_s=np.array([drivers[i].reaction.time_s for i in ids["driver"]]),
+        brake_lag_s=np.array([v.brake_lag_s for v in vehicle]),
+        build_up_s=np.array([v.build_up_s for v in vehicle]),
+        brake_efficiency=np.array([v.brake_efficiency for v in vehicle]),
+        max_deceleration_mps2=_or([v.max_deceleration_mps2 for v in vehicle], np.inf),
+        friction_mu=_or([f.mu for f in friction], np.nan),
+        friction_f60=_or([f.f60 for f in friction], np.nan),
+        friction_sp_kmh=_or([f.sp_kmh for f in friction], np.nan),
+        friction_max_mu=_or([f.max_mu for f in friction], np.inf),
+        length_m=_or([v.length_m for v in vehicle], np.nan),
+    )
+
+
+def _or(values: list[float | None], missing: float) -> Floats:
+    """Values as an array, `missing` where there is none."""
+    return np.array([missing if v is None else v for v in values], dtype=np.float64)
+
+
+def _printed(table: pd.DataFrame, edition: Edition) -> dict[str, Floats]:
+    """The printed columns, from the unrounded distances, in the edition's unit and in its second one."""
+    out: dict[str, Floats] = {}
+    for prefix, unit, step in (
+        ("printed", edition.distance_unit, edition.rounding.step),
+        ("printed_also", edition.also_unit, edition.rounding.also_step),
+    ):
+        if unit is None:
+            out |= {f"{prefix}_{part}": np.full(len(table), np.nan) for part in PRINTED}
+            continue
+        exact = [from_metres(table[f"{part}_distance_m"].to_numpy(), unit) for part in PRINTED[:3]]
+        printed = print_parts(*exact, rounding=edition.rounding, step=step)
+        out |= {f"{prefix}_{part}": getattr(printed, part) for part in PRINTED}
+    return out
+
+
+def _sources(edition: Edition) -> dict[str, Source]:
+    """Where the edition's values come from, by the keys that rows name in their trace."""
+    out = {f"driver/{d.id}": d.source for d in edition.drivers}
+    out |= {f"surface/{s.id}": s.source for s in edition.surfaces}
+    out |= {f"vehicle/{v.id}": v.source for v in edition.vehicles if v.source}
+    if edition.cards:
+        out[edition.cards.gap] = GAP_RULES[edition.cards.gap].source
+    return out
