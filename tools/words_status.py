@@ -12,7 +12,7 @@ import argparse
 import sys
 
 from chartgen.errors import MachineFault
-from chartgen.language.catalogue import MASTER, WordList, available, placeholders, read_words
+from chartgen.language.catalogue import MASTER, WordList, available, drawn_length, placeholders, read_words
 
 
 def report(words: WordList, master: WordList) -> tuple[list[str], list[str]]:
@@ -26,8 +26,8 @@ def report(words: WordList, master: WordList) -> tuple[list[str], list[str]]:
             undone.append(f"outdated  {key}: {mine.english!r} is now {entry.english!r}")
         elif placeholders(mine.text) != placeholders(entry.english):
             wrong.append(f"braces    {key}: {mine.text!r} for {entry.english!r}")
-        elif entry.max_chars and len(mine.text) > entry.max_chars:
-            wrong.append(f"too long  {key}: {len(mine.text)} > {entry.max_chars} characters: {mine.text}")
+        elif entry.max_chars and drawn_length(mine.text) > entry.max_chars:
+            wrong.append(f"too long  {key}: {drawn_length(mine.text)} > {entry.max_chars} characters: {mine.text}")
     undone += [f"obsolete  {key}" for key in words.entries if key not in master.entries]
     return undone, wrong
 

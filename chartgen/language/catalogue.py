@@ -57,6 +57,11 @@ def placeholders(text: str) -> frozenset[str]:
     return frozenset(_PLACEHOLDER.findall(text))
 
 
+def drawn_length(text: str) -> int:
+    """Characters of a word as it will stand in print: a placeholder counts as four ("23 m"), whatever its name."""
+    return len(_PLACEHOLDER.sub("23 m", text))
+
+
 def words_folder() -> Path:
     return templates() / "words"
 
