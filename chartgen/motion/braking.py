@@ -7,6 +7,9 @@ takes over, the deceleration is constant and the closed form serves again.
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+from functools import cache
+
 import numpy as np
 from numpy.polynomial.legendre import leggauss
 
@@ -20,8 +23,17 @@ EASY_DECELERATION_MPS2 = 0.5
 used."""
 
 
-def full_braking(speed_mps: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
-    """Distance (m) and time (s) of full braking from `speed_mps` to rest.
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Braking:
+    """Full braking to rest: distance, time, and the deceleration at its start, slope included."""
+
+    distance_m: FloatArray
+    time_s: FloatArray
+    deceleration_mps2: FloatArray
+
+
+def full_braking(speed_mps: FloatArray, brake: Brake) -> Braking:
+    """Full braking from `speed_mps` to rest.
 
     Formula: ``∫ v dv / a(v)`` and ``∫ dv / a(v)`` from 0 to the speed, with ``a(v) = b(v) + g·sinθ`` (see `Brake`);
     for a constant deceleration ``v²/(2a)`` and ``v/a``.
@@ -31,7 +43,8 @@ def full_braking(speed_mps: FloatArray, brake: Brake) -> tuple[FloatArray, Float
         brake: the brake's part and the slope, shapes (n,) or (1,).
 
     Returns:
-        Distance and time. Only meaningful where a(v) is positive over all speeds passed; the caller blanks the others.
+        Distance, time and first deceleration. Distance and time mean something only where a(v) is positive over all
+        speeds passed; the caller blanks the others.
 
     Raises:
         Nothing.
@@ -41,28 +54,28 @@ def full_braking(speed_mps: FloatArray, brake: Brake) -> tuple[FloatArray, Float
     >>> import numpy as np
     >>> one = np.ones(1)
     >>> brake = Brake(at_zero=5 * one, fall_per_mps=0 * one, cap=np.inf * one, slope=0 * one)
-    >>> distance, time = full_braking(np.array([20.0]), brake)
-    >>> distance.tolist(), time.tolist()
+    >>> out = full_braking(20 * one, brake)
+    >>> out.distance_m.tolist(), out.time_s.tolist()
     ([40.0], [4.0])
     """
     falls = brake.fall_per_mps > 0.0
     if falls.all():
         return _falling(speed_mps, brake)
     slowing = np.minimum(brake.at_zero, brake.cap) + brake.slope
-    distance = np.asarray(speed_mps * speed_mps / (2.0 * slowing))
-    time = np.asarray(speed_mps / slowing)
+    distance = speed_mps * speed_mps / (2.0 * slowing)
+    time = speed_mps / slowing
     if falls.any():
-        distance, time, falls = (np.array(x) for x in np.broadcast_arrays(distance, time, falls))
-        distance[falls], time[falls] = _falling(some(speed_mps, falls), brake.part(falls))
-    return distance, time
+        distance, time, slowing, falls = (np.array(x) for x in np.broadcast_arrays(distance, time, slowing, falls))
+        part = _falling(some(speed_mps, falls), brake.part(falls))
+        distance[falls], time[falls], slowing[falls] = part.distance_m, part.time_s, part.deceleration_mps2
+    return Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
 
 
-def _falling(speed: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
+def _falling(speed: FloatArray, brake: Brake) -> Braking:
     """Full braking under friction that falls with speed: closed form below the knot, quadrature above it."""
-    top_brake = brake.at_zero * np.exp(-brake.fall_per_mps * speed)
-    least = np.minimum(top_brake, brake.cap) + brake.slope
+    slowing = brake.at(speed) + brake.slope
     knot = _knot(speed, brake)
-    hard = (least < EASY_DECELERATION_MPS2) | (least < -brake.slope)
+    hard = (slowing < EASY_DECELERATION_MPS2) | (slowing < -brake.slope)
     if hard.all():
         distance, time = _hard(speed, knot, brake)
     else:
@@ -71,10 +84,10 @@ def _falling(speed: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
             hard = np.broadcast_to(hard, distance.shape)
             distance[hard], time[hard] = _hard(some(speed, hard), some(knot, hard), brake.part(hard))
     if knot.any():
-        level = brake.cap + brake.slope
-        distance += knot * knot / (2.0 * level)
-        time += knot / level
-    return distance, time
+        even = brake.cap + brake.slope
+        distance = distance + knot * knot / (2.0 * even)
+        time = time + knot / even
+    return Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
 
 
 def _knot(speed: FloatArray, brake: Brake) -> FloatArray:
@@ -85,45 +98,43 @@ def _knot(speed: FloatArray, brake: Brake) -> FloatArray:
 
 
 def _quadrature(speed: FloatArray, knot: FloatArray, brake: Brake, points: int) -> tuple[FloatArray, FloatArray]:
-    """Gauss-Legendre in the speed, between the knot and `speed`.
+    """Gauss-Legendre in the speed, between the knot and `speed`: distance and time.
 
     With u = knot + L·x: ``1/a = P/(B + s·P)``, where ``P = exp(k·L·x)`` and B is the brake's part at the knot. The
     nodes lie in pairs x and 1 - x, so the second P of a pair is ``exp(k·L)/P``: half the exponentials, which are what
-    costs time here.
+    costs time here. The pair's moments are ``x·p + (1-x)·q = (p+q)/2 + (1/2-x)·(q-p)``.
     """
     length = speed - knot
     fall = brake.fall_per_mps * length
-    brake_at_knot = brake.at_zero * np.exp(-brake.fall_per_mps * knot) if knot.any() else brake.at_zero
-    level = not brake.slope.any()
-    shape = np.broadcast_shapes(fall.shape, brake_at_knot.shape, brake.slope.shape)
+    bottom = brake.at_zero * np.exp(-brake.fall_per_mps * knot) if knot.any() else brake.at_zero
+    slope = brake.slope if brake.slope.any() else None
+    shape = np.broadcast_shapes(fall.shape, bottom.shape, brake.slope.shape)
     low, high, work = np.empty(shape), np.empty(shape), np.empty(shape)
-    sums, moments = np.zeros(shape), np.zeros(shape)
+    sums, tilts = np.zeros(shape), np.zeros(shape)
     whole = np.exp(fall)
     for x, weight in _half_rule(points):
         np.exp(np.multiply(fall, x, out=low), out=low)
         np.divide(whole, low, out=high)
-        if not level:
+        if slope is not None:
             for growth in (low, high):
-                np.multiply(brake.slope, growth, out=work)
-                work += brake_at_knot
+                np.multiply(slope, growth, out=work)
+                np.add(work, bottom, out=work)
                 np.divide(growth, work, out=growth)
+        np.subtract(high, low, out=work)
+        np.add(high, low, out=low)
         low *= weight
-        high *= weight
         sums += low
-        sums += high
-        low *= x
-        high *= 1.0 - x
-        moments += low
-        moments += high
-    if level:
-        sums /= brake_at_knot
-        moments /= brake_at_knot
+        work *= weight * (0.5 - x)
+        tilts += work
+    if slope is None:
+        sums /= bottom
+        tilts /= bottom
+    tilts += 0.5 * sums
     sums *= length
-    moments *= length
-    moments *= length
+    tilts *= length * length
     if knot.any():
-        moments += knot * sums
-    return moments, sums
+        tilts += knot * sums
+    return tilts, sums
 
 
 def _hard(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
@@ -160,13 +171,16 @@ def _in_log_deceleration(speed: FloatArray, knot: FloatArray, brake: Brake) -> t
     return moments * scale / brake.fall_per_mps, sums * scale
 
 
+@cache
 def _rule(points: int) -> tuple[FloatArray, FloatArray]:
     """Nodes and weights on 0..1."""
     nodes, weights = leggauss(points)
     return 0.5 * (nodes + 1.0), 0.5 * weights
 
 
-def _half_rule(points: int) -> list[tuple[float, float]]:
+@cache
+def _half_rule(points: int) -> tuple[tuple[float, float], ...]:
     """The nodes below 1/2 with their weights; the others mirror them."""
     nodes, weights = _rule(points)
-    return [(float(x), float(w)) for x, w in zip(nodes[: points // 2], weights[: points // 2], strict=True)]
+    half = points // 2
+    return tuple((float(x), float(w)) for x, w in zip(nodes[:half], weights[:half], strict=True))

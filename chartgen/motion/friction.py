@@ -52,44 +52,44 @@ def friction_at(
     speed = np.asarray(speed_mps, dtype=np.float64)
     if not ((speed >= 0.0) & (speed <= 200.0)).all():
         raise ValueError("speed_mps: it must be at least 0 m/s and at most 200 m/s")
-    law = FrictionLaw.checked(mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu)
-    falling = law.at_zero * np.exp(-law.fall_per_mps * speed)
-    value = np.asarray(np.minimum(falling, law.cap))
+    given = checked_friction(mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu)
+    at_zero, fall, cap = _as_falling(given["mu"], given["f60"], given["sp_kmh"], given["max_mu"])
+    value = np.asarray(np.minimum(at_zero * np.exp(-fall * speed), cap))
     return np.where(np.isinf(value), np.nan, value)
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class FrictionLaw:
-    """Either form of friction as ``min(at_zero * exp(-fall_per_mps * v), cap)``, v in m/s.
+def checked_friction(*, mu: ArrayLike, f60: ArrayLike, sp_kmh: ArrayLike, max_mu: ArrayLike) -> dict[str, FloatArray]:
+    """The four arguments of `friction_at` by name, as float arrays; raises ValueError as said there."""
+    given = {
+        "mu": checked("mu", mu, absent=True),
+        "f60": checked("f60", f60, absent=True),
+        "sp_kmh": checked("sp_kmh", sp_kmh, absent=True),
+        "max_mu": checked("max_mu", max_mu),
+    }
+    has_mu, has_f60, has_sp = (~np.isnan(given[name]) for name in ("mu", "f60", "sp_kmh"))
+    if (has_f60 != has_sp).any():
+        raise ValueError("f60, sp_kmh: friction that falls with speed needs both of them")
+    if (has_mu & has_f60).any():
+        raise ValueError("mu, f60: friction is either constant or falls with speed, not both")
+    if (np.isfinite(given["max_mu"]) & ~has_f60).any():
+        raise ValueError("max_mu: a cap belongs to friction that falls with speed (f60, sp_kmh)")
+    return given
 
-    A constant is a fall of 0; where no friction is given `at_zero` is infinite and a vehicle's own limit has to govern.
+
+def _as_falling(
+    mu: FloatArray, f60: FloatArray, sp_kmh: FloatArray, max_mu: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Either form of friction as ``min(at_zero * exp(-fall * v), cap)``, v in m/s: at_zero, fall per m/s, cap.
+
+    A constant is a fall of 0; where no friction is given, at_zero is infinite and a vehicle's own limit has to govern.
     """
-
-    at_zero: FloatArray
-    fall_per_mps: FloatArray
-    cap: FloatArray
-    given: BoolArray
-
-    @classmethod
-    def checked(cls, *, mu: ArrayLike, f60: ArrayLike, sp_kmh: ArrayLike, max_mu: ArrayLike) -> FrictionLaw:
-        """The law from the arguments of `friction_at`; raises ValueError as said there."""
-        constant = checked("mu", mu, absent=True)
-        at_60 = checked("f60", f60, absent=True)
-        speed_constant = checked("sp_kmh", sp_kmh, absent=True)
-        cap = checked("max_mu", max_mu)
-        has_mu, has_f60, has_sp = ~np.isnan(constant), ~np.isnan(at_60), ~np.isnan(speed_constant)
-        if (has_f60 != has_sp).any():
-            raise ValueError("f60, sp_kmh: friction that falls with speed needs both of them")
-        if (has_mu & has_f60).any():
-            raise ValueError("mu, f60: friction is either constant or falls with speed, not both")
-        if (np.isfinite(cap) & ~has_f60).any():
-            raise ValueError("max_mu: a cap belongs to friction that falls with speed (f60, sp_kmh)")
-        fall = np.asarray(KMH_PER_MPS / speed_constant)
-        at_zero = np.asarray(at_60 * np.exp(_REFERENCE_KMH / speed_constant))
-        if not has_f60.all():
-            fall = np.where(has_f60, fall, 0.0)
-            at_zero = np.where(has_f60, at_zero, np.where(has_mu, constant, np.inf))
-        return cls(at_zero=at_zero, fall_per_mps=fall, cap=cap, given=np.asarray(has_mu | has_f60))
+    fall = np.asarray(KMH_PER_MPS / sp_kmh)
+    at_zero = np.asarray(f60 * np.exp(_REFERENCE_KMH / sp_kmh))
+    constant = np.isnan(f60)
+    if constant.any():
+        fall = np.where(constant, 0.0, fall)
+        at_zero = np.where(constant, np.where(np.isnan(mu), np.inf, mu), at_zero)
+    return at_zero, fall, max_mu
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -105,15 +105,39 @@ class Brake:
     cap: FloatArray
     slope: FloatArray
 
+    @classmethod
+    def of(
+        cls,
+        *,
+        mu: FloatArray,
+        f60: FloatArray,
+        sp_kmh: FloatArray,
+        max_mu: FloatArray,
+        grade: FloatArray,
+        brake_efficiency: FloatArray,
+        max_deceleration_mps2: FloatArray,
+    ) -> Brake:
+        """From arguments already checked: ``b = min(η·F·g·cosθ, a_max)``.
+
+        With θ = atan(G): cosθ = 1/√(1+G²) and sinθ = G/√(1+G²), exactly.
+        """
+        at_zero, fall, cap = _as_falling(mu, f60, sp_kmh, max_mu)
+        run = 1.0 / np.sqrt(1.0 + grade * grade)
+        scale = brake_efficiency * (GRAVITY_MPS2 * run)
+        return cls(
+            at_zero=np.asarray(scale * at_zero),
+            fall_per_mps=fall,
+            cap=np.asarray(np.minimum(scale * cap, max_deceleration_mps2)),
+            slope=np.asarray(GRAVITY_MPS2 * grade * run),
+        )
+
     def at(self, speed_mps: FloatArray) -> FloatArray:
         """The brake's part b at a speed in m/s, without the slope."""
         if not self.fall_per_mps.any():
             return np.asarray(np.minimum(self.at_zero, self.cap))
-        falling = np.exp(-self.fall_per_mps * speed_mps)
-        falling *= self.at_zero
-        return np.asarray(np.minimum(falling, self.cap))
+        return np.asarray(np.minimum(self.at_zero * np.exp(-self.fall_per_mps * speed_mps), self.cap))
 
-    def part(self, rows: slice | BoolArray) -> Brake:
+    def part(self, rows: BoolArray) -> Brake:
         """The same for some of the rows; a quantity that is one for all rows stays one."""
         return Brake(
             at_zero=some(self.at_zero, rows),
@@ -126,17 +150,3 @@ class Brake:
 def some(value: FloatArray, rows: slice | BoolArray) -> FloatArray:
     """`value` at `rows`; a single value for all rows stays as it is, so that it costs nothing."""
     return value if value.size == 1 else value[rows]
-
-
-def brake_force(
-    law: FrictionLaw, *, grade: FloatArray, brake_efficiency: FloatArray, max_deceleration_mps2: FloatArray
-) -> tuple[FloatArray, FloatArray, FloatArray]:
-    """`at_zero`, `cap` and `slope` of a `Brake`, in m/s², from arguments already checked.
-
-    ``b = min(η·F·g·cosθ, a_max)``; with θ = atan(G), cosθ = 1/√(1+G²) and sinθ = G/√(1+G²), exactly.
-    """
-    run = 1.0 / np.sqrt(1.0 + grade * grade)
-    scale = brake_efficiency * (GRAVITY_MPS2 * run)
-    at_zero = np.asarray(scale * law.at_zero)
-    cap = np.asarray(np.minimum(scale * law.cap, max_deceleration_mps2))
-    return at_zero, cap, np.asarray(GRAVITY_MPS2 * grade * run)

@@ -10,6 +10,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from chartgen.motion.friction import Brake
 from chartgen.motion.limits import FloatArray
 
 
@@ -59,19 +60,20 @@ def lag(speed_mps: FloatArray, *, lag_s: FloatArray, slope_mps2: FloatArray) -> 
     return Phase(distance_m=distance, time_s=time, end_speed_mps=end, top_speed_mps=np.maximum(speed_mps, end))
 
 
-def build_up(speed_mps: FloatArray, *, build_up_s: FloatArray, brake_mps2: FloatArray, slope_mps2: FloatArray) -> Phase:
-    """From the brake's first bite to its full force: its part rises linearly from 0 to `brake_mps2`, the slope acts
-    in full.
+def build_up(speed_mps: FloatArray, *, build_up_s: FloatArray, brake: Brake) -> Phase:
+    """From the brake's first bite to its full force: its part rises linearly from 0 to b, the slope acts in full.
 
     Formula: distance ``v·t_b - g·sinθ·t_b²/2 - b·t_b²/6``, end speed ``v - g·sinθ·t_b - b·t_b/2``. Where the end
     speed would be under zero, the vehicle comes to rest at the positive root τ of ``v - g·sinθ·τ - b·τ²/(2·t_b)``. On
     a downgrade the speed rises until the brake's part equals the slope's, at ``τ = t_b·g·|sinθ|/b``: the top speed.
 
+    Where friction falls with speed, b is its value at the speed at which the build-up begins, the highest of it; but
+    on a downgrade that keeps the vehicle faster than that, at a bound on the mean speed (see `_ramp_speed`).
+
     Args:
         speed_mps: m/s, at least 0.
         build_up_s: s, at least 0.
-        brake_mps2: the brake's full part b in m/s², more than 0.
-        slope_mps2: ``g·sinθ`` in m/s², uphill positive.
+        brake: the brake's part and the slope.
 
     Returns:
         The phase, in m, s and m/s.
@@ -83,36 +85,54 @@ def build_up(speed_mps: FloatArray, *, build_up_s: FloatArray, brake_mps2: Float
 
     >>> import numpy as np
     >>> one = np.ones(1)
-    >>> out = build_up(20 * one, build_up_s=0.6 * one, brake_mps2=5 * one, slope_mps2=0 * one)
+    >>> brake = Brake(at_zero=5 * one, fall_per_mps=0 * one, cap=np.inf * one, slope=0 * one)
+    >>> out = build_up(20 * one, build_up_s=0.6 * one, brake=brake)
     >>> round(float(out.distance_m[0]), 12), round(float(out.end_speed_mps[0]), 12)
     (11.7, 18.5)
     """
     if not build_up_s.any():
         return _nothing(speed_mps)
-    end = speed_mps - build_up_s * (slope_mps2 + 0.5 * brake_mps2)
-    time = np.broadcast_to(build_up_s, end.shape)
-    cubic = np.where(time > 0.0, brake_mps2 / np.where(time > 0.0, time, 1.0), 0.0)
+    slope = brake.slope
+    force = brake.at(_ramp_speed(speed_mps, build_up_s=build_up_s, brake=brake))
+    end = speed_mps - build_up_s * (slope + 0.5 * force)
+    time = build_up_s
     if (end <= 0.0).any():
-        rest = _time_to_rest(speed_mps, brake_mps2=brake_mps2, build_up_s=time, slope_mps2=slope_mps2)
+        rest = _time_to_rest(speed_mps, force=force, build_up_s=build_up_s, slope=slope)
         time = np.where(end <= 0.0, np.minimum(rest, time), time)
         end = np.maximum(end, 0.0)
-    distance = time * (speed_mps - time * (0.5 * slope_mps2 + cubic * time / 6.0))
+    rise = np.where(build_up_s > 0.0, force / np.where(build_up_s > 0.0, build_up_s, 1.0), 0.0)
+    distance = time * (speed_mps - time * (0.5 * slope + rise * time / 6.0))
     top = np.asarray(speed_mps)
-    if (slope_mps2 < 0.0).any():
-        down = np.maximum(-slope_mps2, 0.0)
-        peak = np.minimum(build_up_s * down / brake_mps2, build_up_s)
-        top = speed_mps + peak * (down - 0.5 * cubic * peak)
+    if (slope < 0.0).any():
+        down = np.maximum(-slope, 0.0)
+        peak = build_up_s * np.minimum(down / force, 1.0)
+        top = speed_mps + peak * (down - 0.5 * rise * peak)
     return Phase(distance_m=distance, time_s=time, end_speed_mps=end, top_speed_mps=top)
 
 
-def _time_to_rest(
-    speed_mps: FloatArray, *, brake_mps2: FloatArray, build_up_s: FloatArray, slope_mps2: FloatArray
-) -> FloatArray:
+def _ramp_speed(speed_mps: FloatArray, *, build_up_s: FloatArray, brake: Brake) -> FloatArray:
+    """The speed whose friction the build-up rises to: never one that makes the stop shorter than it is.
+
+    The force ``τ/t_b · b(w(τ))`` enters the end speed with the weight τ and the distance with τ·(t_b - τ). On a
+    downgrade ``w <= v + g·|sinθ|·τ - b₀·τ²/(2·t_b)`` with b₀ the force at a speed that is not reached; the weighted
+    means of that bound exceed v by ``t_b·(2·g·|sinθ|/3 - b₀/4)`` and ``t_b·(g·|sinθ|/2 - 3·b₀/20)``. As b is convex in
+    the speed, its mean is at least its value there. On the level and uphill, and wherever the slope's pull is under
+    0.3 of the force, that is the speed at the beginning.
+    """
+    if not (brake.slope < 0.0).any() or not brake.fall_per_mps.any():
+        return speed_mps
+    down = np.maximum(-brake.slope, 0.0)
+    least = brake.at(speed_mps + down * build_up_s)
+    excess = np.maximum(2.0 / 3.0 * down - 0.25 * least, 0.5 * down - 0.15 * least)
+    return np.asarray(speed_mps + build_up_s * np.maximum(excess, 0.0))
+
+
+def _time_to_rest(speed_mps: FloatArray, *, force: FloatArray, build_up_s: FloatArray, slope: FloatArray) -> FloatArray:
     """The positive root of the speed in the build-up, each sign of the slope in the form that loses no digits."""
-    root = np.sqrt(slope_mps2 * slope_mps2 + 2.0 * brake_mps2 * speed_mps / np.where(build_up_s > 0.0, build_up_s, 1.0))
-    uphill = 2.0 * speed_mps / np.where(slope_mps2 + root > 0.0, slope_mps2 + root, 1.0)
-    downhill = (root - slope_mps2) * build_up_s / brake_mps2
-    return np.where(slope_mps2 >= 0.0, uphill, downhill)
+    root = np.sqrt(slope * slope + 2.0 * force * speed_mps / np.where(build_up_s > 0.0, build_up_s, 1.0))
+    uphill = 2.0 * speed_mps / np.where(slope + root > 0.0, slope + root, 1.0)
+    downhill = (root - slope) * build_up_s / force
+    return np.where(slope >= 0.0, uphill, downhill)
 
 
 def _nothing(speed_mps: FloatArray) -> Phase:

@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from chartgen.motion.braking import full_braking
-from chartgen.motion.friction import Brake, FrictionLaw, brake_force, some
+from chartgen.motion.friction import Brake, checked_friction, some
 from chartgen.motion.limits import LEAST_DECELERATION_MPS2, BoolArray, FloatArray, checked
 from chartgen.motion.phases import build_up, lag
 
@@ -111,23 +111,18 @@ def stop(
         "reaction_time_s": checked("reaction_time_s", reaction_time_s),
         "brake_lag_s": checked("brake_lag_s", brake_lag_s),
         "build_up_s": checked("build_up_s", build_up_s),
+        "grade": checked("grade", grade),
+        "brake_efficiency": checked("brake_efficiency", brake_efficiency),
+        "max_deceleration_mps2": checked("max_deceleration_mps2", max_deceleration_mps2),
+        **checked_friction(mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu),
     }
-    law = FrictionLaw.checked(mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu)
-    efficiency = checked("brake_efficiency", brake_efficiency)
-    limit = checked("max_deceleration_mps2", max_deceleration_mps2)
-    if not (law.given | np.isfinite(limit)).all():
+    bare = np.isnan(given["mu"]) & np.isnan(given["f60"])
+    if (bare & np.isinf(given["max_deceleration_mps2"])).any():
         raise ValueError("mu: without friction (mu, or f60 and sp_kmh) max_deceleration_mps2 must be finite")
-    if (~law.given & (efficiency != 1.0)).any():
+    if (bare & (given["brake_efficiency"] != 1.0)).any():
         raise ValueError("brake_efficiency: it is a share of friction (mu, or f60 and sp_kmh), and none is given")
-    at_zero, cap, slope = brake_force(
-        law, grade=checked("grade", grade), brake_efficiency=efficiency, max_deceleration_mps2=limit
-    )
-    shape = np.broadcast_shapes(*(x.shape for x in given.values()), at_zero.shape, cap.shape, slope.shape)
-    fall = law.fall_per_mps
-    brake = Brake(
-        at_zero=_flat(at_zero, shape), fall_per_mps=_flat(fall, shape), cap=_flat(cap, shape), slope=_flat(slope, shape)
-    )
-    return _in_chunks({name: _flat(x, shape) for name, x in given.items()}, brake, shape)
+    shape = np.broadcast_shapes(*(x.shape for x in given.values()))
+    return _in_chunks({name: _flat(x, shape) for name, x in given.items()}, shape)
 
 
 def _flat(value: FloatArray, shape: tuple[int, ...]) -> FloatArray:
@@ -135,7 +130,7 @@ def _flat(value: FloatArray, shape: tuple[int, ...]) -> FloatArray:
     return value.reshape(1) if value.size == 1 else np.broadcast_to(value, shape).reshape(-1)
 
 
-def _in_chunks(given: dict[str, FloatArray], brake: Brake, shape: tuple[int, ...]) -> Stop:
+def _in_chunks(given: dict[str, FloatArray], shape: tuple[int, ...]) -> Stop:
     """Works the rows a cache-full at a time into one set of arrays."""
     rows = int(np.prod(shape, dtype=np.int64))
     out = {name: np.empty(rows) for name in _NAMES}
@@ -144,7 +139,7 @@ def _in_chunks(given: dict[str, FloatArray], brake: Brake, shape: tuple[int, ...
         for start in range(0, rows, _CHUNK_ROWS):
             part = slice(start, start + _CHUNK_ROWS)
             here = {name: some(x, part) for name, x in given.items()}
-            _one_chunk(here, brake.part(part), {name: x[part] for name, x in out.items()}, code[part])
+            _one_chunk(here, {name: x[part] for name, x in out.items()}, code[part])
     arrays = {name: x.reshape(shape) for name, x in out.items()}
     code = code.reshape(shape)
     stops = np.asarray(code == 0)
@@ -162,31 +157,32 @@ _NAMES = (
     "stopping_time_s",
     "full_deceleration_mps2",
 )
+_BRAKE = ("mu", "f60", "sp_kmh", "max_mu", "grade", "brake_efficiency", "max_deceleration_mps2")
 
 
-def _one_chunk(given: dict[str, FloatArray], brake: Brake, out: dict[str, FloatArray], code: NDArray[np.int8]) -> None:
+def _one_chunk(given: dict[str, FloatArray], out: dict[str, FloatArray], code: NDArray[np.int8]) -> None:
     """The phases in their order, for rows that fit the cache; writes into `out` and `code`."""
     speed, reaction_time = given["speed_mps"], given["reaction_time_s"]
+    brake = Brake.of(**{name: given[name] for name in _BRAKE})
     lagging = lag(speed, lag_s=given["brake_lag_s"], slope_mps2=brake.slope)
-    begin = lagging.end_speed_mps
-    building = build_up(begin, build_up_s=given["build_up_s"], brake_mps2=brake.at(begin), slope_mps2=brake.slope)
-    full = building.end_speed_mps
-    distance, time = full_braking(full, brake)
+    building = build_up(lagging.end_speed_mps, build_up_s=given["build_up_s"], brake=brake)
+    full = full_braking(building.end_speed_mps, brake)
 
-    slowing = brake.at(full) + brake.slope
-    top = np.maximum(lagging.top_speed_mps, building.top_speed_mps)
-    least = slowing if full is speed else np.minimum(slowing, brake.at(top) + brake.slope)
+    slowing = least = full.deceleration_mps2
+    if building.end_speed_mps is not speed:
+        top = np.maximum(lagging.top_speed_mps, building.top_speed_mps)
+        least = np.minimum(slowing, brake.at(top) + brake.slope)
     code[...] = least < LEAST_DECELERATION_MPS2
-    code[...] = np.where(slowing <= 0.0, 2, code)
+    if code.any():
+        code[np.broadcast_to(slowing <= 0.0, code.shape)] = 2
 
     out["full_deceleration_mps2"][...] = slowing
-    out["reaction_distance_m"][...] = speed * reaction_time
+    np.multiply(speed, reaction_time, out=out["reaction_distance_m"])
     out["lag_distance_m"][...] = lagging.distance_m
-    braking = building.distance_m + distance
-    out["braking_distance_m"][...] = braking
+    np.add(building.distance_m, full.distance_m, out=out["braking_distance_m"])
     np.add(out["reaction_distance_m"], out["lag_distance_m"], out=out["stopping_distance_m"])
-    out["stopping_distance_m"] += braking
-    out["stopping_time_s"][...] = reaction_time + lagging.time_s + building.time_s + time
+    out["stopping_distance_m"] += out["braking_distance_m"]
+    np.add(reaction_time + lagging.time_s + building.time_s, full.time_s, out=out["stopping_time_s"])
     if code.any():
         for name in ("braking_distance_m", "stopping_distance_m", "stopping_time_s"):
             out[name][code != 0] = np.nan
