@@ -36,16 +36,14 @@ _COLLECT_AFTER = 100_000
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Job(Generic[T]):
-    """One piece of work: ``work(*args)``. `weight`: how long it takes beside the others; long ones start first."""
+    """One piece of work: ``work(*args)``. `key`: the `content_key` of all that the result depends on; equal keys give
+    equal results. `weight`: how long it takes beside the others; long ones start first."""
 
     name: str
+    key: str
     work: Callable[..., T]
     args: tuple[Any, ...]
     weight: float = 1.0
-
-    def key(self) -> str:
-        """SHA-256 of the function's name and the arguments' content; equal keys give equal results."""
-        return content_key(self.work.__module__, self.work.__qualname__, self.args)
 
 
 def content_key(*parts: object) -> str:
@@ -99,7 +97,7 @@ class Crew:
         An error of a job is raised here as it was raised there, the first in the order of the jobs. MachineFault where
         a worker was killed.
         """
-        keys = [job.key() for job in jobs]
+        keys = [job.key for job in jobs]
         first: dict[str, Job[T]] = {}
         for key, job in zip(keys, jobs, strict=True):
             first.setdefault(key, job)

@@ -49,8 +49,8 @@ def dies(number: int) -> int:
 @pytest.mark.parametrize("workers", [1, 2, 3])
 def test_results_come_in_the_order_asked_for(workers: int) -> None:
     with jobs.crew(workers) as crew:
-        results = crew.run([Job(name=str(n), work=late, args=(n,), weight=n) for n in range(7)])
-        again = crew.run([Job(name="one", work=late, args=(7,))])
+        results = crew.run([Job(name=str(n), key=str(n), work=late, args=(n,), weight=n) for n in range(7)])
+        again = crew.run([Job(name="one", key="one", work=late, args=(7,))])
     assert [n for n, _ in results] == list(range(7))
     assert again[0][0] == 7
     assert len({pid for _, pid in results} - {os.getpid()}) == (0 if workers == 1 else workers)
@@ -59,7 +59,7 @@ def test_results_come_in_the_order_asked_for(workers: int) -> None:
 @pytest.mark.parametrize("workers", [1, 2])
 def test_equal_jobs_are_done_once(tmp_path: Path, workers: int) -> None:
     finished = []
-    work = [Job(name=n, work=counted, args=(str(tmp_path), n)) for n in "abcaab"]
+    work = [Job(name=n, key=jobs.content_key("counted", n), work=counted, args=(str(tmp_path), n)) for n in "abcaab"]
     with jobs.crew(workers) as crew:
         assert crew.run(work, lambda job: finished.append(job.name)) == list("abcaab")
     assert sorted(finished) == ["a", "b", "c"]
@@ -69,7 +69,7 @@ def test_equal_jobs_are_done_once(tmp_path: Path, workers: int) -> None:
 @pytest.mark.parametrize("workers", [1, 2])
 def test_the_first_failure_in_the_order_of_the_jobs_comes_back_with_its_facts(workers: int) -> None:
     with pytest.raises(EditionFaults) as caught, jobs.crew(workers) as crew:
-        crew.run([Job(name="", work=faulty, args=(n,), weight=n) for n in range(4)])
+        crew.run([Job(name="", key=str(n), work=faulty, args=(n,), weight=n) for n in range(4)])
     assert caught.value.faults[0] == Fault(file="a.toml", key="speeds", problem="None.", near="speed")
     assert len(caught.value.faults) == 2
     assert caught.value.exit_code == 2
@@ -78,7 +78,7 @@ def test_the_first_failure_in_the_order_of_the_jobs_comes_back_with_its_facts(wo
 
 def test_a_worker_killed_by_the_system_is_a_fault_of_the_machine() -> None:
     with pytest.raises(MachineFault) as caught, jobs.crew(2) as crew:
-        crew.run([Job(name="", work=dies, args=(n,)) for n in range(4)])
+        crew.run([Job(name="", key=str(n), work=dies, args=(n,)) for n in range(4)])
     assert caught.value.problem == "A worker process was stopped by the system, most likely for want of memory."
     assert multiprocessing.active_children() == []
 
@@ -91,7 +91,7 @@ def work(folder, n):
     (Path(folder) / str(os.getpid())).touch()
     time.sleep(60)
 with jobs.crew(2) as crew:
-    crew.run([jobs.Job(name="", work=work, args=(sys.argv[1], n)) for n in range(4)])
+    crew.run([jobs.Job(name="", key=str(n), work=work, args=(sys.argv[1], n)) for n in range(4)])
 """
 
 
