@@ -1,0 +1,132 @@
+"""The roster of a fleet: a CSV with one row a card."""
+
+from __future__ import annotations
+
+import csv
+import io
+import re
+from collections.abc import Mapping
+from pathlib import Path
+
+from chartgen.edition.find import read_text
+from chartgen.edition.model import RosterRow
+from chartgen.edition.walk import Reading, listed, near
+from chartgen.errors import EditionFaults
+
+COLUMNS = ("vehicle_id", "vehicle", "languages", "depot", "holder", "copy_no")
+NEEDED = ("vehicle_id", "vehicle", "languages", "copy_no")
+LONGEST = 80
+
+
+def read_roster(
+    reading: Reading, folder: Path, name: str, vehicles: Mapping[str, bool]
+) -> tuple[RosterRow, ...]:
+    """Read the roster `name` in the edition's folder. `vehicles`: id -> whether cards can be made for it.
+
+    RFC 4180, UTF-8, commas; `languages` holds one tag or several with spaces between. Faults carry line numbers.
+    """
+    if not re.fullmatch(r"[A-Za-z0-9][A-Za-z0-9_.-]*\.csv", name):
+        reading.fault("cards.roster", "this is not the name of a file beside edition.toml", '"roster.csv"', given=name)
+        return ()
+    file = folder / name
+    if not file.is_file():
+        reading.fault("cards.roster", "there is no such file beside edition.toml", f"a file {name}", given=name)
+        return ()
+    shown = str(Path(reading.file).parent / name)
+    try:
+        text = read_text(file, shown)
+        lines = list(_lines(text))
+    except EditionFaults as fault:
+        reading.faults.extend(fault.faults)
+        return ()
+    except csv.Error as fault:
+        reading.fault("", f"this is not CSV: {fault}", "one row a card, commas between", file=shown)
+        return ()
+    if not _header(reading, shown, lines[0][1] if lines else []):
+        return ()
+    columns = lines[0][1]
+    rows = [_row(reading, shown, line, dict(zip(columns, cells)), vehicles)
+            if len(cells) == len(columns) else _wrong_width(reading, shown, line, cells, columns)
+            for line, cells in lines[1:]]  # fmt: skip
+    if not lines[1:]:
+        reading.fault("", "the roster has no cards", "a row for each card below the headings", file=shown)
+    good = [row for row in rows if row is not None]
+    _copies(reading, shown, good)
+    return tuple(good)
+
+
+def _lines(text: str) -> list[tuple[int, list[str]]]:
+    """Rows that hold anything, each with the number of its last line."""
+    reader = csv.reader(io.StringIO(text, newline=""), strict=True)
+    return [(reader.line_num, [cell.strip() for cell in cells]) for cells in reader if any(c.strip() for c in cells)]
+
+
+def _header(reading: Reading, shown: str, columns: list[str]) -> bool:
+    before = len(reading.faults)
+    if len(columns) == 1 and ";" in columns[0]:
+        reading.fault("line 1", "the columns are separated by semicolons", "commas between the columns", file=shown)
+        return False
+    for number, column in enumerate(columns):
+        if column not in COLUMNS:
+            reading.fault(
+                "line 1", "this column is not known", listed(COLUMNS), given=column, near=near(column, COLUMNS), file=shown
+            )
+        elif column in columns[:number]:
+            reading.fault("line 1", "this column stands there twice", "each column once", given=column, file=shown)
+    for column in NEEDED:
+        if column not in columns:
+            reading.fault("line 1", f"the column {column} is missing", ",".join(COLUMNS), file=shown)
+    return len(reading.faults) == before
+
+
+def _wrong_width(reading: Reading, shown: str, line: int, cells: list[str], columns: list[str]) -> None:
+    reading.fault(
+        f"line {line}", f"the row has {len(cells)} cells", f"{len(columns)}, one a column", given=",".join(cells), file=shown
+    )
+
+
+def _row(
+    reading: Reading, shown: str, line: int, cells: Mapping[str, str], vehicles: Mapping[str, bool]
+) -> RosterRow | None:
+    before = len(reading.faults)
+    at = f"line {line}, column "
+    for column in NEEDED:
+        if not cells[column]:
+            reading.fault(at + column, "the cell is empty", "a value in each row", file=shown)
+    for column, cell in cells.items():
+        if len(cell) > LONGEST or any(ord(c) < 32 for c in cell):
+            reading.fault(at + column, "the cell does not fit a card", f"one line, at most {LONGEST} characters",
+                          given=cell, file=shown)  # fmt: skip
+    vehicle = cells["vehicle"]
+    if vehicle and vehicle not in vehicles:
+        reading.fault(at + "vehicle", "there is no vehicle with this id", listed(vehicles), given=vehicle,
+                      near=near(vehicle, vehicles), file=shown)  # fmt: skip
+    elif vehicle and not vehicles[vehicle]:
+        reading.fault(at + "vehicle", "no case has this vehicle with the driver, surfaces and grade of the cards",
+                      listed([v for v, works in vehicles.items() if works]) or "a [[case]] that has them", given=vehicle,
+                      file=shown)  # fmt: skip
+    tags = tuple(cells["languages"].split())
+    for tag in tags:
+        if tag not in reading.languages:
+            reading.fault(at + "languages", "this language is not among languages.use",
+                          " ".join(reading.languages), given=tag, near=near(tag, reading.languages), file=shown)  # fmt: skip
+    if len(reading.faults) > before:
+        return None
+    return RosterRow(
+        vehicle_id=cells["vehicle_id"],
+        vehicle=vehicle,
+        languages=tags,
+        depot=cells.get("depot", ""),
+        holder=cells.get("holder", ""),
+        copy_no=cells["copy_no"],
+        line=line,
+    )
+
+
+def _copies(reading: Reading, shown: str, rows: list[RosterRow]) -> None:
+    seen: dict[str, int] = {}
+    for row in rows:
+        if row.copy_no in seen:
+            reading.fault(f"line {row.line}, column copy_no", f"line {seen[row.copy_no]} has this copy number already",
+                          "a number of its own", given=row.copy_no, file=shown)  # fmt: skip
+        seen.setdefault(row.copy_no, row.line)
