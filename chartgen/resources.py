@@ -1,35 +1,32 @@
-"""Where the templates and the starter editions lie: inside an installed wheel, or beside the package in a checkout."""
+"""Where the templates and the starter editions lie: in the checkout, or inside an installed wheel.
+
+A foundation stone like `errors.py`: any floor may ask it, it asks nobody.
+"""
 
 from __future__ import annotations
 
-from importlib.resources import files
 from pathlib import Path
 
 from chartgen.errors import MachineFault
 
-_CHECKOUT = Path(__file__).resolve().parents[1]
+_PACKAGE = Path(__file__).resolve().parent
+_CHECKOUT = _PACKAGE.parent
 
 
-def data_dir(name: str) -> Path:
-    """The folder `name` ("templates" or "site_config") that came with the program.
-
-    A wheel carries it under ``chartgen/_data``; a checkout (editable install) has it beside ``chartgen/``. Raises
-    MachineFault where neither is there: the installation is broken, not the edition.
-    """
-    packaged = Path(str(files("chartgen"))) / "_data" / name
-    if packaged.is_dir():
-        return packaged
-    beside = _CHECKOUT / name
-    if (_CHECKOUT / "pyproject.toml").is_file() and beside.is_dir():
-        return beside
-    raise MachineFault(f"the program's own folder {name!r} is missing", "install chartgen again")
+def _folder(name: str) -> Path:
+    packed = _PACKAGE / "_data" / name
+    if packed.is_dir():
+        return packed
+    if (_CHECKOUT / "pyproject.toml").is_file() and (_CHECKOUT / name).is_dir():
+        return _CHECKOUT / name
+    raise MachineFault(f"chartgen's own folder '{name}' is missing.", "Install chartgen again.")
 
 
 def templates() -> Path:
     """The folder of the page and sheet templates and of the word lists (``words/<tag>.po``)."""
-    return data_dir("templates")
+    return _folder("templates")
 
 
 def starters() -> Path:
     """The folder of the editions that come with the program (``site_config/`` of a checkout)."""
-    return data_dir("site_config")
+    return _folder("site_config")

@@ -11,7 +11,7 @@ from typing import Any
 
 from chartgen.edition.walk import ID_PATTERN, near
 from chartgen.errors import CommandFault, EditionFaults, Fault, MachineFault
-from chartgen.resources import data_dir
+from chartgen.resources import starters
 
 FILE_NAME = "edition.toml"
 MOST_BYTES = 1_000_000
@@ -43,7 +43,7 @@ def edition_file(path: str | os.PathLike[str]) -> Path:
 def names() -> dict[str, Path]:
     """The editions that can be called by name, in alphabetical order: of ./site_config, else of the starters."""
     own = _in(Path("site_config"))
-    return own or _in(data_dir("site_config"))
+    return own or _in(starters())
 
 
 def _in(folder: Path) -> dict[str, Path]:

@@ -10,7 +10,7 @@ from pathlib import Path
 from chartgen.edition.find import read_text
 from chartgen.edition.walk import Reading, near
 from chartgen.errors import EditionFaults
-from chartgen.resources import data_dir
+from chartgen.resources import templates
 
 MASTER = "en-GB"
 
@@ -20,7 +20,7 @@ def own_words(reading: Reading, folder: Path) -> Mapping[str, Mapping[str, str]]
     files = sorted((folder / "words").glob("*.po"))
     if not files:
         return {}
-    english = _entries(data_dir("templates") / "words" / f"{MASTER}.po")
+    english = _entries(templates() / "words" / f"{MASTER}.po")
     words: dict[str, Mapping[str, str]] = {}
     for file in files:
         shown = str(Path(reading.file).parent / "words" / file.name)
