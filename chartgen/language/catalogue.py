@@ -21,7 +21,7 @@ from chartgen.errors import MachineFault
 from chartgen.resources import templates
 
 MASTER = "en-GB"
-_PLACEHOLDER = re.compile(r"\{([a-z_]+)\}")
+_PLACEHOLDER = re.compile(r"\{([a-z][a-z0-9_]*)\}")
 _MAX_CHARS = re.compile(r"At most (\d+) characters")
 _NO_READER = "none yet"
 

@@ -17,7 +17,7 @@ from chartgen.language.complete import check_complete, untranslated
 from chartgen.language.html import isolate
 from chartgen.language.units import UnitStyle, unit_symbol
 
-_SPLIT = re.compile(r"\{([a-z_]+)\}")
+_SPLIT = re.compile(r"\{([a-z][a-z0-9_]*)\}")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
