@@ -123,8 +123,8 @@ class Language:
 
 
 def languages(edition: Edition) -> tuple[Language, ...]:
-    """The edition's languages in its order. Raises EditionFaults, all at once, where a language has no word list, own
-    words do not fit, or, in anything but a draft, a translation is missing."""
+    """The edition's languages in its order. Raises EditionFaults, all at once, where a language has no word list or, in
+    anything but a draft, a translation is missing."""
     check_complete(edition)
     return tuple(_language(edition, tag) for tag in edition.languages)
 
