@@ -1,14 +1,15 @@
 """Full braking: from its first speed down to rest, under constant friction or friction that falls with speed.
 
-Constant deceleration has a closed form. Where friction falls with speed, the distance is an integral over the speed,
-worked out by Gauss-Legendre quadrature in one piece; below the speed at which the cap or the vehicle's own limit
-takes over, the deceleration is constant and the closed form serves again.
+Constant deceleration has a closed form, and so has friction that falls with speed on the level. On a grade the
+distance is an integral over the speed, worked out by Gauss-Legendre quadrature in one piece; below the speed at which
+the cap or the vehicle's own limit takes over, the deceleration is constant and the closed form serves again.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cache
+from math import factorial
 
 import numpy as np
 from numpy.polynomial.legendre import leggauss
@@ -21,6 +22,13 @@ HARD_POINTS = 32
 EASY_DECELERATION_MPS2 = 0.5
 """Chosen by us: from this least deceleration on, 16 points are enough; below it the integrand is steep and 32 are
 used."""
+
+EASY_FALL = 5.0
+"""Chosen by us: friction that falls by more than e^5 over the stop is steep as well."""
+
+_SMALL = 0.1
+_TERMS = 10
+"""Below `_SMALL` ten terms of the series leave out less than 1e-17."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -72,22 +80,80 @@ def full_braking(speed_mps: FloatArray, brake: Brake) -> Braking:
 
 
 def _falling(speed: FloatArray, brake: Brake) -> Braking:
-    """Full braking under friction that falls with speed: closed form below the knot, quadrature above it."""
+    """Full braking under friction that falls with speed: quadrature above the knot, closed form below it."""
     slowing = brake.at(speed) + brake.slope
     knot = _knot(speed, brake)
-    hard = (slowing < EASY_DECELERATION_MPS2) | (slowing < -brake.slope)
-    if hard.all():
-        distance, time = _hard(speed, knot, brake)
-    else:
-        distance, time = _quadrature(speed, knot, brake, EASY_POINTS)
-        if hard.any():
-            hard = np.broadcast_to(hard, distance.shape)
-            distance[hard], time[hard] = _hard(some(speed, hard), some(knot, hard), brake.part(hard))
+    distance, time = _above_knot(speed, knot, brake, slowing)
     if knot.any():
         even = brake.cap + brake.slope
         distance = distance + knot * knot / (2.0 * even)
         time = time + knot / even
     return Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
+
+
+def _above_knot(
+    speed: FloatArray, knot: FloatArray, brake: Brake, slowing: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Distance and time between `speed` and the knot, each row by the way that suits it, whatever its neighbours."""
+    slope = brake.slope
+    level = slope == 0.0
+    long_fall = brake.fall_per_mps * speed > EASY_FALL
+    hard = ~level & ((slowing < EASY_DECELERATION_MPS2) | (slowing < -slope) | long_fall)
+    steep = hard & (slope < 0.0)
+    ways = ((level, _level), (~level & ~hard, _easy), (hard & ~steep, _hard), (steep, _in_log_deceleration))
+    for rows, way in ways:
+        if rows.all():
+            return way(speed, knot, brake)
+    shape = np.broadcast_shapes(speed.shape, knot.shape, slope.shape, slowing.shape)
+    distance, time = np.empty(shape), np.empty(shape)
+    for some_rows, way in ways:
+        rows = np.broadcast_to(some_rows, shape)
+        if rows.any():
+            distance[rows], time[rows] = way(some(speed, rows), some(knot, rows), brake.part(rows))
+    return distance, time
+
+
+def _level(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
+    """On the level the integrals have a closed form.
+
+    With L the speed above the knot, ``x = k·L`` and B the brake's part at the knot: time ``L/B·(e^x - 1)/x``, distance
+    ``L/B·(knot·(e^x - 1)/x + L·((x - 1)·e^x + 1)/x²)``; for a small x the two factors are taken from their series, as
+    the closed forms would lose digits.
+    """
+    length = speed - knot
+    x = brake.fall_per_mps * length
+    per_force = length / _at_knot(knot, brake)
+    growth = np.exp(x)
+    first = (growth - 1.0) / x
+    second = (growth - first) / x
+    small = x < _SMALL
+    if small.any():
+        first[small], second[small] = _series(x[small])
+    return per_force * (knot * first + length * second), per_force * first
+
+
+def _series(x: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """``(e^x - 1)/x = Σ x^n/(n + 1)!`` and ``((x - 1)·e^x + 1)/x² = Σ x^n/(n!·(n + 2))``, for x below `_SMALL`."""
+    first, second = np.zeros(x.shape), np.zeros(x.shape)
+    for n in range(_TERMS - 1, -1, -1):
+        first = first * x + 1.0 / factorial(n + 1)
+        second = second * x + 1.0 / (factorial(n) * (n + 2))
+    return first, second
+
+
+def _easy(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
+    """Rows on a grade that slow well: 16 points."""
+    return _quadrature(speed, knot, brake, EASY_POINTS)
+
+
+def _hard(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
+    """Rows uphill whose least deceleration is small: 32 points."""
+    return _quadrature(speed, knot, brake, HARD_POINTS)
+
+
+def _at_knot(knot: FloatArray, brake: Brake) -> FloatArray:
+    """The brake's part at the knot."""
+    return brake.at_zero * np.exp(-brake.fall_per_mps * knot) if knot.any() else brake.at_zero
 
 
 def _knot(speed: FloatArray, brake: Brake) -> FloatArray:
@@ -106,8 +172,7 @@ def _quadrature(speed: FloatArray, knot: FloatArray, brake: Brake, points: int) 
     """
     length = speed - knot
     fall = brake.fall_per_mps * length
-    bottom = brake.at_zero * np.exp(-brake.fall_per_mps * knot) if knot.any() else brake.at_zero
-    slope = brake.slope if brake.slope.any() else None
+    bottom = _at_knot(knot, brake)
     shape = np.broadcast_shapes(fall.shape, bottom.shape, brake.slope.shape)
     low, high, work = np.empty(shape), np.empty(shape), np.empty(shape)
     sums, tilts = np.zeros(shape), np.zeros(shape)
@@ -115,52 +180,32 @@ def _quadrature(speed: FloatArray, knot: FloatArray, brake: Brake, points: int) 
     for x, weight in _half_rule(points):
         np.exp(np.multiply(fall, x, out=low), out=low)
         np.divide(whole, low, out=high)
-        if slope is not None:
-            for growth in (low, high):
-                np.multiply(slope, growth, out=work)
-                np.add(work, bottom, out=work)
-                np.divide(growth, work, out=growth)
+        for growth in (low, high):
+            np.multiply(brake.slope, growth, out=work)
+            work += bottom
+            growth /= work  # noqa: PLW2901  # in place on purpose: the buffers are reused
         np.subtract(high, low, out=work)
-        np.add(high, low, out=low)
+        low += high
         low *= weight
         sums += low
         work *= weight * (0.5 - x)
         tilts += work
-    if slope is None:
-        sums /= bottom
-        tilts /= bottom
     tilts += 0.5 * sums
     sums *= length
     tilts *= length * length
-    if knot.any():
-        tilts += knot * sums
-    return tilts, sums
+    return tilts + knot * sums, sums
 
 
-def _hard(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
-    """Rows whose least deceleration is small: 32 points; on a downgrade in the logarithm of the deceleration.
+def _in_log_deceleration(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
+    """Rows on a downgrade whose least deceleration is small: 32 points in the logarithm of the deceleration.
 
     There ``1/a(u)`` has a pole just above the top speed. With ``z = ln a`` the integrals become
     ``∫ u(z)/(e^z + |s|) dz / k`` and ``∫ 1/(e^z + |s|) dz / k``, whose nearest singularity is π away.
     """
-    shape = np.broadcast_shapes(speed.shape, knot.shape, brake.slope.shape, brake.at_zero.shape)
-    down = np.broadcast_to(brake.slope < 0.0, shape)
-    if down.all():
-        return _in_log_deceleration(speed, knot, brake)
-    distance, time = _quadrature(speed, knot, brake, HARD_POINTS)
-    if down.any():
-        rows = np.array(down)
-        distance, time = (np.array(np.broadcast_to(x, shape)) for x in (distance, time))
-        distance[rows], time[rows] = _in_log_deceleration(some(speed, rows), some(knot, rows), brake.part(rows))
-    return distance, time
-
-
-def _in_log_deceleration(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
-    """The downgrade's integrals in z = ln a, between the knot and `speed`."""
     down = -brake.slope
     lowest = brake.at_zero * np.exp(-brake.fall_per_mps * speed) - down
     bottom = np.log(lowest)
-    span = np.log(brake.at_zero * np.exp(-brake.fall_per_mps * knot) - down) - bottom
+    span = np.log(_at_knot(knot, brake) - down) - bottom
     sums, moments = np.zeros(span.shape), np.zeros(span.shape)
     for x, weight in zip(*_rule(HARD_POINTS), strict=True):
         part = np.exp(bottom + span * x) + down
