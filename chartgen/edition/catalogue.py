@@ -55,10 +55,10 @@ class GapRule:
 
 
 def _driver(key: str, reaction: Reaction, source: Source, **names: str) -> DriverPreset:
-    return DriverPreset(key=f"reaction/{key}", name=_names(names), reaction=reaction, source=source)
+    return DriverPreset(key=f"reaction/{key}", name=_names(**names), reaction=reaction, source=source)
 
 
-def _names(names: Mapping[str, str]) -> Text:
+def _names(**names: str) -> Text:
     return MappingProxyType({tag.replace("_", "-"): text for tag, text in names.items()})
 
 
@@ -70,8 +70,8 @@ DRIVERS: Mapping[str, DriverPreset] = MappingProxyType(
                 "alert",
                 Reaction(time_s=0.67),
                 Source(
-                    text="The Highway Code (Great Britain), rule 126: its thinking distances in metres are 0.67 s of travel "
-                    "(those in feet 0.68 s); held by its critics to fit only a highly alert driver",
+                    text="The Highway Code (Great Britain), rule 126: its thinking distances in metres are 0.67 s of "
+                    "travel (those in feet 0.68 s); held by its critics to fit only a highly alert driver",
                     kind="rule of thumb",
                 ),
                 en_GB="Highly alert", en_US="Highly alert", cy="Effro iawn", fr="Très attentif", ar="شديد الانتباه",
@@ -110,8 +110,8 @@ DRIVERS: Mapping[str, DriverPreset] = MappingProxyType(
                 "surprise",
                 Reaction(time_s=_SURPRISE_P85, percentile="p85", mu=_SURPRISE_MU, sigma=_SURPRISE_SIGMA),
                 Source(
-                    text="Koppa, Human Factors, in Traffic Flow Theory (FHWA), chapter 3: lognormal brake reaction time "
-                    "to a surprise, location 0.17, scale 0.44 of ln(t/s)",
+                    text="Koppa, Human Factors, in Traffic Flow Theory (FHWA), chapter 3: lognormal brake reaction "
+                    "time to a surprise, location 0.17, scale 0.44 of ln(t/s)",
                     kind="measured",
                     from_memory=True,
                 ),
@@ -151,13 +151,9 @@ SURFACES: Mapping[str, SurfacePreset] = MappingProxyType(
         for preset in (
             SurfacePreset(
                 key="surface/wet-minimum",
-                name=_names(
-                    dict(
-                        en_GB="Wet road, suggested minimum", en_US="Wet road, suggested minimum",
+                name=_names(en_GB="Wet road, suggested minimum", en_US="Wet road, suggested minimum",
                         cy="Ffordd wlyb, isafswm a awgrymir", fr="Chaussée mouillée, minimum suggéré",
-                        ar="طريق مبلل، الحد الأدنى المقترح", es_US="Pavimento mojado, mínimo sugerido",
-                    )
-                ),
+                        ar="طريق مبلل، الحد الأدنى المقترح", es_US="Pavimento mojado, mínimo sugerido"),
                 # Through 0.4 at 30 mile/h and 0.3 at 80 mile/h; both constants rounded to the side of less friction.
                 friction=Friction(f60=0.383, sp_kmh=279.0),
                 state="wet",
@@ -177,16 +173,12 @@ GAP_RULES: Mapping[str, GapRule] = MappingProxyType(
         for rule in (
             GapRule(
                 key="gap/per-length",
-                name=_names(
-                    dict(
-                        en_GB="One second for each 10 ft of vehicle, one more above 40 mph",
+                name=_names(en_GB="One second for each 10 ft of vehicle, one more above 40 mph",
                         en_US="One second for each 10 ft of vehicle, one more above 40 mph",
                         cy="Un eiliad am bob 10 tr o gerbyd, ac un arall dros 40 mya",
                         fr="Une seconde par 10 ft de véhicule, une de plus au-dessus de 40 mph",
                         ar="ثانية لكل 10 أقدام من طول المركبة، وثانية إضافية فوق 40 ميلاً في الساعة",
-                        es_US="Un segundo por cada 10 pies de vehículo y uno más a más de 40 mph",
-                    )
-                ),
+                        es_US="Un segundo por cada 10 pies de vehículo y uno más a más de 40 mph"),
                 fixed_s=None,
                 per_length_s_per_m=1 / (10 * FOOT_M),
                 extra_s=1.0,
@@ -194,21 +186,18 @@ GAP_RULES: Mapping[str, GapRule] = MappingProxyType(
                 wet_factor=1.0,
                 ice_factor=1.0,
                 source=Source(
-                    text="Commercial driver’s license manual (United States), section on space ahead", kind="rule of thumb"
+                    text="Commercial driver’s license manual (United States), section on space ahead",
+                    kind="rule of thumb",
                 ),
             ),
             GapRule(
                 key="gap/two-seconds",
-                name=_names(
-                    dict(
-                        en_GB="Two seconds; four on a wet road, twenty on ice or snow",
+                name=_names(en_GB="Two seconds; four on a wet road, twenty on ice or snow",
                         en_US="Two seconds; four on a wet road, twenty on ice or snow",
                         cy="Dwy eiliad; pedair ar ffordd wlyb, ugain ar rew neu eira",
                         fr="Deux secondes ; quatre sur chaussée mouillée, vingt sur glace ou neige",
                         ar="ثانيتان؛ أربع على طريق مبلل، وعشرون على الجليد أو الثلج",
-                        es_US="Dos segundos; cuatro sobre mojado, veinte sobre hielo o nieve",
-                    )
-                ),
+                        es_US="Dos segundos; cuatro sobre mojado, veinte sobre hielo o nieve"),
                 fixed_s=2.0,
                 per_length_s_per_m=None,
                 extra_s=0.0,
@@ -223,12 +212,8 @@ GAP_RULES: Mapping[str, GapRule] = MappingProxyType(
             ),
             GapRule(
                 key="gap/two-seconds-law",
-                name=_names(
-                    dict(
-                        en_GB="Two seconds, by law", en_US="Two seconds, by law", cy="Dwy eiliad, yn ôl y gyfraith",
-                        fr="Deux secondes, selon la loi", ar="ثانيتان بحكم القانون", es_US="Dos segundos, por ley",
-                    )
-                ),
+                name=_names(en_GB="Two seconds, by law", en_US="Two seconds, by law", cy="Dwy eiliad, yn ôl y gyfraith",
+                        fr="Deux secondes, selon la loi", ar="ثانيتان بحكم القانون", es_US="Dos segundos, por ley"),
                 fixed_s=2.0,
                 per_length_s_per_m=None,
                 extra_s=0.0,

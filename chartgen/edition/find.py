@@ -9,7 +9,7 @@ from decimal import Decimal
 from pathlib import Path
 from typing import Any
 
-from chartgen.edition.walk import ID_PATTERN, near
+from chartgen.edition.reading import ID_PATTERN, near
 from chartgen.errors import CommandFault, EditionFaults, Fault, MachineFault
 from chartgen.resources import starters
 
@@ -56,7 +56,9 @@ def read_text(file: Path, shown: str) -> str:
         with file.open("rb") as stream:
             data = stream.read(MOST_BYTES + 1)
     except OSError as fault:
-        raise MachineFault(f'"{shown}" cannot be read: {fault.strerror}', "check the file and its permissions") from fault
+        raise MachineFault(
+            f'"{shown}" cannot be read: {fault.strerror}', "check the file and its permissions"
+        ) from fault
     if len(data) > MOST_BYTES:
         raise EditionFaults((Fault(shown, "", "the file is larger than 1 MB", "at most 1,000,000 bytes"),))
     try:
@@ -74,7 +76,9 @@ def read_toml(text: str, shown: str) -> dict[str, Any]:
     try:
         return tomllib.loads(text, parse_float=Decimal)
     except RecursionError as fault:
-        raise EditionFaults((Fault(shown, "", "lists or tables stand too deep in one another", "a flat file"),)) from fault
+        raise EditionFaults(
+            (Fault(shown, "", "lists or tables stand too deep in one another", "a flat file"),)
+        ) from fault
     except ValueError as fault:
         raise EditionFaults((Fault(shown, "", f"this is not TOML: {_plain(str(fault))}", _TOML_HINT),)) from fault
 

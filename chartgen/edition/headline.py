@@ -6,32 +6,31 @@ import re
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
-from chartgen.edition.quantity import SPEED, NotAQuantity, parse
-from chartgen.edition.walk import Reading, listed, near
+from chartgen.edition.measures import GRADE, SPEED, NotAQuantityError
+from chartgen.edition.quantity import parse
+from chartgen.edition.reading import Reading, listed, near
 
 NAMES = ("speed", "reaction", "lag", "braking", "stopping")
-OVERRIDES = ("driver", "vehicle", "surface")
+OVERRIDES = ("driver", "vehicle", "surface", "grade")
 PLACEHOLDER = re.compile(r"\{([^{}]*)\}")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Placeholder:
     """`text` as it stands in the headline, braces included; `speed` as given, in the edition's speed unit; `rows`
-    overrides what the poster shows, by "driver", "vehicle" or "surface"."""
+    overrides what the poster shows, by "driver", "vehicle" or "surface"; so does `grade` (a fraction), where stated."""
 
     text: str
     name: str
     speed: float
     speed_unit: str
     rows: Mapping[str, str] = field(default_factory=dict)
+    grade: float | None = None
 
 
 def placeholders(headline: str) -> tuple[Placeholder, ...]:
-    """The placeholders of a headline that passed `check`, in order. Raises ValueError for one that did not."""
+    """The placeholders of a headline that passed `check`, in order."""
     found = [_read(match[0], match[1]) for match in PLACEHOLDER.finditer(headline)]
-    for item in found:
-        if isinstance(item, _Wrong):
-            raise ValueError(item.problem)
     return tuple(item for item in found if isinstance(item, Placeholder))
 
 
@@ -45,23 +44,26 @@ class _Wrong:
 
 def _read(text: str, inside: str) -> Placeholder | _Wrong:
     head, *pairs = (piece.strip() for piece in inside.split(","))
-    name, colon, speed = head.partition(":")
+    name, colon, speed = (piece.strip() for piece in head.partition(":"))
     if name not in NAMES:
         return _Wrong("this placeholder is not known", listed(NAMES), text, near(name, NAMES))
     if not colon:
         return _Wrong("the placeholder names no speed", f"{{{name}:{SPEED.example}}}", text)
-    try:
-        quantity = parse(speed.strip(), SPEED)
-    except NotAQuantity as fault:
-        return _Wrong(f"in a placeholder, {fault.problem}", fault.right.replace('"', ""), text, fault.near)
     rows: dict[str, str] = {}
     for pair in pairs:
         key, equals, value = (piece.strip() for piece in pair.partition("="))
         if key not in OVERRIDES or not equals or not value or key in rows:
-            allowed = f"{{{head}, {listed(OVERRIDES)} = an id}}"
-            return _Wrong("this part of the placeholder is not understood", allowed, text, near(key, OVERRIDES))
+            allowed = f"after the speed: {', '.join(f'{known}=…' for known in OVERRIDES)}, each once"
+            return _Wrong(f'"{pair}" picks no row', allowed, text, near(key, OVERRIDES))
         rows[key] = value
-    return Placeholder(text=text, name=name, speed=float(quantity.number), speed_unit=quantity.unit, rows=rows)
+    try:
+        quantity = parse(speed, SPEED)
+        grade = parse(rows.pop("grade"), GRADE).value if "grade" in rows else None
+    except NotAQuantityError as fault:
+        return _Wrong(f"in this placeholder, {fault.problem}", fault.right, text, fault.near)
+    return Placeholder(
+        text=text, name=name, speed=float(quantity.number), speed_unit=quantity.unit, rows=rows, grade=grade
+    )
 
 
 def check(

@@ -3,19 +3,24 @@
 from __future__ import annotations
 
 import os
+import re
 from collections.abc import Callable, Sequence
 from fractions import Fraction
+from itertools import pairwise
 from pathlib import Path
 from typing import Any, TypeVar, cast
 
 from chartgen.edition import parts, prints
 from chartgen.edition.find import edition_file, read_text, read_toml
+from chartgen.edition.measures import SPEED
 from chartgen.edition.model import PARTS, Case, DistanceUnit, Edition, Rounding, SpeedUnit
-from chartgen.edition.quantity import SPEED, Quantity, factor
+from chartgen.edition.quantity import Quantity, factor
+from chartgen.edition.reading import TAG_PATTERN, Reading, Row, listed, near
 from chartgen.edition.spec import DISTANCE_NAMES, SPEED_NAMES
-from chartgen.edition.walk import Reading, Row, read_table
+from chartgen.edition.walk import read_table
 from chartgen.edition.wording import own_words
 from chartgen.errors import EditionFaults
+from chartgen.resources import templates
 
 MOST_SPEEDS = 200
 MOST_ROWS = 5000
@@ -46,9 +51,9 @@ def load_edition(path: str | os.PathLike[str]) -> Edition:
 
 def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | None:
     _languages_first(reading, raw)
-    root = read_table(reading, raw, "", "")
-    assert root is not None
+    root = cast("Row", read_table(reading, raw, "", ""))
     head: Row = root.get("edition", Row("edition"))
+    _known_languages(reading)
     _document_control(reading, head)
     speed_unit, distance_unit, also_unit = _units(reading, root)
     speeds = _speeds(reading, root, speed_unit)
@@ -136,6 +141,16 @@ def _languages_first(reading: Reading, raw: dict[str, Any]) -> None:
         reading.languages = tuple(dict.fromkeys(tags))
 
 
+def _known_languages(reading: Reading) -> None:
+    known = tuple(sorted(file.stem for file in (templates() / "words").glob("*.po")))
+    for number, tag in enumerate(reading.languages, 1):
+        if tag not in known and re.fullmatch(TAG_PATTERN, tag):
+            reading.fault(
+                f"languages.use[{number}]", "there is no word list for this language", listed(known), given=tag,
+                near=near(tag, known),
+            )  # fmt: skip
+
+
 def _document_control(reading: Reading, head: Row) -> None:
     if "issued" in head and "review_by" in head and head["review_by"] < head["issued"]:
         reading.fault(
@@ -145,9 +160,7 @@ def _document_control(reading: Reading, head: Row) -> None:
             given=head["review_by"],
         )
     if "web_address" in head and not head["web_address"].startswith(("https://", "http://")):
-        reading.fault(
-            head.at("web_address"), "this is not a web address", '"https://…"', given=head["web_address"]
-        )
+        reading.fault(head.at("web_address"), "this is not a web address", '"https://…"', given=head["web_address"])
     if head.get("status") == "controlled":
         for key in ("review_by", "owner", "approver"):
             if key not in head and key not in head.broken:
@@ -158,26 +171,28 @@ def _document_control(reading: Reading, head: Row) -> None:
 # ---- units, speeds, rounding -------------------------------------------------------------------------------------
 
 
-def _units(
-    reading: Reading, root: Row
-) -> tuple[SpeedUnit | None, DistanceUnit | None, DistanceUnit | None]:
+def _units(reading: Reading, root: Row) -> tuple[SpeedUnit | None, DistanceUnit | None, DistanceUnit | None]:
     row: Row = root.get("units", Row("units"))
     by_hand = [key for key in ("speed", "distance") if key in row]
     speed: SpeedUnit | None = None
     distance: DistanceUnit | None = None
     right = 'system = "uk", or both speed = "mph" and distance = "m"'
     if "system" in row and by_hand:
-        reading.fault(row.at(by_hand[0]), "the units are given twice, by system and by hand", right, given=row[by_hand[0]])
+        reading.fault(
+            row.at(by_hand[0]), "the units are given twice, by system and by hand", right, given=row[by_hand[0]]
+        )
     elif "system" in row:
         speed, distance = _SYSTEMS[row["system"]]
     elif len(by_hand) == 2:
-        speed = cast(SpeedUnit, SPEED_NAMES[row["speed"]])
-        distance = cast(DistanceUnit, DISTANCE_NAMES[row["distance"]])
+        speed = cast("SpeedUnit", SPEED_NAMES[row["speed"]])
+        distance = cast("DistanceUnit", DISTANCE_NAMES[row["distance"]])
     elif "units" in root and not row.broken:
         reading.fault(row.at("system"), "the units of speed and distance are missing", right)
-    also = cast(DistanceUnit, DISTANCE_NAMES[row["also"]]) if "also" in row else None
+    also = cast("DistanceUnit", DISTANCE_NAMES[row["also"]]) if "also" in row else None
     if also is not None and also == distance:
-        reading.fault(row.at("also"), "this is the printed distance unit already", "the other unit, or leave it out", given=also)
+        reading.fault(
+            row.at("also"), "this is the printed distance unit already", "the other unit, or leave it out", given=also
+        )
     return speed, distance, also
 
 
@@ -219,11 +234,21 @@ def _speed_is_sound(reading: Reading, where: str, speed: Quantity, unit: str | N
 
 def _rising(reading: Reading, row: Row) -> tuple[Quantity, ...]:
     steps: tuple[Quantity, ...] = row["steps"]
-    for i, (before, after) in enumerate(zip(steps, steps[1:]), 2):
+    for i, (before, after) in enumerate(pairwise(steps), 2):
         if after.number == before.number:
-            reading.fault(f"speeds.steps[{i}]", "this speed stands there twice", "each speed once", given=_shown(after.number, after.unit))
+            reading.fault(
+                f"speeds.steps[{i}]",
+                "this speed stands there twice",
+                "each speed once",
+                given=_shown(after.number, after.unit),
+            )
         elif after.number < before.number:
-            reading.fault(f"speeds.steps[{i}]", "the speeds do not rise", "from slow to fast", given=_shown(after.number, after.unit))
+            reading.fault(
+                f"speeds.steps[{i}]",
+                "the speeds do not rise",
+                "from slow to fast",
+                given=_shown(after.number, after.unit),
+            )
     return steps
 
 
@@ -248,9 +273,7 @@ def _stepped(reading: Reading, row: Row, unit: str) -> tuple[Quantity, ...]:
     return tuple(Quantity(n, unit, float(n * to_mps)) for n in numbers)
 
 
-def _rounding(
-    reading: Reading, figures: Row, unit: str | None, also: str | None
-) -> Rounding:
+def _rounding(reading: Reading, figures: Row, unit: str | None, also: str | None) -> Rounding:
     row: Row = figures.get("rounding", Row("figures.rounding"))
     rule = row.get("rule", "up")
     rules = {part: rule.get(part, "up") if isinstance(rule, Row) else rule for part in PARTS}
@@ -309,14 +332,10 @@ def _cases(reading: Reading, root: Row, ids: dict[str, tuple[str, ...]]) -> tupl
 
 
 def _product(case: Case) -> list[tuple[str, str, str, float]]:
-    return [
-        (d, v, s, g) for d in case.drivers for v in case.vehicles for s in case.surfaces for g in case.grades
-    ]
+    return [(d, v, s, g) for d in case.drivers for v in case.vehicles for s in case.surfaces for g in case.grades]
 
 
-def _only_once(
-    reading: Reading, row: Row, case: Case, seen: dict[tuple[str, str, str, float], str]
-) -> None:
+def _only_once(reading: Reading, row: Row, case: Case, seen: dict[tuple[str, str, str, float], str]) -> None:
     """A combination in two cases would stand in every table twice."""
     if len(case.drivers) * len(case.vehicles) * len(case.surfaces) * len(case.grades) > MOST_ROWS:
         return
@@ -334,8 +353,8 @@ def _only_once(
 
 
 def _not_too_many(reading: Reading, cases: Sequence[Case], speeds: int) -> None:
-    rows = speeds * sum(
-        len(c.drivers) * len(c.vehicles) * len(c.surfaces) * len(c.grades) for c in cases
-    )
+    rows = speeds * sum(len(c.drivers) * len(c.vehicles) * len(c.surfaces) * len(c.grades) for c in cases)
     if rows > MOST_ROWS:
-        reading.fault("case", f"the cases make {rows:,} rows", f"at most {MOST_ROWS:,} rows: fewer speeds or shorter lists")
+        reading.fault(
+            "case", f"the cases make {rows:,} rows", f"at most {MOST_ROWS:,} rows: fewer speeds or shorter lists"
+        )

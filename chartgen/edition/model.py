@@ -115,7 +115,7 @@ class Rounding:
 
     step: float = 1.0
     also_step: float = 1.0
-    rules: Mapping[Part, Rule] = field(default_factory=lambda: {p: "up" for p in PARTS})
+    rules: Mapping[Part, Rule] = field(default_factory=lambda: dict.fromkeys(PARTS, "up"))
     total: Total = "sum-of-parts"
 
     @property

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from difflib import get_close_matches
 
+from chartgen.edition.measures import NotAQuantityError
 from chartgen.edition.model import Paper
-from chartgen.edition.quantity import NotAQuantity, parse_size
+from chartgen.edition.quantity import parse_size
 
 _INCH = 25.4
 
@@ -20,19 +21,19 @@ LEAST_MM, MOST_MM = 50.0, 2000.0
 
 
 def paper(text: str) -> Paper:
-    """The size named or measured by `text`. Raises NotAQuantity."""
+    """The size named or measured by `text`. Raises NotAQuantityError."""
     if text in SIZES_MM:
         width, height = SIZES_MM[text]
         return Paper(name=text, width_mm=width, height_mm=height)
     if not any(c.isdigit() for c in text) or " " not in text:
         by_lower = {name.lower(): name for name in SIZES_MM}
         close = get_close_matches(text.lower(), by_lower, n=1, cutoff=0.5)
-        raise NotAQuantity(
+        raise NotAQuantityError(
             "this paper size is not known",
             ", ".join(SIZES_MM) + ', or width x height such as "600 mm x 900 mm"',
             by_lower[close[0]] if close else None,
         )
     width, height = parse_size(text)
-    if not (LEAST_MM <= min(width, height) and max(width, height) <= MOST_MM):
-        raise NotAQuantity("this paper size is out of range", f"each side {LEAST_MM:.0f} mm to {MOST_MM:.0f} mm")
+    if not (min(width, height) >= LEAST_MM and max(width, height) <= MOST_MM):
+        raise NotAQuantityError("this paper size is out of range", f"each side {LEAST_MM:.0f} mm to {MOST_MM:.0f} mm")
     return Paper(name=text, width_mm=width, height_mm=height)

@@ -10,8 +10,9 @@ from typing import Literal, TypeVar, cast
 from chartgen.edition.catalogue import DRIVERS, SURFACES
 from chartgen.edition.model import Driver, Friction, Reaction, Source, Surface, Text, Vehicle
 from chartgen.edition.quantity import Quantity
+from chartgen.edition.reading import Reading, Row, listed, near
 from chartgen.edition.spec import FRICTION_BOUNDS, NEEDS_LIMIT, PERCENTILES, REACTION_BOUNDS, TABLES
-from chartgen.edition.walk import Reading, Row, example, listed, near, within
+from chartgen.edition.walk import example, within
 
 _Percentile = Literal["p50", "p85", "p95"]
 _State = Literal["dry", "wet", "snow", "ice"]
@@ -79,9 +80,7 @@ def driver(reading: Reading, row: Row) -> Driver | None:
     # The preset's source vouches for the preset's value only.
     source = _source(row) if own_time or "source" in row or preset is None else preset.source
     name = row["name"] if "name" in row or preset is None else _preset_name(reading, row, preset.name)
-    return Driver(
-        id=row["id"], name=name, reaction=reaction, source=source, preset=preset.key if preset else None
-    )
+    return Driver(id=row["id"], name=name, reaction=reaction, source=source, preset=preset.key if preset else None)
 
 
 def _reaction(reading: Reading, row: Row, preset: Reaction | None) -> Reaction | None:
@@ -167,13 +166,13 @@ def surface(reading: Reading, row: Row, method: str) -> Surface | None:
         name=name,
         friction=friction,
         source=source,
-        state=row.get("state") or (cast(_State, preset.state) if preset else _state_of(row["id"])),
+        state=row.get("state") or (cast("_State", preset.state) if preset else _state_of(row["id"])),
         preset=preset.key if preset else None,
     )
 
 
 def _state_of(surface_id: str) -> _State | None:
-    first = surface_id.split("-")[0]
+    first = surface_id.split("-", maxsplit=1)[0]
     return next((state for state in STATES if state == first), None)
 
 
@@ -279,7 +278,10 @@ def _method_inputs(reading: Reading, row: Row, method: str) -> None:
         value = row[key]
         shown = f"{float(value.number):g} {value.unit}" if isinstance(value, Quantity) else value
         reading.fault(
-            row.at(key), f"the method {method} cannot use this", 'leave it out, or method = "first-principles"', given=shown
+            row.at(key),
+            f"the method {method} cannot use this",
+            'leave it out, or method = "first-principles"',
+            given=shown,
         )
 
 
@@ -312,4 +314,4 @@ def _laden_partner(reading: Reading, row: Row, others: Sequence[Row]) -> str | N
             given=stated,
             near=near(stated, laden),
         )
-    return cast(str, stated)
+    return cast("str", stated)

@@ -10,8 +10,8 @@ from chartgen.edition import headline
 from chartgen.edition.catalogue import GAP_RULES
 from chartgen.edition.model import Cards, Case, Poster, Show
 from chartgen.edition.paper import paper
+from chartgen.edition.reading import Reading, Row, listed, near
 from chartgen.edition.roster import read_roster
-from chartgen.edition.walk import Reading, Row, listed, near
 
 _Row = tuple[str, str, str, float]
 
@@ -119,7 +119,7 @@ def _exists(reading: Reading, where: str, show: Show, item: headline.Placeholder
         item.rows.get("driver", show.drivers[0]),
         item.rows.get("vehicle", show.vehicle),
         item.rows.get("surface", show.surface),
-        show.grade,
+        show.grade if item.grade is None else item.grade,
     )
     if row not in made.rows:
         _no_row(reading, where, row)

@@ -10,7 +10,7 @@ from pathlib import Path
 
 from chartgen.edition.find import read_text
 from chartgen.edition.model import RosterRow
-from chartgen.edition.walk import Reading, listed, near
+from chartgen.edition.reading import Reading, listed, near
 from chartgen.errors import EditionFaults
 
 COLUMNS = ("vehicle_id", "vehicle", "languages", "depot", "holder", "copy_no")
@@ -18,9 +18,7 @@ NEEDED = ("vehicle_id", "vehicle", "languages", "copy_no")
 LONGEST = 80
 
 
-def read_roster(
-    reading: Reading, folder: Path, name: str, vehicles: Mapping[str, bool]
-) -> tuple[RosterRow, ...]:
+def read_roster(reading: Reading, folder: Path, name: str, vehicles: Mapping[str, bool]) -> tuple[RosterRow, ...]:
     """Read the roster `name` in the edition's folder. `vehicles`: id -> whether cards can be made for it.
 
     RFC 4180, UTF-8, commas; `languages` holds one tag or several with spaces between. Faults carry line numbers.
@@ -45,9 +43,7 @@ def read_roster(
     if not _header(reading, shown, lines[0][1] if lines else []):
         return ()
     columns = lines[0][1]
-    rows = [_row(reading, shown, line, dict(zip(columns, cells)), vehicles)
-            if len(cells) == len(columns) else _wrong_width(reading, shown, line, cells, columns)
-            for line, cells in lines[1:]]  # fmt: skip
+    rows = [_row(reading, shown, line, columns, cells, vehicles) for line, cells in lines[1:]]
     if not lines[1:]:
         reading.fault("", "the roster has no cards", "a row for each card below the headings", file=shown)
     good = [row for row in rows if row is not None]
@@ -69,7 +65,12 @@ def _header(reading: Reading, shown: str, columns: list[str]) -> bool:
     for number, column in enumerate(columns):
         if column not in COLUMNS:
             reading.fault(
-                "line 1", "this column is not known", listed(COLUMNS), given=column, near=near(column, COLUMNS), file=shown
+                "line 1",
+                "this column is not known",
+                listed(COLUMNS),
+                given=column,
+                near=near(column, COLUMNS),
+                file=shown,
             )
         elif column in columns[:number]:
             reading.fault("line 1", "this column stands there twice", "each column once", given=column, file=shown)
@@ -79,15 +80,14 @@ def _header(reading: Reading, shown: str, columns: list[str]) -> bool:
     return len(reading.faults) == before
 
 
-def _wrong_width(reading: Reading, shown: str, line: int, cells: list[str], columns: list[str]) -> None:
-    reading.fault(
-        f"line {line}", f"the row has {len(cells)} cells", f"{len(columns)}, one a column", given=",".join(cells), file=shown
-    )
-
-
 def _row(
-    reading: Reading, shown: str, line: int, cells: Mapping[str, str], vehicles: Mapping[str, bool]
+    reading: Reading, shown: str, line: int, columns: list[str], values: list[str], vehicles: Mapping[str, bool]
 ) -> RosterRow | None:
+    if len(values) != len(columns):
+        problem, allowed = f"the row has {len(values)} cells", f"{len(columns)} cells, one a column"
+        reading.fault(f"line {line}", problem, allowed, given=",".join(values), file=shown)
+        return None
+    cells = dict(zip(columns, values, strict=True))
     before = len(reading.faults)
     at = f"line {line}, column "
     for column in NEEDED:
@@ -103,13 +103,14 @@ def _row(
                       near=near(vehicle, vehicles), file=shown)  # fmt: skip
     elif vehicle and not vehicles[vehicle]:
         reading.fault(at + "vehicle", "no case has this vehicle with the driver, surfaces and grade of the cards",
-                      listed([v for v, works in vehicles.items() if works]) or "a [[case]] that has them", given=vehicle,
-                      file=shown)  # fmt: skip
+                      listed([v for v, works in vehicles.items() if works]) or "a [[case]] that has them",
+                      given=vehicle, file=shown)  # fmt: skip
     tags = tuple(cells["languages"].split())
     for tag in tags:
         if tag not in reading.languages:
             reading.fault(at + "languages", "this language is not among languages.use",
-                          " ".join(reading.languages), given=tag, near=near(tag, reading.languages), file=shown)  # fmt: skip
+                          " ".join(reading.languages), given=tag, near=near(tag, reading.languages),
+                          file=shown)  # fmt: skip
     if len(reading.faults) > before:
         return None
     return RosterRow(

@@ -9,7 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal
 
-from chartgen.edition import quantity as q
+from chartgen.edition import measures as q
 
 Form = Literal[
     "text", "texts", "id", "use", "uses", "choice", "quantity", "quantities", "number", "numbers", "flag", "date",
@@ -98,9 +98,7 @@ SPEED_NAMES = {
 }  # fmt: skip
 DISTANCE_NAMES = {"m": "m", "metre": "m", "meter": "m", "ft": "ft", "foot": "ft", "feet": "ft"}
 UNITS: dict[str, Key] = {
-    "system": Key(
-        says="metric (km/h, m), us (mph, ft) or uk (mph, m).", form="choice", choices=("metric", "us", "uk")
-    ),
+    "system": Key(says="metric (km/h, m), us (mph, ft) or uk (mph, m).", form="choice", choices=("metric", "us", "uk")),
     "speed": Key(says="Speed unit by hand.", form="choice", choices=tuple(SPEED_NAMES)),
     "distance": Key(says="Distance unit by hand.", form="choice", choices=tuple(DISTANCE_NAMES)),
     "also": Key(
@@ -131,9 +129,7 @@ ROUNDING: dict[str, Key] = {
     "rule": Key(
         says="up (never short) or nearest; or by part.", form="choice", choices=("up", "nearest"), table="rules"
     ),
-    "total": Key(
-        says="How the total is made.", form="choice", choices=("sum-of-parts", "on-its-own", "controlled")
-    ),
+    "total": Key(says="How the total is made.", form="choice", choices=("sum-of-parts", "on-its-own", "controlled")),
 }
 PERCENTILE_KEYS: dict[str, Key] = {
     p: Key(
@@ -168,9 +164,7 @@ FRICTION: dict[str, Key] = {
         needed=True,
     ),
     "max": Key(says="Cap at low speeds.", form="number", bounds=FRICTION_BOUNDS),
-    "table": Key(
-        says="Friction by speed.", form="text", not_yet="friction from a table of speeds is not made yet"
-    ),
+    "table": Key(says="Friction by speed.", form="text", not_yet="friction from a table of speeds is not made yet"),
 }
 SURFACE: dict[str, Key] = {
     "id": Key(says="Name used in this file and in web addresses.", form="id", needed=True),
@@ -225,9 +219,7 @@ VEHICLE: dict[str, Key] = {
     ),
     "source": Key(says="Where the values come from.", form="text"),
 }
-GRADE_BOUNDS = Bounds(
-    least=-0.30, most=0.30, says="-30 % to 30 %", usual=(-0.12, 0.12), usual_says="-12 % to 12 %"
-)
+GRADE_BOUNDS = Bounds(least=-0.30, most=0.30, says="-30 % to 30 %", usual=(-0.12, 0.12), usual_says="-12 % to 12 %")
 CASE: dict[str, Key] = {
     "driver": Key(says="Ids of drivers.", form="uses", needed=True),
     "vehicle": Key(says="Ids of vehicles.", form="uses", needed=True),
@@ -253,9 +245,7 @@ POSTER: dict[str, Key] = {
     "id": Key(says="Name of the file.", form="id"),
     "layout": Key(says="The drawing.", form="choice", choices=("columns", *LAYOUTS_LATER), later=LAYOUTS_LATER),
     "paper": Key(says='A5 to A0, Letter, Tabloid, or "600 mm x 900 mm".', form="size"),
-    "languages": Key(
-        says="All on one sheet, or one sheet a language.", form="choice", choices=("together", "apart")
-    ),
+    "languages": Key(says="All on one sheet, or one sheet a language.", form="choice", choices=("together", "apart")),
     "headline": Key(
         says="The claim, by language; its numbers are placeholders such as {stopping:70 mph}.",
         form="texts",

@@ -5,106 +5,21 @@ A value that does not pass is noted and left out of what comes back, so that one
 
 from __future__ import annotations
 
-import json
 import re
-from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass, field
-from datetime import date, datetime, time
+from collections.abc import Callable, Sequence
+from datetime import date, datetime
 from decimal import Decimal
-from difflib import get_close_matches
 from math import isfinite
 from typing import Any
 
+from chartgen.edition.measures import Measure, NotAQuantityError
 from chartgen.edition.model import Paper, Text
-from chartgen.edition.quantity import NotAQuantity, Quantity, parse
 from chartgen.edition.paper import paper
+from chartgen.edition.quantity import Quantity, parse
+from chartgen.edition.reading import ID_PATTERN, TAG_PATTERN, Reading, Row, as_written, listed, near
 from chartgen.edition.spec import TABLES, Bounds, Key
-from chartgen.errors import Fault
 
 LONGEST_TEXT = 600
-ID_PATTERN = r"[a-z0-9]([a-z0-9-]{0,62}[a-z0-9])?"
-TAG_PATTERN = r"[a-z]{2,3}(-[A-Z][a-z]{3})?(-([A-Z]{2}|[0-9]{3}))?"
-
-
-@dataclass(slots=True)
-class Reading:
-    """What is gathered while one edition is read."""
-
-    file: str
-    languages: tuple[str, ...] = ()
-    draft: bool = False
-    faults: list[Fault] = field(default_factory=list)
-    warnings: list[str] = field(default_factory=list)
-    unmade: list[str] = field(default_factory=list)
-
-    def fault(
-        self,
-        key: str,
-        problem: str,
-        allowed: str = "",
-        *,
-        given: object = None,
-        near: str | None = None,
-        file: str | None = None,
-    ) -> None:
-        """Note a fault; `given` is the value as it was read, None where there is none."""
-        shown = None if given is None else as_written(given)
-        self.faults.append(Fault(file or self.file, key, problem, allowed, shown, near))
-
-    def missing_text(self, key: str, tag: str) -> None:
-        """A text is not there in one of the edition's languages: a draft may miss it, nothing else may."""
-        if self.draft:
-            self.warn(key, "the text in this language is missing; only a draft may miss it.")
-        else:
-            self.fault(key, "the text in this language is missing; only a draft may miss it", f'{tag} = "…"')
-
-    def warn(self, key: str, sentence: str) -> None:
-        self.warnings.append(f"{key}: {sentence}")
-
-    def not_yet(self, key: str, sentence: str) -> None:
-        self.unmade.append(f"{key}: {sentence}")
-
-
-class Row(dict[str, Any]):
-    """The values of one table that passed. `path` is its key path; `broken` the keys that did not pass."""
-
-    def __init__(self, path: str) -> None:
-        super().__init__()
-        self.path = path
-        self.broken: set[str] = set()
-
-    def at(self, key: str) -> str:
-        return f"{self.path}.{key}" if self.path else key
-
-
-def as_written(value: object) -> str:
-    """A value as it stands in the file, shortened to what fits a line."""
-    if isinstance(value, bool):
-        shown = str(value).lower()
-    elif isinstance(value, str):
-        shown = json.dumps(value, ensure_ascii=False)
-    elif isinstance(value, (date, time)):
-        shown = value.isoformat()
-    elif isinstance(value, Mapping):
-        shown = "{ " + ", ".join(f"{k} = {as_written(v)}" for k, v in value.items()) + " }"
-    elif isinstance(value, list):
-        shown = "[" + ", ".join(as_written(v) for v in value[:8]) + (", …" if len(value) > 8 else "") + "]"
-    else:
-        shown = str(value)
-    return shown if len(shown) <= 80 else shown[:78] + " …"
-
-
-def near(word: str, names: Sequence[str] | Mapping[str, object]) -> str | None:
-    """The one name that `word` is most likely a slip of, or None."""
-    by_lower = {name.lower(): name for name in names}
-    close = get_close_matches(word.lower(), by_lower, n=1, cutoff=0.6)
-    return by_lower[close[0]] if close else None
-
-
-def listed(names: Sequence[str] | Mapping[str, object]) -> str:
-    """ "a, b or c"."""
-    words = list(names)
-    return " or ".join(filter(None, [", ".join(words[:-1]), *words[-1:]]))
 
 
 def read_table(reading: Reading, raw: object, path: str, name: str) -> Row | None:
@@ -116,9 +31,7 @@ def read_table(reading: Reading, raw: object, path: str, name: str) -> Row | Non
     row = Row(path)
     for key in raw:
         if key not in keys:
-            reading.fault(
-                row.at(key), "this key is not known", listed(keys), given=raw[key], near=near(key, keys)
-            )
+            reading.fault(row.at(key), "this key is not known", listed(keys), given=raw[key], near=near(key, keys))
     for key, about in keys.items():
         if key in raw:
             _read_key(reading, row, key, about, raw[key])
@@ -177,7 +90,7 @@ def example(key: str, about: Key, reading: Reading) -> str:
 # ---- one function a form -----------------------------------------------------------------------------------------
 
 
-def _text(reading: Reading, where: str, about: Key, raw: object) -> str | None:
+def _text(reading: Reading, where: str, _about: Key, raw: object) -> str | None:
     if not isinstance(raw, str):
         right = f'in quotes: "{as_written(raw)}"' if isinstance(raw, (int, Decimal, date)) else 'a text in quotes: "…"'
         reading.fault(where, "a text is needed here", right, given=raw)
@@ -219,11 +132,12 @@ def _texts(reading: Reading, where: str, about: Key, raw: object) -> Text | None
         if tag not in raw:
             reading.missing_text(f"{where}.{tag}", tag)
     if reading.draft and not raw:
-        reading.fault(where, "there is no text in any language", example(where.split(".")[-1], about, reading), given=raw)
+        right = example(where.rsplit(".", maxsplit=1)[-1], about, reading)
+        reading.fault(where, "there is no text in any language", right, given=raw)
     return {tag: texts[tag] for tag in tags if tag in texts} or None
 
 
-def _id(reading: Reading, where: str, about: Key, raw: object) -> str | None:
+def _id(reading: Reading, where: str, _about: Key, raw: object) -> str | None:
     if isinstance(raw, str) and re.fullmatch(ID_PATTERN, raw):
         return raw
     mended = re.sub(r"[^a-z0-9]+", "-", raw.lower()).strip("-")[:64].strip("-") if isinstance(raw, str) else ""
@@ -232,7 +146,7 @@ def _id(reading: Reading, where: str, about: Key, raw: object) -> str | None:
     return None
 
 
-def _use(reading: Reading, where: str, about: Key, raw: object) -> str | None:
+def _use(reading: Reading, where: str, _about: Key, raw: object) -> str | None:
     if isinstance(raw, str):
         return raw
     reading.fault(where, "one id is needed here", 'an id in quotes: "…"', given=raw)
@@ -274,33 +188,31 @@ def _choice(reading: Reading, where: str, about: Key, raw: object) -> str | None
 
 
 def _quantity(reading: Reading, where: str, about: Key, raw: object) -> Quantity | None:
-    assert about.measure is not None
+    measure = _measure(about)
     if not isinstance(raw, str):
         if isinstance(raw, (int, Decimal)) and not isinstance(raw, bool):
-            units = listed([f'"{raw} {u}"' for u in dict.fromkeys(_one_spelling(about.measure.units))])
+            units = listed([f'"{raw} {unit}"' for unit in measure.shown_units()])
             reading.fault(where, "a bare number has no unit", f"number and unit in quotes: {units}", given=raw)
         else:
-            reading.fault(where, f"{about.measure.name} is needed here", f'"{about.measure.example}"', given=raw)
+            reading.fault(where, f"{measure.name} is needed here", f'"{measure.example}"', given=raw)
         return None
     try:
-        read = parse(raw, about.measure)
-    except NotAQuantity as fault:
+        read = parse(raw, measure)
+    except NotAQuantityError as fault:
         reading.fault(where, fault.problem, fault.right, given=raw, near=fault.near)
         return None
     return read if within(reading, where, about.bounds, read.value, raw) else None
 
 
-def _one_spelling(units: Mapping[str, str]) -> list[str]:
-    first: dict[str, str] = {}
-    for unit, name in units.items():
-        first.setdefault(name, unit)
-    return list(first.values())
+def _measure(about: Key) -> Measure:
+    if about.measure is None:
+        raise TypeError(f"a quantity without a measure: {about.says}")
+    return about.measure
 
 
 def _quantities(reading: Reading, where: str, about: Key, raw: object) -> tuple[Quantity, ...] | None:
     if not isinstance(raw, list):
-        assert about.measure is not None
-        reading.fault(where, "a list is needed here", f'["{about.measure.example}", …]', given=raw)
+        reading.fault(where, "a list is needed here", f'["{_measure(about).example}", …]', given=raw)
         return None
     if not _counted(reading, where, about, raw, raw):
         return None
@@ -344,14 +256,14 @@ def within(reading: Reading, where: str, bounds: Bounds | None, value: float, ra
     return True
 
 
-def _flag(reading: Reading, where: str, about: Key, raw: object) -> bool | None:
+def _flag(reading: Reading, where: str, _about: Key, raw: object) -> bool | None:
     if isinstance(raw, bool):
         return raw
     reading.fault(where, "yes or no is needed here", "true or false, without quotes", given=raw)
     return None
 
 
-def _date(reading: Reading, where: str, about: Key, raw: object) -> date | None:
+def _date(reading: Reading, where: str, _about: Key, raw: object) -> date | None:
     if isinstance(raw, date) and not isinstance(raw, datetime):
         return raw
     right = "year-month-day without quotes: 2026-11-02"
@@ -367,17 +279,19 @@ def _tags(reading: Reading, where: str, about: Key, raw: object) -> tuple[str, .
     tags = _uses(reading, where, about, raw)
     for number, tag in enumerate(tags or (), 1):
         if not re.fullmatch(TAG_PATTERN, tag):
-            reading.fault(f"{where}[{number}]", "this is not a language tag", 'such as "en-GB", "cy" or "ar"', given=tag)
+            reading.fault(
+                f"{where}[{number}]", "this is not a language tag", 'such as "en-GB", "cy" or "ar"', given=tag
+            )
     return tags
 
 
-def _size(reading: Reading, where: str, about: Key, raw: object) -> Paper | None:
+def _size(reading: Reading, where: str, _about: Key, raw: object) -> Paper | None:
     if not isinstance(raw, str):
         reading.fault(where, "a paper size is needed here", '"A3" or "600 mm x 900 mm"', given=raw)
         return None
     try:
         return paper(raw)
-    except NotAQuantity as fault:
+    except NotAQuantityError as fault:
         reading.fault(where, fault.problem, fault.right, given=raw, near=fault.near)
         return None
 

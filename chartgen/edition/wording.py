@@ -8,7 +8,7 @@ from collections.abc import Mapping
 from pathlib import Path
 
 from chartgen.edition.find import read_text
-from chartgen.edition.walk import Reading, near
+from chartgen.edition.reading import Reading, near
 from chartgen.errors import EditionFaults
 from chartgen.resources import templates
 
@@ -33,7 +33,7 @@ def own_words(reading: Reading, folder: Path) -> Mapping[str, Mapping[str, str]]
 
 
 def _checked(reading: Reading, file: Path, shown: str, english: Mapping[str, tuple[str, str]]) -> Mapping[str, str]:
-    from babel.messages.pofile import PoFileError
+    from babel.messages.pofile import PoFileError  # noqa: PLC0415 - see _entries
 
     try:
         read_text(file, shown)
@@ -59,7 +59,8 @@ def _checked(reading: Reading, file: Path, shown: str, english: Mapping[str, tup
 
 def _entries(file: Path) -> dict[str, tuple[str, str]]:
     """Word key -> (English, translation)."""
-    from babel.messages.pofile import read_po
+    # Only an edition with own wording needs it.
+    from babel.messages.pofile import read_po  # noqa: PLC0415
 
     catalogue = read_po(io.BytesIO(file.read_bytes()), abort_invalid=True)
     return {m.context: (str(m.id), str(m.string)) for m in catalogue if m.id and m.context and not m.fuzzy}
