@@ -29,7 +29,8 @@ def check_complete(edition: Edition) -> None:
 
     The edition's own words were held against the word lists at the front door.
     """
-    faults = tuple(fault for position, tag in enumerate(edition.languages) for fault in _faults(edition, position, tag))
+    tags = enumerate(edition.languages, 1)
+    faults = tuple(fault for position, tag in tags for fault in _faults(edition, position, tag))
     if faults:
         raise EditionFaults(faults)
 
@@ -39,18 +40,18 @@ def _faults(edition: Edition, position: int, tag: str) -> Iterator[Fault]:
     try:
         babel_locale(tag)
     except (UnknownLocaleError, ValueError):
-        problem = "is not a language tag that is known here"
+        problem = "this is not a known language tag"
         yield Fault(edition.file, place, problem, _tags(), tag, _near(tag, available()))
         return
     if tag not in available() and not edition.own_words.get(tag):
         allowed = _tags() + ", or own words for it"
-        yield Fault(edition.file, place, "has no word list", allowed, tag, _near(tag, available()))
+        yield Fault(edition.file, place, "there is no word list for this language", allowed, tag, _near(tag, available()))
         return
     if edition.status != "draft":
         for key in untranslated(edition, tag):
             english = read_words(MASTER).entries[key].english
             yield Fault(
-                edition.file, place, f'has no translation of the word "{key}" ("{english}")',
+                edition.file, place, f'the word "{key}" ("{english}") is not translated',
                 'a translation in the word list or in the edition\'s own words, or status = "draft"', tag,
             )
 
