@@ -8,7 +8,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 from typing import Literal
 
@@ -34,6 +34,7 @@ class Plan:
 
     frame: Frame
     measures: Measures
+    needs: Needs
     spots: tuple[Spot, ...]
     plates: tuple[Plate, ...]
     strokes: tuple[canvas.Polygon, ...]
@@ -76,16 +77,30 @@ def plan(
         speed_unit=speed_unit,
         distance_unit=distance_unit,
     )
+    settled = _settle(task, width_mm, height_mm)
+    if any((settled.needs.start_lane, settled.needs.end_lane, settled.needs.before_groups, settled.needs.after_groups)):
+        # Numbers beside the columns make columns and totals smaller: beyond a quarter the totals win.
+        without = _settle(replace(task, lanes=False), width_mm, height_mm)
+        if settled.frame.total_size < 0.75 * without.frame.total_size:
+            return without
+    return settled
+
+
+def _settle(task: Task, width_mm: float, height_mm: float) -> Plan:
+    """Stand the columns, place the words, grant the room they ask for, again until nothing more is asked."""
     needs = Needs()
     while True:
-        still = frame(made, task.readers, m, needs, width=width_mm, height=height_mm, speed_unit=speed_unit, unit=distance_unit)
+        still = frame(
+            task.groups, task.readers, task.measures, needs,
+            width=width_mm, height=height_mm, speed_unit=task.speed_unit, unit=task.distance_unit,
+        )  # fmt: skip
         placed = _place(still, task, needs)
         if placed.needs == needs:
             break
         needs = placed.needs
     return Plan(
-        frame=still, measures=m, spots=tuple(placed.spots), plates=tuple(placed.plates), strokes=tuple(placed.strokes),
-        lintels=tuple(placed.lintels),
+        frame=still, measures=task.measures, needs=needs, spots=tuple(placed.spots), plates=tuple(placed.plates),
+        strokes=tuple(placed.strokes), lintels=tuple(placed.lintels),
     )  # fmt: skip
 
 

@@ -172,7 +172,7 @@ def _sizes(groups: tuple[Group, ...], readers: Readers, row: _Row, m: Measures) 
     total_em = max(readers.widest_ink(totals, "numeral-bold"), 0.01)
     speed_em = readers.widest(speeds, "numeral", 1.0)
     total = min(m.total, row.column / total_em)
-    speed = min(m.speed, 0.92 * row.pitch / speed_em)
+    speed = min(m.speed, 0.82 * row.pitch / speed_em)
     every = 1
     least = m.total_least
     if total < least or speed < m.unit:

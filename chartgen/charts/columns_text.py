@@ -85,6 +85,8 @@ class Task:
     drivers: tuple[Name, ...]
     speed_unit: str
     distance_unit: str
+    lanes: bool = True
+    """Whether numbers may stand beside the columns, in lanes that take room from them."""
 
 
 def ladder(wish: float, least: float) -> tuple[float, ...]:
@@ -174,17 +176,22 @@ def _inner(edge: Edge, m: Measures) -> float:
     return edge.height - 2 * (m.outline + 0.5 if edge.part == "reaction" else 0.4)
 
 
+def _least(part: Part, m: Measures) -> float:
+    return m.lag_least if part == "lag" else m.number_least
+
+
 def _inner_width(post: Post, edge: Edge, m: Measures) -> float:
     """Width within a part that words may fill; the lag's hatch, flat behind words from edge to edge, must stay seen beside them."""
     width = post.x1 - post.x0
-    return width - 2 * {"reaction": m.pad + m.outline, "lag": max(m.pad, 0.15 * width), "braking": m.pad}[edge.part]
+    pad = min(m.pad, 0.08 * width)
+    return width - 2 * {"reaction": pad + m.outline, "lag": max(pad, 0.15 * width), "braking": pad}[edge.part]
 
 
 def _number_size(post: Post, edge: Edge, content: Number, task: Task) -> float | None:
     m = task.measures
     room = _inner_width(post, edge, m)
     em = task.readers.room(content, "numeral", 1.0)[1]
-    for size in ladder(m.number, m.number_least):
+    for size in ladder(m.number, _least(edge.part, m)):
         if size * DIGIT("numeral") <= _inner(edge, m) and size * em <= room and _legible(task, _ON[edge.part], edge.part, size, bold=False):
             return size
     return None
@@ -220,7 +227,7 @@ def _beside(frame: Frame, task: Task, placed: Placed, post: Post, outside: Seque
     m = task.measures
     series = len(task.groups[0].bars)
     first, last = post.series == 0, post.series == series - 1
-    if not (first or last) or post.x1 - post.x0 < 0.8 * m.beside:
+    if not task.lanes or not (first or last) or post.x1 - post.x0 < 0.8 * m.beside:
         return
     digit = DIGIT("numeral") * m.beside
     leader = max(1.2, 0.35 * m.beside)
@@ -265,7 +272,7 @@ def _name_inside(post: Post, edge: Edge, number: Spot, task: Task) -> tuple[Spot
     middle = (edge.low_y + edge.high_y) / 2
     for size, shrink in ((size, shrink) for shrink in _SHRINK[:6] for size in ladder(m.name, m.name_least)):
         figure = _shrunk(number, shrink)
-        if figure.size < m.number_least - 1e-9 or not _legible(task, number.ink, edge.part, figure.size, bold=False):
+        if figure.size < _least(edge.part, m) - 1e-9 or not _legible(task, number.ink, edge.part, figure.size, bold=False):
             continue
         tall, wide = figure.y1 - figure.y0, figure.x1 - figure.x0
         if not _legible(task, _ON[edge.part], edge.part, size, bold=True):
