@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterator
 from difflib import get_close_matches
 
 from babel import UnknownLocaleError
@@ -41,11 +41,11 @@ def _faults(edition: Edition, position: int, tag: str) -> Iterator[Fault]:
         babel_locale(tag)
     except (UnknownLocaleError, ValueError):
         problem = "this is not a known language tag"
-        yield Fault(edition.file, place, problem, _tags(), tag, _near(tag, available()))
+        yield Fault(edition.file, place, problem, _tags(), tag, _near(tag))
         return
     if tag not in available() and not edition.own_words.get(tag):
         allowed = _tags() + ", or own words for it"
-        yield Fault(edition.file, place, "there is no word list for this language", allowed, tag, _near(tag, available()))
+        yield Fault(edition.file, place, "there is no word list for this language", allowed, tag, _near(tag))
         return
     if edition.status != "draft":
         for key in untranslated(edition, tag):
@@ -60,5 +60,8 @@ def _tags() -> str:
     return "one of " + ", ".join(available())
 
 
-def _near(given: str, known: Iterable[str]) -> str | None:
-    return next(iter(get_close_matches(given, list(known), 1)), None)
+def _near(given: str) -> str | None:
+    """A tag with a word list: one of the same language, else one that is spelt much alike."""
+    language = given.partition("-")[0].lower()
+    kin = [tag for tag in available() if tag.partition("-")[0] == language]
+    return next(iter(kin or get_close_matches(given, available(), 1)), None)
