@@ -87,9 +87,9 @@ class Language:
         """0.09 as "9%" or "9 %", as the language has it; at most `decimals` decimals."""
         return numbers.format_percent(fraction, self.tag, decimals)
 
-    def unit(self, name: str) -> str:
-        """Symbol of mph, km/h, m, ft, s, m/s² or ft/s² in the edition's unit style."""
-        return unit_symbol(name, self.tag, self.unit_style, self._word)
+    def unit(self, name: str, *, one: bool = False) -> str:
+        """Symbol of mph, km/h, m, ft, s, m/s² or ft/s² in the edition's unit style; `one`: behind the number 1."""
+        return unit_symbol(name, self.tag, self.unit_style, self._word, one=one)
 
     def unit_name(self, name: str) -> str:
         """The unit in full, without a number, e.g. "metres": m, ft, mph, km/h."""
@@ -97,7 +97,8 @@ class Language:
 
     def distance(self, x: float, unit: str, decimals: int | None = None) -> str:
         """A printed (already rounded) distance with its unit: "23 m". Raises Unprintable where `x` is not rounded."""
-        return self.with_unit(numbers.format_exact(x, self.tag, decimals), unit)
+        number = numbers.format_exact(x, self.tag, decimals)
+        return number + numbers.number_style(self.tag).unit_space + self.unit(unit, one=x == 1)
 
     def speed(self, x: float, unit: str) -> str:
         """A speed as the edition gives it, with its unit; never rounded here."""

@@ -34,15 +34,22 @@ _ONE_OF_EACH_PLURAL = (0, 1, 2, 3, 6, 11, 100)
 """Between them they reach all six plural forms of Welsh and of Arabic, and so of any language here."""
 
 
-def unit_symbol(name: str, tag: str, style: UnitStyle, word: Callable[[str], str]) -> str:
-    """The symbol of the unit `name` (a key of `WORD_KEYS`); `word` looks up a key of the word list."""
+def unit_symbol(name: str, tag: str, style: UnitStyle, word: Callable[[str], str], *, one: bool = False) -> str:
+    """The symbol of the unit `name` (a key of `WORD_KEYS`); `word` looks up a key of the word list.
+
+    `one`: behind the number 1. Feet in American Spanish are a plural word, the one unit here that then changes.
+    """
     if name not in WORD_KEYS:
         raise WordMissing(tag, name, "is not a unit that is printed; units: " + ", ".join(WORD_KEYS))
     if style == "si" and name in _SI:
         return name
     if style == "locale":
-        return cldr_symbol(name, tag) or word(WORD_KEYS[name])
-    return word(WORD_KEYS[name])
+        return cldr_symbol(name, tag) or word(_key(name, one))
+    return word(_key(name, one))
+
+
+def _key(name: str, one: bool) -> str:
+    return "unit.ft_one" if one and name == "ft" else WORD_KEYS[name]
 
 
 @lru_cache(maxsize=256)

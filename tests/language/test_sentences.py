@@ -206,8 +206,10 @@ def test_every_notice_code_of_the_reader_has_its_word(make_edition: MakeEdition,
 def test_the_caution_is_four_sentences_in_every_language(make_edition: MakeEdition) -> None:
     said = {language.tag: caution_sentences(language) for language in languages(make_edition(languages=TAGS))}
     assert said["en-GB"] == (
-        "These figures are worked out, not measured. "
-        + "They serve planning and education, under the assumptions stated here.",
+        (
+            "These figures are worked out, not measured. They serve planning and education, under the assumptions "
+            "stated here."
+        ),
         "They are no guarantee for any driver, vehicle or road: leave more room.",
         "The national code and local law come first.",
         "The design of roads is work for licensed professionals.",

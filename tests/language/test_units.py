@@ -69,6 +69,12 @@ def test_exactly_one_no_break_space_stands_between_number_and_unit(make_edition:
             assert unit == unit.strip()
 
 
+def test_one_foot_is_not_a_plural(make_edition: MakeEdition) -> None:
+    american, spanish = languages(make_edition(languages=("en-US", "es-US")))
+    assert [american.distance(x, "ft") for x in (1, 2)] == ["1\u00a0ft", "2\u00a0ft"]
+    assert [spanish.distance(x, "ft") for x in (1, 2)] == ["1\u00a0pie", "2\u00a0pies"]
+
+
 def test_own_words_of_the_edition_change_a_unit(make_edition: MakeEdition) -> None:
     (language,) = languages(make_edition(own_words={"en-GB": {"unit.ft": "feet"}}, unit_style="own"))
     assert language.distance(75, "ft") == "75\u00a0feet"
