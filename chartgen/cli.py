@@ -59,7 +59,8 @@ def main(argv: Sequence[str]) -> int:
         _say("Stopped. The build folder is as it was.")
         code = 130
     except Exception as error:  # noqa: BLE001  # no traceback ever reaches a person; it goes into a file
-        _say(f"Something went wrong inside chartgen: {type(error).__name__}. Details: {_details()}")
+        what = f"{type(error).__name__}: {str(error)[:200]!r}"
+        _say(f"Something went wrong inside chartgen: {what}. Details: {_details()}")
         code = 3
     return code
 
