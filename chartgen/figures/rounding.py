@@ -5,7 +5,7 @@ such as 0.1 leaves no binary dust: 3 counts of 0.1 is 0.3.
 
 A value within 1e-9 (relative) of a multiple of the step counts as exactly that multiple, and one as close to a tie
 counts as exactly that tie: 30 mph for 1.5 s must not be printed a foot longer because of the 16th binary digit.
-Meaningful for values below 1e8 steps.
+Meaningful from 1e-300 to 1e8 steps.
 """
 
 from __future__ import annotations

@@ -1,6 +1,6 @@
 """The figures as a person reads them in a terminal: plain English, units in the heads, assumptions said.
 
-One block a driver, vehicle, surface and grade. Where a block's table would have to break words it becomes a list, which
+One block a driver, vehicle, surface and grade. A block whose table is wider than the terminal becomes a list, which
 wraps. The text is a function of its arguments only; colour is added when asked for.
 """
 
@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 from rich import box
 from rich.console import Console
+from rich.measure import Measurement
 from rich.padding import Padding
 from rich.table import Table
 
@@ -78,11 +79,13 @@ def _block(console: Console, rows: pd.DataFrame, figures: Figures, edition: Edit
     console.print(f"{driver} · {vehicle} · {surface} · {_grade(assumed.grade)}", style="bold")
     console.print(Padding(_assumed(assumed, edition), (0, 0, 1, 2)), style="dim")
     heads = _heads(rows, figures)
-    if console.width < sum(2 + _least(head) for head in heads.values()):
+    table = _table(rows, heads)
+    # A table that is too wide would lose a column without a word, so it is not tried.
+    if Measurement.get(console, console.options.update(max_width=1000), table).maximum > console.width:
         for line in _list(rows, heads):
             console.print(Padding(line, (0, 0, 0, 2)))
     else:
-        console.print(_table(rows, heads))
+        console.print(table)
     for reason in dict.fromkeys(rows.loc[~rows["stops"].astype(bool), "reason"]):
         console.print(Padding(f"{DOES_NOT_STOP}: {REASONS[reason]}", (0, 0, 0, 2)))
     console.print()
@@ -102,11 +105,6 @@ def _heads(rows: pd.DataFrame, figures: Figures) -> dict[str, str]:
     return heads
 
 
-def _least(head: str) -> int:
-    """The least width of a column, with no word of its head broken; "does not stop" has shorter ones."""
-    return max(len(word) for word in head.split(" "))
-
-
 def _cell(row: pd.Series, column: str) -> str:
     """One printed value; in words where there is none."""
     value = row[column]
@@ -119,9 +117,9 @@ def _table(rows: pd.DataFrame, heads: dict[str, str]) -> Table:
     table = Table(box=box.SIMPLE_HEAD, pad_edge=False, padding=(0, 1), show_edge=False)
     for column, head in heads.items():
         style = "bold" if column == "printed_stopping" else None
-        table.add_column(head, justify="right", min_width=_least(head), style=style)
+        table.add_column(head.replace(" (", "\n("), justify="right", style=style)
     for _, row in rows.iterrows():
-        table.add_row(*(_cell(row, column) for column in heads))
+        table.add_row(*(_cell(row, column).replace("not stop", "not\nstop") for column in heads))
     return table
 
 
