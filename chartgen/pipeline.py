@@ -10,10 +10,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING, Protocol
+from typing import TYPE_CHECKING, Protocol, TypeVar, cast
 
 from chartgen import jobs, output
 from chartgen.edition.model import Edition
@@ -24,6 +24,7 @@ if TYPE_CHECKING:
     from chartgen.language.load import Language
     from chartgen.sheets.sheet import Sheet
 
+T = TypeVar("T")
 STEPS = ("Read", "Work out", "Compose", "Print", "Check", "Publish")
 WAITING = "waiting: another chartgen is writing into this folder"
 
@@ -150,7 +151,7 @@ def compose_sheets(works: Sequence[Work], crew: jobs.Crew, progress: Progress) -
         for w in works
         for kind, make in (("posters", _posters), ("cards", _cards))
     ]
-    made = crew.run(work, lambda job: progress.done(job.name))
+    made = _all_or_faults(crew, work, progress)
     return [(*made[2 * i], *made[2 * i + 1]) for i in range(len(works))]
 
 
@@ -176,13 +177,31 @@ def compose_pages(
         jobs.Job(name=f"{w.edition.id}: pages", key=f"pages {w.edition.id}", work=_pages, args=(w, made))
         for w, made in zip(works, sheets, strict=True)
     ]
-    return crew.run(work, lambda job: progress.done(job.name))
+    return _all_or_faults(crew, work, progress)
 
 
 def _pages(work: Work, sheets: tuple[Sheet, ...]) -> tuple[output.File, ...]:
     from chartgen.site.pages import pages
 
     return tuple(pages(work.edition, work.figures, work.languages, sheets))
+
+
+def _all_or_faults(crew: jobs.Crew, work: Sequence[jobs.Job[T]], progress: Progress) -> list[T]:
+    """The results, or what is wrong with any of them, all at once: a person should not mend one sheet a run."""
+    tried = [jobs.Job(name=j.name, key=j.key, weight=j.weight, work=_tried, args=(j.work, j.args)) for j in work]
+    results = crew.run(tried, lambda job: progress.done(job.name))
+    if faults := [fault for result in results if isinstance(result, EditionFaults) for fault in result.faults]:
+        raise EditionFaults(tuple(dict.fromkeys(faults)))
+    if findings := [finding for result in results if isinstance(result, ProductFaults) for finding in result.findings]:
+        raise ProductFaults(tuple(findings))
+    return cast("list[T]", results)
+
+
+def _tried(work: Callable[..., T], args: tuple[object, ...]) -> T | EditionFaults | ProductFaults:
+    try:
+        return work(*args)
+    except (EditionFaults, ProductFaults) as error:
+        return error
 
 
 def print_sheets(
@@ -202,7 +221,7 @@ def print_sheets(
         for made in sheets
         for sheet in made
     ]
-    printed = iter(crew.run(work, lambda job: progress.done(job.name)))
+    printed = iter(_all_or_faults(crew, work, progress))
     return [tuple(output.File(sheet.path, next(printed)) for sheet in made) for made in sheets]
 
 
