@@ -1,0 +1,58 @@
+"""Docstrings of what other floors call: formula, every argument, result, errors, source, and examples that run."""
+
+from __future__ import annotations
+
+import doctest
+import importlib
+import inspect
+import pkgutil
+import re
+from collections.abc import Iterator
+from types import FunctionType, ModuleType
+
+import pytest
+
+import chartgen.motion
+
+MODULES = [importlib.import_module(f"chartgen.motion.{m.name}") for m in pkgutil.iter_modules(chartgen.motion.__path__)]
+
+
+def public_functions() -> Iterator[tuple[ModuleType, FunctionType]]:
+    for module in MODULES:
+        for name, item in vars(module).items():
+            if inspect.isfunction(item) and item.__module__ == module.__name__ and not name.startswith("_"):
+                yield module, item
+
+
+# Helpers between the files of this floor: checks of arguments, and picking rows. Their docstrings are plain.
+PLAIN = {"checked", "checked_friction", "some"}
+CALLED = [f for _, f in public_functions() if f.__name__ not in PLAIN]
+
+
+def test_the_list_is_complete() -> None:
+    assert {f.__name__ for f in CALLED} == {
+        *("stop", "lag", "build_up", "full_braking", "friction_at"),
+        *("sight_metric", "sight_us", "slide_metric", "slide_us", "gap_seconds", "gap_distance_m"),
+    }
+
+
+@pytest.mark.parametrize("function", CALLED, ids=lambda f: f.__name__)
+def test_docstring_has_its_parts(function: FunctionType) -> None:
+    text = inspect.getdoc(function)
+    assert text is not None
+    at = [text.index(part) for part in ("Formula: ", "Args:", "Returns:", "Raises:", "Source: ", ">>> ")]
+    assert at == sorted(at)
+    documented = re.findall(r"^    (\w+): ", text[text.index("Args:") : text.index("Returns:")], flags=re.MULTILINE)
+    assert documented == list(inspect.signature(function).parameters)
+
+
+@pytest.mark.parametrize("module", MODULES, ids=lambda m: m.__name__)
+def test_examples_run(module: ModuleType) -> None:
+    failed, _ = doctest.testmod(module)
+    assert failed == 0
+
+
+def test_every_called_function_has_an_example() -> None:
+    finder = doctest.DocTestFinder(recurse=False)
+    for function in CALLED:
+        assert any(test.examples for test in finder.find(function)), function.__name__
