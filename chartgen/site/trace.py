@@ -1,0 +1,107 @@
+"""The trace: every row of the figures with its inputs and its results before rounding, one table a case."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Final
+
+from markupsafe import Markup, escape
+
+from chartgen.language.html import isolate
+from chartgen.language.load import Language
+from chartgen.language.sentences import assumption_line_html
+from chartgen.site.edition_site import Group, Record, Series, Site, decimals, grade_id, named, slope, slope_plain
+from chartgen.site.tables import Head
+
+_PLACES: Final = 2
+
+# Column of the figures, word of its head, unit.
+_COLUMNS: Final = (
+    ("speed_mps", "quantity.speed", "m/s"),
+    ("friction", "quantity.friction", ""),
+    ("full_deceleration_mps2", "quantity.deceleration", "m/s²"),
+    ("reaction_distance_m", "quantity.reaction", "m"),
+    ("lag_distance_m", "quantity.lag", "m"),
+    ("braking_distance_m", "quantity.braking", "m"),
+    ("stopping_distance_m", "quantity.stopping", "m"),
+    ("stopping_time_s", "quantity.stopping_time", "s"),
+)
+
+
+@dataclass(frozen=True, slots=True)
+class TraceRow:
+    row: int
+    speed: str
+    cells: tuple[Markup, ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Trace:
+    """One driver, vehicle, surface and slope."""
+
+    id: str
+    title: Markup
+    label: str
+    assumptions: Markup
+    heads: tuple[Head, ...]
+    rows: tuple[TraceRow, ...]
+
+
+def traces(site: Site, language: Language) -> Iterator[Trace]:
+    """Every row of the table once, in the order of the pages."""
+    for group in site.groups:
+        for series in group.series:
+            yield _trace(site, language, group, series)
+
+
+def _trace(site: Site, language: Language, group: Group, series: Series) -> Trace:
+    edition = site.edition
+    driver = edition.driver(series.driver)
+    vehicle, surface = edition.vehicle(group.vehicle), edition.surface(group.surface)
+    link = Markup('<a href="#{}">{}</a>')
+    columns = [c for c in _COLUMNS if not all(math.isnan(r[c[0]]) for r in series.records)]
+    if not any(r["lag_distance_m"] > 0 for r in series.records):
+        columns = [c for c in columns if c[0] != "lag_distance_m"]
+    places = decimals(r["printed_speed"] for r in series.records)
+    never = escape(language.t("verdict.does_not_stop"))
+    return Trace(
+        id=f"case-{driver.id}-{group.vehicle}-{group.surface}-{grade_id(group.grade)}",
+        title=Markup(" · ").join(
+            (
+                link.format(f"driver-{driver.id}", named(language, driver.name)),
+                link.format(f"vehicle-{vehicle.id}", named(language, vehicle.name)),
+                link.format(f"surface-{surface.id}", named(language, surface.name)),
+                slope(language, group.grade),
+            )
+        ),
+        label=" · ".join(
+            (*(language.text(x.name) for x in (driver, vehicle, surface)), slope_plain(language, group.grade))
+        ),
+        assumptions=assumption_line_html(language, edition, series.assumption),
+        heads=(
+            Head(language.t("quantity.speed"), isolate(language.unit(site.figures.speed_unit)), "printed_speed"),
+            *(Head(language.t(word), _unit(language, unit), quantity) for quantity, word, unit in columns),
+        ),
+        rows=tuple(
+            TraceRow(
+                int(record["row"]),
+                language.number(float(record["printed_speed"]), places),
+                tuple(_cell(language, record, quantity, never) for quantity, _, _ in columns),
+            )
+            for record in series.records
+        ),
+    )
+
+
+def _unit(language: Language, unit: str) -> Markup:
+    """m/s has no entry of its own in the word lists: metres over seconds, each as the language writes it."""
+    if unit == "m/s":
+        return isolate(f"{language.unit('m')}/{language.unit('s')}")
+    return isolate(language.unit(unit)) if unit else Markup("")
+
+
+def _cell(language: Language, record: Record, quantity: str, never: Markup) -> Markup:
+    value = float(record[quantity])
+    return never if math.isnan(value) else escape(language.number(value, _PLACES))
