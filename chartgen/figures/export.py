@@ -18,7 +18,7 @@ Value = bool | int | float | str | None
 
 PLAIN: Final = (
     "case", "driver", "vehicle", "surface", "grade", "load", "method", "speed_mps",
-    "reaction_time_s", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
+    "reaction_time_s", "reaction_percentile", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
     "friction", "friction_f60", "friction_sp_kmh", "friction_max_mu", "full_deceleration_mps2",
     "reaction_distance_m", "lag_distance_m", "braking_distance_m", "stopping_distance_m", "stopping_time_s",
     "stops", "reason",

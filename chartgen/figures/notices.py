@@ -6,18 +6,18 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Iterator, Mapping
-from typing import TYPE_CHECKING, Final
-
-import numpy as np
-import numpy.typing as npt
-import pandas as pd
+from itertools import product
+from typing import TYPE_CHECKING, Any, Final, NamedTuple
 
 from chartgen.figures.record import Notice
 from chartgen.figures.rounding import CLOSE, shortfall, shortfall_printed
 from chartgen.figures.units import from_metres
 
 if TYPE_CHECKING:
+    import pandas as pd
+
     from chartgen.edition.model import Case, Edition
 
 DESIGN_REACTION_S: Final = 2.0
@@ -35,14 +35,16 @@ REASONS: Final[Mapping[str, str]] = {
 
 def notices(table: pd.DataFrame, edition: Edition) -> tuple[Notice, ...]:
     """All notices of an edition's finished table, in a fixed order; equal ones once."""
+    # Plain lists: a few thousand look-ups in them cost less than one merge of frames.
+    rows = [_Row(*values) for values in zip(*(table[name].tolist() for name in _Row._fields), strict=True)]
+    at = {_key(row): row for row in rows}
     found = [Notice(code="unusual-value", text=text) for text in edition.warnings]
     for number, case in enumerate(edition.cases, start=1):
-        rows = _of_case(table, case)
-        found += _unladen_shorter(rows, edition, number)
-        found += _wet_shorter(rows, edition, number)
-    found += _hybrid(table)
-    found += _does_not_stop(table, edition)
-    found += _gap_unknown(table, edition)
+        found += _unladen_shorter(at, edition, case, number)
+        found += _wet_shorter(at, edition, case, number)
+    found += _hybrid(rows)
+    found += _does_not_stop(rows, edition)
+    found += _gap_unknown(rows, edition)
     found += _may_be_short(table, edition)
     once: dict[tuple[str, tuple[int, ...], str], Notice] = {}
     for notice in found:
@@ -51,114 +53,120 @@ def notices(table: pd.DataFrame, edition: Edition) -> tuple[Notice, ...]:
     return tuple(once.values())
 
 
-def _of_case(table: pd.DataFrame, case: Case) -> pd.DataFrame:
-    """The rows a case asks for, whichever case they are filed under."""
-    return table[
-        table["driver"].isin(case.drivers)
-        & table["vehicle"].isin(case.vehicles)
-        & table["surface"].isin(case.surfaces)
-        & table["grade"].isin(case.grades)
-    ]
+class _Row(NamedTuple):
+    """What the notices look at in a row of the table."""
+
+    row: int
+    driver: str
+    vehicle: str
+    surface: str
+    grade: float
+    speed: float
+    reaction_time_s: float
+    full_deceleration_mps2: float
+    stopping_distance_m: float
+    stops: bool
+    reason: str
+    gap_s: float
+
+    @property
+    def reach(self) -> float:
+        """The total in m; one that never stops is longer than all."""
+        return self.stopping_distance_m if self.stops else math.inf
 
 
-def _shorter(pairs: pd.DataFrame) -> npt.NDArray[np.bool_]:
-    """Where the first total of a merged pair is shorter than the second. One that never stops is longer than all."""
-    first = np.where(pairs["stops"], pairs["stopping_distance_m"], np.inf)
-    second = np.where(pairs["stops_than"], pairs["stopping_distance_m_than"], np.inf)
-    return np.asarray(first < second * (1.0 - CLOSE))
+_Key = tuple[str, str, str, float, float]
 
 
-SIDE: Final = ["row", "driver", "vehicle", "surface", "grade", "speed", "stops", "stopping_distance_m"]
+def _key(row: _Row) -> _Key:
+    return row.driver, row.vehicle, row.surface, row.grade, row.speed
 
 
-def _unladen_shorter(rows: pd.DataFrame, edition: Edition, number: int) -> Iterator[Notice]:
+def _shorter(at: Mapping[_Key, _Row], pairs: Iterable[tuple[_Key, _Key]]) -> list[_Row]:
+    """The first rows of those pairs in which the first total is shorter than the second, in table order."""
+    both = ((at[first], at[second]) for first, second in pairs)
+    return sorted({a for a, b in both if a.reach < b.reach * (1.0 - CLOSE)})
+
+
+def _unladen_shorter(at: Mapping[_Key, _Row], edition: Edition, case: Case, number: int) -> Iterator[Notice]:
     for vehicle in edition.vehicles:
         laden = vehicle.unladen_of
-        if laden is None:
+        if laden is None or not {vehicle.id, laden} <= set(case.vehicles):
             continue
-        pairs = rows.loc[rows["vehicle"] == vehicle.id, SIDE].merge(
-            rows.loc[rows["vehicle"] == laden, SIDE], on=["driver", "surface", "grade", "speed"], suffixes=("", "_than")
-        )
-        pairs = pairs[_shorter(pairs)]
-        if len(pairs):
+        others = product(case.drivers, case.surfaces, case.grades, edition.speeds)
+        short = _shorter(at, (((d, vehicle.id, s, g, v), (d, laden, s, g, v)) for d, s, g, v in others))
+        if short:
             yield Notice(
                 code="unladen-shorter",
                 text=f"Case {number}: vehicle “{vehicle.id}”, unladen, stops shorter than “{laden}”, laden, on "
-                f"{_list(pairs['surface'])} at {_speeds(pairs, edition)}; an empty lorry may need more room, not less.",
+                f"{_list(row.surface for row in short)} at {_speeds(short, edition)}; an empty lorry may need more "
+                "room, not less.",
                 reader=True,
                 fields={"vehicle": vehicle.id, "laden": laden},
-                rows=tuple(int(row) for row in pairs["row"]),
+                rows=_numbers(short),
             )
 
 
-def _wet_shorter(rows: pd.DataFrame, edition: Edition, number: int) -> Iterator[Notice]:
-    dry = [s.id for s in edition.surfaces if s.state == "dry"]
-    for surface in edition.surfaces:
-        if surface.state not in ("wet", "snow", "ice"):
-            continue
-        for other in dry:
-            pairs = rows.loc[rows["surface"] == surface.id, SIDE].merge(
-                rows.loc[rows["surface"] == other, SIDE],
-                on=["driver", "vehicle", "grade", "speed"],
-                suffixes=("", "_than"),
+def _wet_shorter(at: Mapping[_Key, _Row], edition: Edition, case: Case, number: int) -> Iterator[Notice]:
+    here = [surface for surface in edition.surfaces if surface.id in case.surfaces]
+    slippery = [surface for surface in here if surface.state in ("wet", "snow", "ice")]
+    for surface, dry in product(slippery, (s.id for s in here if s.state == "dry")):
+        others = product(case.drivers, case.vehicles, case.grades, edition.speeds)
+        short = _shorter(at, (((d, w, surface.id, g, v), (d, w, dry, g, v)) for d, w, g, v in others))
+        if short:
+            yield Notice(
+                code="wet-shorter",
+                text=f"Case {number}: on surface “{surface.id}” ({surface.state}) "
+                f"{_list(row.vehicle for row in short)} stops shorter than on “{dry}” (dry) at "
+                f"{_speeds(short, edition)}; look at the friction of both.",
+                reader=True,
+                fields={"surface": surface.id, "dry": dry},
+                rows=_numbers(short),
             )
-            pairs = pairs[_shorter(pairs)]
-            if len(pairs):
-                yield Notice(
-                    code="wet-shorter",
-                    text=f"Case {number}: on surface “{surface.id}” ({surface.state}) {_list(pairs['vehicle'])} stops "
-                    f"shorter than on “{other}” (dry) at {_speeds(pairs, edition)}; look at the friction of both.",
-                    reader=True,
-                    fields={"surface": surface.id, "dry": other},
-                    rows=tuple(int(row) for row in pairs["row"]),
-                )
 
 
-def _hybrid(table: pd.DataFrame) -> Iterator[Notice]:
+def _hybrid(rows: list[_Row]) -> Iterator[Notice]:
     """A design reaction time beside an emergency deceleration: a pairing that no authority publishes."""
-    odd = table[
-        (table["reaction_time_s"] >= DESIGN_REACTION_S)
-        & (table["full_deceleration_mps2"] > EMERGENCY_MPS2)
-        & (table["grade"] == 0.0)
+    odd = [
+        row
+        for row in rows
+        if row.reaction_time_s >= DESIGN_REACTION_S and row.full_deceleration_mps2 > EMERGENCY_MPS2 and row.grade == 0.0
     ]
-    for driver, rows in odd.groupby("driver", sort=False):
+    for (driver,), some in _by(odd, "driver").items():
+        most = max(row.full_deceleration_mps2 for row in some)
         yield Notice(
             code="design-reaction-hybrid",
-            text=f"Driver “{driver}” reacts in {rows['reaction_time_s'].iloc[0]:g} s, a time of road design, and "
-            f"brakes with up to {rows['full_deceleration_mps2'].max():.1f} m/s² on {_list(rows['surface'])} with "
-            f"{_list(rows['vehicle'])}, as in an emergency; road design pairs such a time with about 3.4 m/s².",
-            fields={"driver": str(driver)},
-            rows=tuple(int(row) for row in rows["row"]),
+            text=f"Driver “{driver}” reacts in {some[0].reaction_time_s:g} s, a time of road design, and brakes with "
+            f"up to {most:.1f} m/s² on {_list(row.surface for row in some)} with {_list(row.vehicle for row in some)}, "
+            "as in an emergency; road design pairs such a time with about 3.4 m/s².",
+            fields={"driver": driver},
+            rows=_numbers(some),
         )
 
 
-def _does_not_stop(table: pd.DataFrame, edition: Edition) -> Iterator[Notice]:
-    odd = table[~table["stops"].to_numpy(dtype=bool)]
-    for _, rows in odd.groupby(["vehicle", "surface", "grade", "reason"], sort=False):
-        first = rows.iloc[0]
-        vehicle, surface, grade = str(first["vehicle"]), str(first["surface"]), float(first["grade"])
-        reason = str(first["reason"])
+def _does_not_stop(rows: list[_Row], edition: Edition) -> Iterator[Notice]:
+    odd = [row for row in rows if not row.stops]
+    for (vehicle, surface, grade, reason), some in _by(odd, "vehicle", "surface", "grade", "reason").items():
         yield Notice(
             code="does-not-stop",
             text=f"Vehicle “{vehicle}” does not stop on surface “{surface}” at a grade of {_percent(grade)} "
-            f"from {_speeds(rows, edition)}: {REASONS[reason]}.",
+            f"from {_speeds(some, edition)}: {REASONS[reason]}.",
             reader=True,
             fields={"vehicle": vehicle, "surface": surface, "grade": repr(grade), "reason": reason},
-            rows=tuple(int(row) for row in rows["row"]),
+            rows=_numbers(some),
         )
 
 
-def _gap_unknown(table: pd.DataFrame, edition: Edition) -> Iterator[Notice]:
+def _gap_unknown(rows: list[_Row], edition: Edition) -> Iterator[Notice]:
     if edition.cards is None:
         return
-    odd = table[table["gap_s"].isna()]
-    for vehicle, rows in odd.groupby("vehicle", sort=False):
+    for (vehicle,), some in _by([row for row in rows if math.isnan(row.gap_s)], "vehicle").items():
         yield Notice(
             code="gap-unknown",
             text=f"Vehicle “{vehicle}” has no length, which the following-gap rule “{edition.cards.gap}” needs; "
             "its gap is left out.",
-            fields={"vehicle": str(vehicle), "rule": edition.cards.gap},
-            rows=tuple(int(row) for row in rows["row"]),
+            fields={"vehicle": vehicle, "rule": edition.cards.gap},
+            rows=_numbers(some),
         )
 
 
@@ -198,8 +206,20 @@ def may_be_short(rows: pd.DataFrame, edition: Edition) -> dict[str, float]:
     return out
 
 
-def _speeds(rows: pd.DataFrame, edition: Edition) -> str:
-    return f"{_list(sorted(set(rows['speed'])), quote='')} {edition.speed_unit}"
+def _by(rows: Iterable[_Row], *names: str) -> dict[tuple[Any, ...], list[_Row]]:
+    """Rows by the values of these fields, in the order in which they first come."""
+    groups: dict[tuple[Any, ...], list[_Row]] = {}
+    for row in rows:
+        groups.setdefault(tuple(getattr(row, name) for name in names), []).append(row)
+    return groups
+
+
+def _numbers(rows: list[_Row]) -> tuple[int, ...]:
+    return tuple(row.row for row in rows)
+
+
+def _speeds(rows: list[_Row], edition: Edition) -> str:
+    return f"{_list(sorted({row.speed for row in rows}), quote='')} {edition.speed_unit}"
 
 
 def _percent(grade: float) -> str:

@@ -4,12 +4,18 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
+
+import numpy.typing as npt
 
 from chartgen.edition.model import DistanceUnit, Method, Rounding, Source, SpeedUnit
 
 if TYPE_CHECKING:
     import pandas as pd
+
+
+Columns = dict[str, npt.NDArray[Any]]
+"""The table while it is being made: arrays of one length by column name."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

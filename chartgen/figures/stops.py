@@ -7,13 +7,12 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 import numpy.typing as npt
 
+from chartgen.figures.record import Columns
 from chartgen.motion.friction import friction_at
 from chartgen.motion.methods import METHOD_INPUTS
 from chartgen.motion.stopping import Stop
 
 if TYPE_CHECKING:
-    import pandas as pd
-
     from chartgen.edition.model import Method
 
 Floats = npt.NDArray[np.float64]
@@ -31,12 +30,11 @@ UNSET: Final = {
 """Inputs beside friction, each with the value that means "not stated"."""
 
 
-def stops(rows: pd.DataFrame, method: Method) -> dict[str, npt.NDArray[np.generic]]:
-    """The computed columns of `rows` (inputs as in `table.COLUMNS`): distances in m, unrounded, times in s.
+def stops(given: Columns, method: Method) -> Columns:
+    """The computed columns (inputs as in `table.COLUMNS`): distances in m, unrounded, times in s.
 
     Where the vehicle does not stop, braking, total and time are nan; reaction and lag stay; `reason` says why.
     """
-    given = {name: rows[name].to_numpy() for name in rows.columns}
     done = _run(given, method)
     return {
         "friction": _friction(given, method),
@@ -51,10 +49,10 @@ def stops(rows: pd.DataFrame, method: Method) -> dict[str, npt.NDArray[np.generi
     }
 
 
-def _run(given: dict[str, Floats], method: Method) -> Stop:
+def _run(given: Columns, method: Method) -> Stop:
     """The method's own function with the inputs it can use; one that it cannot use must not be there at all."""
     inputs = METHOD_INPUTS[method]
-    arguments: dict[str, Floats] = {}
+    arguments: Columns = {}
     for name, unset in UNSET.items():
         if inputs.usable(name):
             arguments[name] = given[name]
@@ -65,7 +63,7 @@ def _run(given: dict[str, Floats], method: Method) -> Stop:
     return inputs.function(given["speed_mps"], **arguments)
 
 
-def _friction(given: dict[str, Floats], method: Method) -> Floats:
+def _friction(given: Columns, method: Method) -> Floats:
     """Friction at each row's speed; nan for a method that takes a deceleration instead."""
     if not METHOD_INPUTS[method].usable("friction"):
         return np.full(len(given["speed_mps"]), np.nan)

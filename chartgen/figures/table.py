@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from itertools import product
 from typing import Final
 
 import numpy as np
@@ -13,7 +14,7 @@ from chartgen.edition.catalogue import GAP_RULES
 from chartgen.edition.model import Edition, Source
 from chartgen.figures.gaps import gaps
 from chartgen.figures.notices import notices
-from chartgen.figures.record import Figures, Notice
+from chartgen.figures.record import Columns, Figures, Notice
 from chartgen.figures.rounding import print_parts
 from chartgen.figures.stops import stops
 from chartgen.figures.units import from_metres
@@ -22,14 +23,11 @@ __all__ = ["COLUMNS", "Figures", "Notice", "figures", "select"]
 
 Floats = npt.NDArray[np.float64]
 
-KEY: Final = ["driver", "vehicle", "surface", "grade", "speed"]
-"""What makes two rows the same row, whichever case asks for it."""
-
 PRINTED: Final = ("reaction", "lag", "braking", "stopping")
 
 COLUMNS: Final = (
     "row", "case", "driver", "vehicle", "surface", "grade", "load", "state", "method", "speed", "speed_mps",
-    "reaction_time_s", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
+    "reaction_time_s", "reaction_percentile", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
     "friction_mu", "friction_f60", "friction_sp_kmh", "friction_max_mu", "friction", "full_deceleration_mps2",
     "reaction_distance_m", "lag_distance_m", "braking_distance_m", "stopping_distance_m", "stopping_time_s",
     "stops", "reason",
@@ -40,10 +38,10 @@ COLUMNS: Final = (
 """Columns of the table, in order.
 
 `case` counts from 1; the case that first asks for a row keeps it. `grade` is a fraction, uphill +. `load` and `state`
-are "" where the edition does not say. `friction` is the coefficient at the row's speed, nan where none is used.
-`full_deceleration_mps2` is the deceleration as full braking begins, slope included. Distances in m, unrounded, nan
-where the vehicle does not stop; `printed_…` in the printed unit after rounding, `printed_also_…` in the second unit,
-from the unrounded value. `gap_…` nan without a following-gap rule.
+are "" where the edition does not say; `reaction_percentile` is "" for a fixed time. `friction` is the coefficient at
+the row's speed, nan where none is used. `full_deceleration_mps2` is the deceleration as full braking begins, slope
+included. Distances in m, unrounded, nan where the vehicle does not stop; `printed_…` in the printed unit after
+rounding, `printed_also_…` in the second unit, from the unrounded value. `gap_…` nan without a following-gap rule.
 """
 
 
@@ -53,10 +51,12 @@ def figures(edition: Edition) -> Figures:
     A row that does not stop keeps its reaction and lag; its braking, total and time are nan and `reason` says why.
     Where the edition leaves a choice open the longer distance is printed.
     """
-    table = _assumptions(edition)
-    table = table.assign(**stops(table, edition.method))
-    table = table.assign(**_printed(table, edition), **gaps(table, edition))
-    table = table[list(COLUMNS)]
+    columns = _assumptions(edition)
+    columns |= stops(columns, edition.method)
+    columns |= _printed(columns, edition)
+    columns |= gaps(columns, edition)
+    # The frame is made once, of finished columns: growing it column by column costs more than the mechanics.
+    table = pd.DataFrame({name: columns[name] for name in COLUMNS})
     return Figures(
         edition_id=edition.id,
         speed_unit=edition.speed_unit,
@@ -91,48 +91,48 @@ def select(
     return table[keep].sort_values("speed_mps", kind="stable")
 
 
-def _assumptions(edition: Edition) -> pd.DataFrame:
+def _assumptions(edition: Edition) -> Columns:
     """One row a combination, each once, in the order case, driver, vehicle, surface, grade, speed, with its inputs."""
-    rows = pd.concat(
-        [
-            pd.MultiIndex.from_product(
-                [[number], case.drivers, case.vehicles, case.surfaces, case.grades, range(len(edition.speeds))],
-                names=["case", "driver", "vehicle", "surface", "grade", "speed"],
-            ).to_frame(index=False)
-            for number, case in enumerate(edition.cases, start=1)
-        ]
-    )
-    rows = rows.drop_duplicates(KEY).reset_index(drop=True)
-    which = rows["speed"].to_numpy()
-    rising = np.argsort(np.array(edition.speeds_mps), kind="stable")
-    speed = np.array(edition.speeds)[rising][which]
-    ids = {name: rows[name].to_numpy() for name in ("driver", "vehicle", "surface")}
-    drivers = {d.id: d for d in edition.drivers}
-    vehicles = {v.id: v for v in edition.vehicles}
-    surfaces = {s.id: s for s in edition.surfaces}
-    friction = [surfaces[i].friction for i in ids["surface"]]
-    vehicle = [vehicles[i] for i in ids["vehicle"]]
-    return rows.assign(
-        row=np.arange(len(rows)),
+    rising = sorted(range(len(edition.speeds)), key=lambda i: edition.speeds_mps[i])
+    rows: dict[tuple[str, str, str, float, int], int] = {}
+    for number, case in enumerate(edition.cases, start=1):
+        for row in product(case.drivers, case.vehicles, case.surfaces, case.grades, rising):
+            rows.setdefault(row, number)
+    drivers, vehicles, surfaces, grades, which = zip(*rows, strict=True)
+    known_drivers = {d.id: d for d in edition.drivers}
+    known_vehicles = {v.id: v for v in edition.vehicles}
+    known_surfaces = {s.id: s for s in edition.surfaces}
+    vehicle = [known_vehicles[i] for i in vehicles]
+    surface = [known_surfaces[i] for i in surfaces]
+    reaction = [known_drivers[i].reaction for i in drivers]
+    friction = [s.friction for s in surface]
+    speed = np.array(edition.speeds)[list(which)]
+    return {
+        "row": np.arange(len(rows)),
+        "case": np.array(list(rows.values())),
+        "driver": np.array(drivers, dtype=object),
+        "vehicle": np.array(vehicles, dtype=object),
+        "surface": np.array(surfaces, dtype=object),
         # Adding zero turns a grade of "-0 %" into plain 0.
-        grade=rows["grade"].to_numpy(dtype=np.float64) + 0.0,
-        load=[v.load or "" for v in vehicle],
-        state=[surfaces[i].state or "" for i in ids["surface"]],
-        method=edition.method,
-        speed=speed,
-        printed_speed=speed,
-        speed_mps=np.array(edition.speeds_mps)[rising][which],
-        reaction_time_s=np.array([drivers[i].reaction.time_s for i in ids["driver"]]),
-        brake_lag_s=np.array([v.brake_lag_s for v in vehicle]),
-        build_up_s=np.array([v.build_up_s for v in vehicle]),
-        brake_efficiency=np.array([v.brake_efficiency for v in vehicle]),
-        max_deceleration_mps2=_or([v.max_deceleration_mps2 for v in vehicle], np.inf),
-        friction_mu=_or([f.mu for f in friction], np.nan),
-        friction_f60=_or([f.f60 for f in friction], np.nan),
-        friction_sp_kmh=_or([f.sp_kmh for f in friction], np.nan),
-        friction_max_mu=_or([f.max_mu for f in friction], np.inf),
-        length_m=_or([v.length_m for v in vehicle], np.nan),
-    )
+        "grade": np.array(grades, dtype=np.float64) + 0.0,
+        "load": np.array([v.load or "" for v in vehicle], dtype=object),
+        "state": np.array([s.state or "" for s in surface], dtype=object),
+        "method": np.full(len(rows), edition.method, dtype=object),
+        "speed": speed,
+        "printed_speed": speed,
+        "speed_mps": np.array(edition.speeds_mps)[list(which)],
+        "reaction_time_s": np.array([r.time_s for r in reaction]),
+        "reaction_percentile": np.array([r.percentile or "" for r in reaction], dtype=object),
+        "brake_lag_s": np.array([v.brake_lag_s for v in vehicle]),
+        "build_up_s": np.array([v.build_up_s for v in vehicle]),
+        "brake_efficiency": np.array([v.brake_efficiency for v in vehicle]),
+        "max_deceleration_mps2": _or([v.max_deceleration_mps2 for v in vehicle], np.inf),
+        "friction_mu": _or([f.mu for f in friction], np.nan),
+        "friction_f60": _or([f.f60 for f in friction], np.nan),
+        "friction_sp_kmh": _or([f.sp_kmh for f in friction], np.nan),
+        "friction_max_mu": _or([f.max_mu for f in friction], np.inf),
+        "length_m": _or([v.length_m for v in vehicle], np.nan),
+    }
 
 
 def _or(values: list[float | None], missing: float) -> Floats:
@@ -140,17 +140,17 @@ def _or(values: list[float | None], missing: float) -> Floats:
     return np.array([missing if v is None else v for v in values], dtype=np.float64)
 
 
-def _printed(table: pd.DataFrame, edition: Edition) -> dict[str, Floats]:
+def _printed(columns: Columns, edition: Edition) -> Columns:
     """The printed columns, from the unrounded distances, in the edition's unit and in its second one."""
-    out: dict[str, Floats] = {}
+    out: Columns = {}
     for prefix, unit, step in (
         ("printed", edition.distance_unit, edition.rounding.step),
         ("printed_also", edition.also_unit, edition.rounding.also_step),
     ):
         if unit is None:
-            out |= {f"{prefix}_{part}": np.full(len(table), np.nan) for part in PRINTED}
+            out |= {f"{prefix}_{part}": np.full(len(columns["row"]), np.nan) for part in PRINTED}
             continue
-        exact = [from_metres(table[f"{part}_distance_m"].to_numpy(), unit) for part in PRINTED[:3]]
+        exact = [from_metres(columns[f"{part}_distance_m"], unit) for part in PRINTED[:3]]
         printed = print_parts(*exact, rounding=edition.rounding, step=step)
         out |= {f"{prefix}_{part}": getattr(printed, part) for part in PRINTED}
     return out

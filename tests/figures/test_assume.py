@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import csv
 import dataclasses
+import io
 from collections.abc import Callable
 from typing import Any
 
@@ -10,6 +12,7 @@ import pytest
 
 from chartgen.edition.model import Case, Driver, Edition, Friction, Reaction, Rounding, Source, Surface, Vehicle
 from chartgen.figures.assume import AtSpeed, assumptions
+from chartgen.figures.export import to_csv
 from chartgen.figures.record import Figures
 from chartgen.figures.table import figures, select
 
@@ -60,6 +63,14 @@ def test_all_seven_fields(edition: Edition, found: Figures) -> None:
         "sum-of-parts",
     )
     assert not a.rounding.never_short
+    # The same values in the public data, row by row.
+    public = next(csv.DictReader(io.StringIO(to_csv(dataclasses.replace(found, table=rows)), newline="")))
+    assert {
+        "reaction_time_s": "1.6", "reaction_percentile": "p85", "brake_lag_s": "0.4", "build_up_s": "0.3",
+        "max_deceleration_mps2": "5.0", "brake_efficiency": "0.9", "surface": "wet", "grade": "-0.03", "load": "laden",
+        "rounding_step": "1", "rounding_unit": "m", "rounding_braking": "nearest", "rounding_total": "sum-of-parts",
+        "full_deceleration_mps2": repr(a.braking.full_mps2.low), "method": "first-principles",
+    }.items() <= public.items()  # fmt: skip
 
 
 def test_friction_that_falls_is_given_at_both_ends(edition: Edition, found: Figures) -> None:
