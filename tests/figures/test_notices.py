@@ -116,6 +116,15 @@ def test_design_reaction_with_emergency_braking(time_s: float, mu: float, hybrid
         assert not found[0].reader
 
 
+def test_a_hill_does_not_make_braking_an_emergency(make_edition: Make) -> None:
+    """3.9 m/s² on the level are 4.9 up a hill of 10 %; the pairing is judged on the level."""
+    slow = Driver(id="slow", name={"en-GB": "Slow"}, reaction=Reaction(time_s=2.5), source=HERE)
+    case = Case(drivers=("slow",), vehicles=("car",), surfaces=("dry",), grades=(0.0, 0.10))
+    edition = make_edition(drivers=(slow,), surfaces=(road("dry", 0.4, "dry"),), cases=(case,))
+    assert figures(edition).table["full_deceleration_mps2"].max() > 4.5
+    assert not of(edition, "design-reaction-hybrid")
+
+
 def test_does_not_stop_says_where_and_why(make_edition: Make) -> None:
     case = Case(drivers=("ready",), vehicles=("car",), surfaces=("dry", "ice"), grades=(0.0, -0.045, -0.09))
     edition = make_edition(surfaces=(DRY, ICE), cases=(case,))
