@@ -1,0 +1,200 @@
+"""The yardstick: what one person writes in an afternoon to make the same outputs, with nothing wasted on purpose.
+
+    python benchmarks/straightforward.py OUT EDITION...
+
+The same editions, figures, fonts, page counts and paper sizes; pyplot chart by chart, one document after another, one
+process. It takes the numbers and the words from chartgen (they cost next to nothing) and checks nothing afterwards.
+"""
+
+from __future__ import annotations
+
+import io
+import sys
+from dataclasses import dataclass
+from pathlib import Path
+
+import fontpkg
+import jinja2
+import matplotlib as mpl
+import numpy as np
+import pandas as pd
+import weasyprint
+
+from chartgen.charts.inks import palette
+from chartgen.edition.load import load_edition
+from chartgen.edition.model import Edition
+from chartgen.figures.export import to_csv, to_json
+from chartgen.figures.record import Figures
+from chartgen.figures.table import figures, select
+from chartgen.language.headline import headline_plain
+from chartgen.language.load import Language, languages
+from chartgen.language.sentences import caution_sentences
+
+mpl.use("svg")
+from matplotlib import font_manager  # noqa: E402
+from matplotlib import pyplot as plt  # noqa: E402
+
+LATIN, ARABIC = "IBM Plex Sans Condensed", "Tajawal"
+WEIGHTS = (400, 700)
+
+PAGE = jinja2.Template("""<!doctype html><html lang="{{ language.tag }}" dir="{{ language.direction }}"><meta charset="utf-8">
+<title>{{ title }}</title><h1>{{ title }}</h1>
+{% for chart, rows in blocks %}{{ chart }}<table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>
+{% endfor %}</tr>{% endfor %}</table>{% endfor %}{% for sentence in caution %}<p>{{ sentence }}</p>{% endfor %}</html>""")
+
+SHEET = jinja2.Template("""<!doctype html><html lang="{{ languages[0].tag }}"><meta charset="utf-8"><title>{{ title }}</title>
+<style>{{ faces }}@page{size:{{ width }}mm {{ height }}mm;margin:10mm}body{font:{{ size }}pt "{{ latin }}","{{ arabic }}"}
+h1{font-size:3em;margin:0}svg{width:100%;height:auto}td{padding:1mm 3mm}.two{display:flex}.two>div{width:50%}
+.card{width:105mm;height:140mm;float:left}</style>
+{% for headline in headlines %}<h1>{{ headline }}</h1>{% endfor %}{{ chart }}
+{% for rows in tables %}<div class="{{ kind }}"><table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>
+{% endfor %}</tr>{% endfor %}</table></div>{% endfor %}
+<div class="two">{% for language in languages %}<div dir="{{ language.direction }}">
+{% for sentence in caution(language) %}<p>{{ sentence }}</p>{% endfor %}</div>{% endfor %}</div></html>""")
+
+
+@dataclass(frozen=True)
+class Job:
+    edition: Edition
+    figures: Figures
+    languages: tuple[Language, ...]
+
+
+def register_fonts() -> str:
+    """The fonts for matplotlib, and their @font-face rules for the documents."""
+    faces = ""
+    for name in (LATIN, ARABIC):
+        for file in fontpkg.family(name).files:
+            if file.style == "normal" and file.weight in WEIGHTS and not file.variable:
+                font_manager.fontManager.addfont(file.path)
+                address = Path(file.path).as_uri()
+                faces += f"@font-face{{font-family:'{name}';font-weight:{file.weight};src:url('{address}')}}"
+    plt.rcParams["font.family"] = [LATIN, ARABIC]
+    return faces
+
+
+def chart(job: Job, series: list[pd.DataFrame], speakers: tuple[Language, ...], width_mm: float, height_mm: float) -> str:
+    """Stacked bars with every part and total labelled, named in each of the `speakers`, as an SVG."""
+    inks = palette(job.edition.palette)
+    first = speakers[0]
+    fig, ax = plt.subplots(figsize=(width_mm / 25.4, height_mm / 25.4))
+    wide = 0.8 / len(series)
+    for number, rows in enumerate(series):
+        places = np.arange(len(rows)) + number * wide
+        under = np.zeros(len(rows))
+        for part in ("reaction", "lag", "braking"):
+            lengths = np.nan_to_num(rows[f"{part}_distance_m"].to_numpy(dtype=float))
+            if not lengths.any():
+                continue
+            words = " / ".join(dict.fromkeys(language.t(f"part.{part}") for language in speakers))
+            bars = ax.bar(places, lengths, wide * 0.9, bottom=under, label=words, color=inks.ink(part).srgb, hatch="//")
+            printed = rows[f"printed_{part}"].to_numpy(dtype=float)
+            ax.bar_label(bars, ["" if np.isnan(x) else first.number(x) for x in printed], label_type="center")
+            under += lengths
+        for place, top, total in zip(places, under, rows["printed_stopping"].to_numpy(dtype=float), strict=True):
+            text = first.t("verdict.does_not_stop") if np.isnan(total) else first.number(total)
+            ax.text(place, top, text, ha="center", va="bottom", weight="bold")
+    ax.set_xticks(np.arange(len(series[0])), [first.number(s) for s in series[0]["printed_speed"]])
+    ax.set_xlabel(" / ".join(language.unit(job.figures.speed_unit) for language in speakers))
+    ax.set_ylabel(" / ".join(language.unit(job.figures.distance_unit) for language in speakers))
+    if first.direction == "rtl":
+        ax.invert_xaxis()
+        ax.yaxis.tick_right()
+    ax.legend(loc="upper left")  # its own search for the best place would take a third of the time
+    out = io.StringIO()
+    fig.savefig(out, format="svg")
+    plt.close(fig)
+    return out.getvalue()
+
+
+def cells(job: Job, language: Language, rows: pd.DataFrame) -> list[list[str]]:
+    unit, out = job.figures.distance_unit, []
+    for row in rows.to_dict("records"):
+        printed = [row[f"printed_{part}"] for part in ("reaction", "lag", "braking", "stopping")]
+        out.append([language.speed(row["printed_speed"], job.figures.speed_unit)])
+        out[-1] += ["–" if np.isnan(x) else language.distance(x, unit) for x in printed]
+    return out
+
+
+def pages(job: Job, folder: Path) -> None:
+    edition, table = job.edition, job.figures.table
+    keys = ["vehicle", "surface", "grade"]
+    for language in job.languages:
+        target = folder / language.tag
+        target.mkdir(parents=True)
+        blocks = {}
+        for key, rows in table.groupby(keys, sort=False):  # each chart once, though two pages show it
+            series = [part for _, part in rows.groupby("driver", sort=False)]
+            lines = [row for part in series for row in cells(job, language, part)]
+            blocks[key] = (chart(job, series, (language,), 180, 104), lines)
+        wanted = {"index": [next(iter(blocks.values()))], "downloads": []}
+        wanted |= {f"surface-{s}": [b for k, b in blocks.items() if k[1] == s] for s in table["surface"].unique()}
+        wanted |= {f"vehicle-{v}": [b for k, b in blocks.items() if k[0] == v] for v in table["vehicle"].unique()}
+        wanted["method"] = [("", cells(job, language, table))]
+        for name, shown in wanted.items():
+            title, caution = language.text(edition.title), caution_sentences(language)
+            text = PAGE.render(language=language, title=title, blocks=shown, caution=caution)
+            (target / f"{name}.html").write_text(text, encoding="utf-8")
+    (folder / "figures.csv").write_text(to_csv(job.figures), encoding="utf-8")
+    (folder / "figures.json").write_text(to_json(job.figures), encoding="utf-8")
+
+
+def document(path: Path, faces: str, **values: object) -> None:
+    html = SHEET.render(faces=faces, latin=LATIN, arabic=ARABIC, caution=caution_sentences, **values)
+    weasyprint.HTML(string=html).write_pdf(path, pdf_variant="pdf/ua-1")
+
+
+def posters(job: Job, folder: Path, faces: str) -> None:
+    edition = job.edition
+    for poster in edition.posters:
+        show, paper = poster.show, poster.paper
+        for speakers in [job.languages] if poster.together else [(language,) for language in job.languages]:
+            series = [
+                select(job.figures, driver=d, vehicle=show.vehicle, surface=show.surface, grade=show.grade)
+                for d in show.drivers
+            ]
+            if show.speeds is not None:
+                series = [rows[rows["speed"].isin(show.speeds)] for rows in series]
+            drawn = chart(job, series, speakers, paper.width_mm - 20, (paper.height_mm - 20) * 0.55)
+            drawn = drawn[drawn.index("<svg") :].replace("<svg", f"<svg role='img' aria-label='{poster.id}'", 1)
+            document(
+                folder / f"{poster.id}-{speakers[0].tag}.pdf", faces, title=poster.id, languages=speakers, chart=drawn,
+                headlines=[headline_plain(language, edition, job.figures, poster) for language in speakers], kind="",
+                tables=[cells(job, speakers[0], rows) for rows in series], size=paper.width_mm / 25,
+                width=paper.width_mm, height=paper.height_mm,
+            )  # fmt: skip
+
+
+def cards(job: Job, folder: Path, faces: str) -> None:
+    plan = job.edition.cards
+    if plan is None:
+        return
+    tags = {language.tag: language for language in job.languages}
+    tables = []
+    for row in plan.roster:
+        for tag in row.languages:
+            rows: list[list[str]] = [[row.vehicle_id, row.depot, row.holder, row.copy_no]]
+            for surface in plan.surfaces:
+                shown = select(job.figures, driver=plan.driver, vehicle=row.vehicle, surface=surface, grade=plan.grade)
+                rows += cells(job, tags[tag], shown)
+            tables.append(rows)
+    document(
+        folder / "cards.pdf", faces, title="cards", languages=job.languages, chart="", headlines=[], tables=tables,
+        kind="card", size=7, width=plan.sheet.width_mm, height=plan.sheet.height_mm,
+    )  # fmt: skip
+
+
+def main(out: Path, names: list[str]) -> None:
+    faces = register_fonts()
+    for name in names:
+        edition = load_edition(name)
+        job = Job(edition, figures(edition), languages(edition))
+        folder = out / edition.id
+        folder.mkdir(parents=True)
+        pages(job, folder)
+        posters(job, folder, faces)
+        cards(job, folder, faces)
+
+
+if __name__ == "__main__":
+    main(Path(sys.argv[1]), sys.argv[2:])
