@@ -7,6 +7,7 @@ are CSS px (96 an inch) as the engine has them; messages say millimetres.
 from __future__ import annotations
 
 import importlib
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
@@ -71,8 +72,7 @@ def _leaves(ink: Ink, page: Any, ancestors: tuple[Any, ...]) -> Iterator[str]:
     containers = (boxes.BlockContainerBox, boxes.FlexContainerBox, boxes.GridContainerBox)
     for box in reversed(ancestors):
         if isinstance(box, containers):
-            left, top = box.content_box_x(), box.content_box_y()
-            beyond = _beyond(ink, left, top, left + box.width, top + box.height)
+            beyond = _beyond(ink, *_room(box))
             if beyond > TOLERANCE_PX:
                 yield _sentence(ink, "leaves its container", beyond)
                 return
@@ -81,6 +81,14 @@ def _leaves(ink: Ink, page: Any, ancestors: tuple[Any, ...]) -> Iterator[str]:
     beyond = _beyond(ink, 0, 0, page.width, page.height)
     if beyond > TOLERANCE_PX:
         yield _sentence(ink, "leaves the page", beyond)
+
+
+def _room(box: Any) -> tuple[float, float, float, float]:
+    """Left, top, right, bottom of what a box may hold. One that is as high as its text has no foot of its own: what
+    it pushes out shows in the boxes around it. Padding is room that the design gives."""
+    left, top = box.padding_box_x(), box.padding_box_y()
+    right, bottom = left + box.padding_width(), top + box.padding_height()
+    return (left, -math.inf, right, math.inf) if box.style["height"] == "auto" else (left, top, right, bottom)
 
 
 def _beyond(ink: Ink, left: float, top: float, right: float, bottom: float) -> float:

@@ -7,6 +7,8 @@ Every number on the page must be accounted for: figures are looked up in the tab
 from __future__ import annotations
 
 import io
+import re
+import unicodedata
 from collections import Counter
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from typing import Any
@@ -15,6 +17,7 @@ import pikepdf
 
 from chartgen.errors import Finding
 from chartgen.figures.record import Figures
+from chartgen.figures.units import from_metres
 from chartgen.language.load import Language
 from chartgen.press import engine
 from chartgen.press.page import Box, InkedFigure, PrintPage
@@ -34,6 +37,12 @@ def _also(language: Language, x: float, figures: Figures) -> str:
     return language.distance(x, figures.also_unit or figures.distance_unit)
 
 
+def _deceleration(language: Language, x: float, figures: Figures) -> str:
+    if figures.distance_unit == "ft":
+        return language.deceleration(float(from_metres(x, "ft")), "ft/s²", 1)
+    return language.deceleration(x)
+
+
 WRITERS: Mapping[str, Writer] = {
     "speed": lambda language, x, figures: language.speed(x, figures.speed_unit),
     "reaction_time_s": lambda language, x, _: language.seconds(x),
@@ -41,9 +50,9 @@ WRITERS: Mapping[str, Writer] = {
     "build_up_s": lambda language, x, _: language.seconds(x),
     "printed_gap_s": lambda language, x, _: language.seconds(x),
     "friction": lambda language, x, _: language.number(x, 2),
-    "max_deceleration_mps2": lambda language, x, _: language.deceleration(x),
+    "max_deceleration_mps2": _deceleration,
     "brake_efficiency": lambda language, x, _: language.percent(x),
-    "grade": lambda language, x, _: language.percent(x),
+    "grade": lambda language, x, _: language.percent(abs(x)),
     **{f"printed_{name}": _distance for name in ("reaction", "lag", "braking", "stopping", "gap_distance")},
     **{f"printed_also_{name}": _also for name in ("reaction", "lag", "braking", "stopping", "gap_distance")},
 }
@@ -117,15 +126,20 @@ def _sentence_problems(
     reading: Reading, sheet: PrintPage, by_tag: Mapping[str, Language]
 ) -> Iterator[tuple[str, str]]:
     whole = squeezed("".join(piece.text for piece in reading.pieces))
-    # A reader gives the runs of a right-to-left line in the order of the eye, so there words are counted.
-    words = Counter(squeezed(word) for piece in reading.pieces for word in piece.text.split())
+    words = Counter(word for piece in reading.pieces for word in _words(piece.text))
     for tag, sentence in sheet.sentences:
         if by_tag[tag].direction == "rtl":
-            missing = Counter(squeezed(word) for word in sentence.split()) - words
+            missing = Counter(_words(sentence)) - words
         else:
             missing = Counter() if squeezed(sentence) in whole else Counter([sentence])
         if missing:
             yield "preflight.sentence-missing", f"{tag}: “{sentence}” is not there ({', '.join(missing)})"
+
+
+def _words(text: str) -> list[str]:
+    """The words of a right-to-left text as they can be found again: a reader gives the runs of a line in the order of
+    the eye and the two letters of a ligature in the order of the font, so words are counted, letters in no order."""
+    return ["".join(sorted(word)) for word in re.findall(r"\w+", unicodedata.normalize("NFKC", text))]
 
 
 def _page_problems(reading: Reading, sheet: PrintPage) -> Iterator[tuple[str, str]]:

@@ -1,7 +1,8 @@
 """What the engine's tag tree leaves out and a reader with a screen reader needs (WCAG 3.1.2; ISO 14289-1, 7.2 to 7.5).
 
 - the language of a passage (`lang` on an inner element);
-- Scope of a header cell;
+- Scope of a header cell, and the header cells of a data cell where the page names them (`headers`): the engine finds
+  those of the first column alone where a header spans several;
 - the true box of a figure, in points from the foot of the page;
 - a drawing with its labels as one figure: an element with ``role="img"`` and ``aria-label`` becomes the Figure with
   that alternative text, and what is inside it belongs to it.
@@ -39,8 +40,22 @@ def completed_tags(page_heights_px: list[float]) -> Iterator[None]:
         tags._build_box_tree = original
 
 
+def _name_headers(box: Any, pydyf: Any) -> None:
+    for child in getattr(box, "children", ()):
+        _name_headers(getattr(child, "_box", child), pydyf)
+    mark, source = getattr(box, "mark", None), box.element
+    if mark is None or source is None:
+        return
+    if mark["S"] == "/TH" and source.get("id"):
+        mark["ID"] = pydyf.String(source.get("id"))
+    if mark["S"] == "/TD" and source.get("headers"):
+        mark["A"]["Headers"] = pydyf.Array(pydyf.String(name) for name in source.get("headers").split())
+
+
 def _complete(element: Any, box: Any, page_height_px: float, pydyf: Any) -> None:
     source = box.element
+    if element["S"] == "/Table":
+        _name_headers(box, pydyf)
     if source is None or not hasattr(source, "get"):
         return
     if language := source.get("lang"):
