@@ -1,16 +1,16 @@
 """matplotlib as a pen in millimetres: convex pieces by ink in, clean textless SVG out.
 
-Every mark is a filled piece (a line is a thin rectangle), so a class that sets `fill` is all the press needs to change inks.
-All pieces of an ink go into one compound path: the file stays small, and overlapping pieces of one ink unite.
+Every mark is a filled piece (a line is a thin rectangle), so a class that sets `fill` is all the press needs to change
+inks. All pieces of an ink go into one compound path: the file stays small, and overlapping pieces of one ink unite.
 """
 
 from __future__ import annotations
 
 import io
 import re
-import xml.etree.ElementTree as ElementTree
 from collections.abc import Iterable
 from typing import Final
+from xml.etree import ElementTree as ET
 
 import matplotlib as mpl
 import numpy as np
@@ -29,6 +29,7 @@ Pieces = tuple[tuple[str, tuple[Polygon, ...]], ...]
 
 _SVG: Final = "{http://www.w3.org/2000/svg}"
 _NUMBER: Final = re.compile(r"-?\d+(?:\.\d+)?")
+_AIR: Final = re.compile(r"\s*([MLz])\s*")
 
 
 def rectangle(x0: float, y0: float, x1: float, y1: float) -> Polygon:
@@ -80,39 +81,44 @@ def compound(polygons: Iterable[Polygon]) -> Path:
         ring = polygon if area(polygon) > 0 else polygon[::-1]
         points += [*ring, ring[0]]
         codes += [int(Path.MOVETO), *[int(Path.LINETO)] * (len(ring) - 1), int(Path.CLOSEPOLY)]
-    return Path(np.array(points).reshape(-1, 2), np.array(codes, dtype=np.uint8))
+    # Micrometres are finer than any press, and the backend writes no digit that is not there.
+    return Path(np.round(np.array(points).reshape(-1, 2), 3), np.array(codes, dtype=np.uint8))
 
 
 def _shorten(data: str) -> str:
-    # Micrometres are finer than any press; the backend writes nanometres.
-    numbers = _NUMBER.sub(lambda m: f"{round(float(m.group()), 3) + 0.0:g}", data)
-    return re.sub(r"\s*([MLz])\s*", r"\1", numbers.replace("\n", "")).strip()
+    return _AIR.sub(r"\1", data.strip())
 
 
 def svg(pieces: Pieces, palette: Palette, width_mm: float, height_mm: float) -> str:
-    """The pieces as one ``<svg>``: viewBox in mm, one ``<path class="ink-NAME" fill="#rrggbb">`` an ink, nothing else."""
+    """The pieces as one ``<svg>``: viewBox in mm, one ``<path class="ink-NAME" fill="#rrggbb">`` an ink."""
     # 72 dots an inch and a figure of width/72 inches: the backend's user unit is then our millimetre.
     figure = Figure(figsize=(width_mm / 72, height_mm / 72), dpi=72, frameon=False)
     upside_down = Affine2D().scale(1, -1).translate(0, height_mm)
     for index, (ink, polygons) in enumerate(pieces):
         if polygons:
             figure.add_artist(
-                PathPatch(compound(polygons), facecolor=palette.ink(ink).srgb, linewidth=0, transform=upside_down, gid=f"{index}-{ink}")
+                PathPatch(
+                    compound(polygons),
+                    facecolor=palette.ink(ink).srgb,
+                    linewidth=0,
+                    transform=upside_down,
+                    gid=f"{index}-{ink}",
+                )
             )
     target = io.StringIO()
     with mpl.rc_context({"svg.hashsalt": "columns"}):
-        FigureCanvasSVG(figure).print_svg(target, metadata=dict.fromkeys(("Creator", "Date", "Format", "Type")))
+        FigureCanvasSVG(figure).print_svg(target, metadata=dict.fromkeys(("Creator", "Date", "Format", "Type")))  # type: ignore[no-untyped-call]
     return _clean(target.getvalue(), palette, width_mm, height_mm)
 
 
 def _clean(source: str, palette: Palette, width_mm: float, height_mm: float) -> str:
-    paths = []
-    for group in ElementTree.fromstring(source).iter(f"{_SVG}g"):  # noqa: S314 our own backend wrote it
-        name = group.get("id", "").partition("-")[2]
-        if not group.get("id", "")[:1].isdigit():
-            continue
-        for path in group.iter(f"{_SVG}path"):
-            paths.append(f'<path class="ink-{name}" fill="{palette.ink(name).srgb}" d="{_shorten(path.get("d", ""))}"/>')
+    paths = [
+        f'<path class="ink-{name}" fill="{palette.ink(name).srgb}" d="{_shorten(path.get("d", ""))}"/>'
+        for group in ET.fromstring(source).iter(f"{_SVG}g")  # noqa: S314 our own backend wrote it
+        if group.get("id", "")[:1].isdigit()  # our own groups; the backend's have names
+        for name in (group.get("id", "").partition("-")[2],)
+        for path in group.iter(f"{_SVG}path")
+    ]
     size = f"{width_mm:g} {height_mm:g}"
     return f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {size}">{"".join(paths)}</svg>'
 
@@ -120,7 +126,7 @@ def _clean(source: str, palette: Palette, width_mm: float, height_mm: float) -> 
 def read_pieces(marks_svg: str) -> Pieces:
     """The pieces of an SVG that `svg` made, back from its path data: for pictures, and for checks of what was inked."""
     found = []
-    for path in ElementTree.fromstring(marks_svg).iter(f"{_SVG}path"):  # noqa: S314 our own writer wrote it
+    for path in ET.fromstring(marks_svg).iter(f"{_SVG}path"):  # noqa: S314 our own writer wrote it
         rings = []
         for ring in path.get("d", "").split("z"):
             numbers = [float(n) for n in _NUMBER.findall(ring)]

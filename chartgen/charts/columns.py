@@ -17,7 +17,8 @@ import pandas as pd
 from chartgen.charts import canvas, columns_marks, measures
 from chartgen.charts.columns_data import Group, groups
 from chartgen.charts.columns_frame import Frame, Needs, frame
-from chartgen.charts.columns_text import Placed, Plate, Spot, Task, names, numbers, ruler, speeds, totals
+from chartgen.charts.columns_names import names
+from chartgen.charts.columns_text import Placed, Plate, Spot, Task, numbers, ruler, speeds, totals
 from chartgen.charts.columns_verdicts import drivers, verdicts
 from chartgen.charts.drawing import Anchor, Direction, Drawing, Label
 from chartgen.charts.fonts import digit_ratio, extent
@@ -41,6 +42,12 @@ class Plan:
     lintels: tuple[tuple[float, float, float, float], ...]
 
     @property
+    def unlabelled(self) -> tuple[int, ...]:
+        """Rows that stop and whose total found no seat."""
+        seated = {spot.row for spot in self.spots if spot.role == "total"}
+        return tuple(post.bar.row for post in self.frame.posts if post.bar.stops and post.bar.row not in seated)
+
+    @property
     def total_digit_mm(self) -> float:
         printed = any(spot.role == "total" for spot in self.spots)
         return self.frame.total_size * digit_ratio("numeral-bold") if printed else 0.0
@@ -61,8 +68,9 @@ def plan(
 ) -> Plan:
     """Stand columns and words for one to three series (slices of the table in speed order).
 
-    `together`: all languages on one drawing; False: each on its own, with the same marks. `names_of_series`: a name by language tag
-    for each series, needed for two or three. Raises ValueError for rows that cannot be drawn and for too small a drawing.
+    `together`: all languages on one drawing; False: each on its own, with the same marks. `names_of_series`: a name by
+    language tag for each series, needed for two or three. Raises ValueError for rows that cannot be drawn and for too
+    small a drawing.
     """
     if len(series) > 1 and len(names_of_series) != len(series):
         raise ValueError("each of several series needs a name")
@@ -79,9 +87,13 @@ def plan(
     )
     settled = _settle(task, width_mm, height_mm)
     if any((settled.needs.start_lane, settled.needs.end_lane, settled.needs.before_groups, settled.needs.after_groups)):
-        # Numbers beside the columns make columns and totals smaller: beyond a quarter the totals win.
+        # Numbers beside the columns make columns and totals smaller: beyond a seventh the totals win.
         without = _settle(replace(task, lanes=False), width_mm, height_mm)
-        if settled.frame.total_size < 0.75 * without.frame.total_size:
+        if (
+            not settled.frame.granted
+            or settled.frame.total_size < 0.85 * without.frame.total_size
+            or len(settled.frame.seats) < len(without.frame.seats)
+        ):
             return without
     return settled
 
@@ -144,15 +156,28 @@ def _labels(spot: Spot, languages: tuple[Words, ...], width: float, direction: D
         x = width - x
         anchor = {"left": "right", "right": "left", "center": "center"}[anchor]  # type: ignore[assignment]
     made = []
+    if spot.inked:
+        x, anchor = _by_ink(spot, block[0].text, width, direction), "center"
     for i, line in enumerate(block):
         # Digits stand on the foot of their box; words centre their capitals on their line.
         baseline = spot.y1 if number else top + (i + 0.5) * pitch + 0.5 * _middle(line.text, spot) * spot.size
         made.append(Label(
-            text=line.text, x_mm=round(x, 3), y_mm=round(baseline, 3), size_mm=round(spot.size, 3), anchor=anchor, face=spot.face,
-            ink=spot.ink, lang=line.words.tag, dir="ltr" if number else line.words.direction, role=spot.role, row=spot.row,
-            quantity=spot.quantity,
+            text=line.text, x_mm=round(x, 3), y_mm=round(baseline, 3), size_mm=round(spot.size, 3), anchor=anchor,
+            face=spot.face,
+            ink=spot.ink, lang=line.words.tag, dir="ltr" if number else line.words.direction, role=spot.role,
+            row=spot.row, quantity=spot.quantity,
         ))  # fmt: skip
     return made
+
+
+def _by_ink(spot: Spot, text: str, width: float, direction: Direction) -> float:
+    """Where the middle of the advance of `text` must stand for its ink to be centred in, or flush with, the spot's
+    box."""
+    reach = extent(text, spot.face)
+    ink = reach.ink * spot.size
+    middle = (spot.x0 + spot.x1) / 2 if spot.align == "center" else spot.x1 - ink / 2
+    middle = width - middle if direction == "rtl" else middle
+    return middle - (reach.before - reach.after) / 2 * spot.size
 
 
 def _middle(text: str, spot: Spot) -> float:
@@ -165,7 +190,9 @@ def _skyline(plan: Plan, direction: Direction) -> tuple[tuple[float, float, floa
     steps = []
     for index, (x0, x1) in enumerate(still.spans):
         tops = [post.top_y for post in still.posts if post.group == index]
-        tops += [spot.y0 for spot in plan.spots if spot.role in {"total", "part", "lag"} and spot.x1 > x0 and spot.x0 < x1]
+        tops += [
+            spot.y0 for spot in plan.spots if spot.role in {"total", "part", "lag"} and spot.x1 > x0 and spot.x0 < x1
+        ]
         tops += [y0 for a, y0, b, _ in plan.lintels if b > x0 and a < x1]
         steps.append((x0, x1, min(tops)))
     if direction == "rtl":
@@ -180,8 +207,8 @@ def finish(plan: Plan, *, name: str, languages: tuple[Words, ...], palette: Pale
     return Drawing(
         name=name, width_mm=still.width, height_mm=still.height, direction=direction,
         marks_svg=draw(plan, palette, direction), labels=write(plan, languages, direction),
-        total_digit_mm=plan.total_digit_mm, course=still.course if jointed else 0.0, scale_mm_per_m=still.scale,
-        skyline=_skyline(plan, direction),
+        total_digit_mm=plan.total_digit_mm, unlabelled=plan.unlabelled, course=still.course if jointed else 0.0,
+        scale_mm_per_m=still.scale, skyline=_skyline(plan, direction),
     )  # fmt: skip
 
 
@@ -201,8 +228,8 @@ def columns(
 ) -> Drawing:
     """Plan, draw and write in one go: all `languages` together on one drawing."""
     made = plan(
-        series, languages=languages, palette=palette, width_mm=width_mm, height_mm=height_mm, distance_unit=distance_unit,
-        speed_unit=speed_unit, names_of_series=names_of_series, medium=medium,
+        series, languages=languages, palette=palette, width_mm=width_mm, height_mm=height_mm,
+        distance_unit=distance_unit, speed_unit=speed_unit, names_of_series=names_of_series, medium=medium,
     )  # fmt: skip
     return finish(made, name=name, languages=languages, palette=palette, direction=direction)
 

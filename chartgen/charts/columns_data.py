@@ -2,17 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Hashable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from typing import Final, Literal
+from typing import Any, Final, Literal
 
 import pandas as pd
+
+from chartgen.charts.words import Number
 
 Part = Literal["reaction", "lag", "braking"]
 PARTS: Final[tuple[Part, ...]] = ("reaction", "lag", "braking")
 _FIELDS: Final = (
-    "row", "speed", "printed_speed", "stops", "reaction_distance_m", "lag_distance_m", "braking_distance_m", "stopping_distance_m",
-    "printed_reaction", "printed_lag", "printed_braking", "printed_stopping",
+    "row", "speed", "printed_speed", "stops", "reaction_distance_m", "lag_distance_m", "braking_distance_m",
+    "stopping_distance_m", "printed_reaction", "printed_lag", "printed_braking", "printed_stopping",
 )  # fmt: skip
 MOST_SERIES: Final = 3
 """Scenarios side by side (requirement N8)."""
@@ -20,8 +22,8 @@ MOST_SERIES: Final = 3
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Bar:
-    """One row. `lengths_m` are unrounded, of the parts of `PARTS` in order, a part that is nothing left out; `printed` the same
-    parts' printed figures. Where it does not stop the braking part has no length and no figure."""
+    """One row. `lengths_m` are unrounded, of the parts of `PARTS` in order, a part that is nothing left out; `printed`
+    the same parts' printed figures. Where it does not stop the braking part has no length and no figure."""
 
     row: int
     speed: float
@@ -47,12 +49,14 @@ class Group:
     bars: tuple[Bar | None, ...]
 
 
-def _bar(record: dict[str, float], *, with_lag: bool) -> Bar:
+def _bar(record: Mapping[Hashable, Any], *, with_lag: bool) -> Bar:
     stops = bool(record["stops"])
     parts = tuple(part for part in PARTS if part != "lag" or with_lag)
     measured = tuple(part for part in parts if stops or part != "braking")
     lengths = tuple(float(record[f"{part}_distance_m"]) for part in measured)
-    if not all(length >= 0 for length in lengths):  # also refuses nan: a bar of no length must never pass for a short one
+    if not all(
+        length >= 0 for length in lengths
+    ):  # also refuses nan: a bar of no length must never pass for a short one
         raise ValueError(f"row {int(record['row'])}: a part has no length to draw ({lengths})")
     kept = tuple(i for i, length in enumerate(lengths) if length > 0)
     return Bar(
@@ -68,7 +72,8 @@ def _bar(record: dict[str, float], *, with_lag: bool) -> Bar:
 
 
 def groups(series: Sequence[pd.DataFrame]) -> tuple[Group, ...]:
-    """One group a speed, in the speeds' order. Each of one to three frames is a slice of the table with one row a speed.
+    """One group a speed, in the speeds' order. Each of one to three frames is a slice of the table with one row a
+    speed.
 
     Raises ValueError for another number of series, for a speed twice in one series, and for no rows at all.
     """
@@ -98,3 +103,26 @@ def decimals(values: Sequence[float]) -> int:
     """Decimal places (0 to 3) that write every finite one of these printed values as it is."""
     finite = [value for value in values if value == value]  # noqa: PLR0124 nan is what differs from itself
     return next((places for places in range(3) if all(abs(round(v, places) - v) < 1e-9 for v in finite)), 3)
+
+
+def distances(groups: tuple[Group, ...]) -> tuple[Number, ...]:
+    """The printed totals of the columns that end."""
+    values = [bar.printed_total for bar in all_bars(groups) if bar.stops]
+    places = distance_decimals(groups)
+    return tuple(Number(value, places) for value in values)
+
+
+def distance_decimals(groups: tuple[Group, ...]) -> int:
+    """Decimal places of every distance of the drawing."""
+    return decimals([v for bar in all_bars(groups) for v in (*bar.printed, bar.printed_total)])
+
+
+def speed_contents(groups: tuple[Group, ...]) -> tuple[Number, ...]:
+    """The printed speeds, group by group."""
+    places = decimals([group.printed_speed for group in groups])
+    return tuple(Number(group.printed_speed, places) for group in groups)
+
+
+def all_bars(groups: tuple[Group, ...]) -> Iterator[Bar]:
+    """Every bar, in the order in which the columns stand."""
+    return (bar for group in groups for bar in group.bars if bar is not None)

@@ -1,22 +1,30 @@
-"""Where the columns stand: scale, base line, widths, ruler. Logical millimetres: x runs in reading direction from the start
-edge, so one frame serves both directions; y runs downwards."""
+"""Where the columns stand: scale, base line, widths, ruler. Logical millimetres: x runs in reading direction from the
+start edge, so one frame serves both directions; y runs downwards."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Final
 
-from chartgen.charts.columns_data import Bar, Group, Part, decimals
-from chartgen.charts.fonts import digit_ratio
+from chartgen.charts.columns_data import (
+    Bar,
+    Group,
+    Part,
+    all_bars,
+    distance_decimals,
+    distances,
+    speed_contents,
+)
+from chartgen.charts.columns_ruler import course_step, ruler_ticks
+from chartgen.charts.columns_totals import TOTAL_GAP, Column, Seat, seats
+from chartgen.charts.fonts import digit_ratio, extent
 from chartgen.charts.measures import Measures
-from chartgen.charts.words import Content, Number, Readers, Unit
+from chartgen.charts.words import Content, Number, Readers, Unit, say
 from chartgen.figures.units import METRES_IN
 
-TOTAL_GAP: Final = 0.1
-"""Air between a column and its total, as a part of the total's font size."""
-_COURSES: Final = {"m": (10.0, 20.0, 50.0, 100.0, 200.0, 500.0), "ft": (25.0, 50.0, 100.0, 200.0, 500.0, 1000.0, 2000.0)}
+_LEAST_JOINTED_MM: Final = 2.0
+"""A column narrower than this has no joints: they would shimmer, and nobody counts them."""
 _LEAST_PART_MM: Final = 0.4
 """A part that is something is never drawn as nothing."""
 
@@ -61,7 +69,8 @@ class Edge:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Post:
-    """One column: its row, where it stands, its parts. `top_y` is the exact end of the stopping distance (0 without one)."""
+    """One column: its row, where it stands, its parts. `top_y` is the exact end of the stopping distance (0 without
+    one)."""
 
     group: int
     series: int
@@ -91,11 +100,16 @@ class Frame:
     spans: tuple[tuple[float, float], ...]
     """Start and end of each group."""
     every: int
-    """Every how-manieth group is labelled, counted back from the last; 1 unless the columns are too narrow for numbers."""
+    """Every how-manieth group is labelled, counted back from the last; 1 unless the columns are too narrow for
+    numbers."""
     total_size: float
+    seats: tuple[Seat, ...]
+    """Where totals sit; `Seat.column` counts the posts."""
     speed_size: float
     course: float
     course_mm: float
+    granted: bool
+    """False where the columns stand too close for the room that was asked for between them."""
     columns_end: float
     ruler_x: float
     ticks: tuple[tuple[float, float | None], ...]
@@ -110,7 +124,8 @@ class Frame:
 def part_edges(bar: Bar, base_y: float, scale: float, gap: float, top_y: float) -> tuple[Edge, ...]:
     """The parts of a bar stacked on the base line from unrounded lengths, a white gap centred on each boundary.
 
-    A part thinner than the gap keeps a visible sliver and pushes the boundary above it up; the column's end stays exact.
+    A part thinner than the gap keeps a visible sliver and pushes the boundary above it up; the column's end stays
+    exact.
     """
     marks = [base_y]
     for length in bar.lengths_m:
@@ -121,7 +136,7 @@ def part_edges(bar: Bar, base_y: float, scale: float, gap: float, top_y: float) 
         parts = (*parts, "braking")
     last = len(parts) - 1
     for i in range(last):
-        eaten = gap if 0 < i else gap / 2
+        eaten = gap if i > 0 else gap / 2
         marks[i + 1] = min(marks[i + 1], marks[i] - eaten - _LEAST_PART_MM)
     return tuple(
         Edge(part=part, low_y=marks[i] - (gap / 2 if i else 0), high_y=marks[i + 1] + (gap / 2 if i < last else 0))
@@ -139,6 +154,7 @@ class _Row:
     gutter: float
     end: float
     ruler_x: float
+    granted: bool
 
 
 def _across(n: int, series: int, width: float, ruler: float, m: Measures, needs: Needs) -> _Row:
@@ -147,67 +163,120 @@ def _across(n: int, series: int, width: float, ruler: float, m: Measures, needs:
     end = ruler_x - needs.names_lane - needs.end_lane - m.gutter * 0.4
     room = end - start
     gutter = max(m.gutter * (1.0 if series == 1 else 2.0), needs.before_groups + needs.after_groups)
+    granted = gutter <= room / n * 0.5
     gutter = min(gutter, room / n * 0.5)
     group = (room - (n - 1) * gutter) / n
     widest = 0.26 * width * (1 + 0.5 * (series - 1))
     if group > widest:  # few speeds: keep pillars, spread them
         group = widest
         gutter = (room - n * group) / (n - 1) if n > 1 else 0.0
-        if gutter > group:
-            gutter = group
+        gutter = min(gutter, group)
         start = start + (room - n * group - (n - 1) * gutter) / 2
     spans = tuple((start + i * (group + gutter), start + i * (group + gutter) + group) for i in range(n))
     pair = min(m.pair, 0.2 * group / series)
     return _Row(
-        spans=spans, column=(group - (series - 1) * pair) / series, pitch=group + gutter, gutter=gutter, end=end, ruler_x=ruler_x
+        spans=spans,
+        column=(group - (series - 1) * pair) / series,
+        pitch=group + gutter,
+        gutter=gutter,
+        end=end,
+        ruler_x=ruler_x,
+        granted=granted,
     )
 
 
-def _sizes(groups: tuple[Group, ...], readers: Readers, row: _Row, m: Measures) -> tuple[float, float, int]:
-    """(font size of totals, of speeds, every how-manieth group is labelled)."""
-    totals = distances(groups)
-    speeds = speed_contents(groups)
-    series = len(groups[0].bars)
-    # As wide as its column where it is inked: a capital on its pillar.
-    total_em = max(readers.widest_ink(totals, "numeral-bold"), 0.01)
-    speed_em = readers.widest(speeds, "numeral", 1.0)
-    total = min(m.total, row.column / total_em)
+def _every(groups: tuple[Group, ...], readers: Readers, row: _Row, m: Measures) -> tuple[float, int]:
+    """(font size of the speeds, every how-manieth group is labelled)."""
+    speed_em = readers.widest(speed_contents(groups), "numeral", 1.0)
+    total_em = readers.widest_ink(distances(groups), "numeral-bold")
     speed = min(m.speed, 0.82 * row.pitch / speed_em)
-    every = 1
-    least = m.total_least
-    if total < least or speed < m.unit:
-        total, speed = max(total, least), max(speed, m.unit)
-        every = math.ceil(max(1.12 * total * total_em * series, 1.2 * speed * speed_em) / row.pitch)
-    return total, speed, every
+    if speed >= m.unit:
+        return speed, 1
+    return m.unit, math.ceil(max(1.2 * m.unit * speed_em, 0.8 * m.total_least * total_em) / row.pitch)
 
 
-def distances(groups: tuple[Group, ...]) -> tuple[Number, ...]:
-    """The printed totals of the columns that end."""
-    values = [bar.printed_total for bar in all_bars(groups) if bar.stops]
-    places = distance_decimals(groups)
-    return tuple(Number(value, places) for value in values)
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Standing:
+    """A bar and where it stands across."""
+
+    group: int
+    series: int
+    bar: Bar
+    x0: float
+    x1: float
 
 
-def distance_decimals(groups: tuple[Group, ...]) -> int:
-    """Decimal places of every distance of the drawing."""
-    return decimals([v for bar in all_bars(groups) for v in (*bar.printed, bar.printed_total)])
+def _standing(groups: tuple[Group, ...], row: _Row) -> tuple[_Standing, ...]:
+    series = len(groups[0].bars)
+    pair = (row.spans[0][1] - row.spans[0][0] - series * row.column) / max(series - 1, 1)
+    return tuple(
+        _Standing(group=g, series=s, bar=bar, x0=x0, x1=x0 + row.column)
+        for g, group in enumerate(groups)
+        for s, bar in enumerate(group.bars)
+        if bar is not None
+        for x0 in (row.spans[g][0] + s * (row.column + pair),)
+    )
 
 
-def speed_contents(groups: tuple[Group, ...]) -> tuple[Number, ...]:
-    places = decimals([group.printed_speed for group in groups])
-    return tuple(Number(group.printed_speed, places) for group in groups)
+def _seated(
+    standing: tuple[_Standing, ...],
+    groups: tuple[Group, ...],
+    readers: Readers,
+    row: _Row,
+    base_y: float,
+    every: int,
+    m: Measures,
+    head: float,
+) -> tuple[float, float, tuple[Seat, ...]]:
+    """(font size of the totals, scale, seats): the largest size at which every total has a seat."""
+    places, ratio, last = distance_decimals(groups), digit_ratio("numeral-bold"), len(groups) - 1
+    inks = [
+        readers.widest_ink([Number(s.bar.printed_total, places)], "numeral-bold")
+        if s.bar.stops and (last - s.group) % every == 0 else None
+        for s in standing
+    ]  # fmt: skip
+    widest = max((ink for ink in inks if ink is not None), default=0.0)
+    air = total_air(groups, readers)
+
+    def attempt(size: float, reach: float | None = None) -> tuple[float, float, tuple[Seat, ...], int]:
+        scale = _scale(groups, base_y, size, air, head, m)
+        columns = [
+            Column(x0=s.x0, x1=s.x1, top=base_y - s.bar.known_m * scale if s.bar.stops else 0.0, ink=ink, air=air)
+            for s, ink in zip(standing, inks, strict=True)
+        ]
+        found, without = seats(columns, size, size * ratio, reach=reach, all_or_none=reach is None)
+        return size, scale, found, without
+
+    if not widest:
+        return attempt(m.total_least)[:3]
+    pillar = min(m.total, row.column / widest)
+    greatest = min(m.total, 1.6 * row.column / widest)
+    # A little larger is not worth leaving the pillar for.
+    wishes = [greatest * (pillar * 1.1 / greatest) ** (i / 6) for i in range(7)] if greatest > 1.1 * pillar else []
+    for size in (*wishes, pillar, (pillar + m.total_least) / 2, m.total_least):
+        if size >= m.total_least:
+            tried = attempt(size)
+            if not tried[3]:
+                return tried[:3]
+    return attempt(m.total_least, reach=math.inf)[:3]
 
 
-def all_bars(groups: tuple[Group, ...]) -> Iterator[Bar]:
-    return (bar for group in groups for bar in group.bars if bar is not None)
+def total_air(groups: tuple[Group, ...], readers: Readers) -> float:
+    """Air between a column and its total, as a part of the font size."""
+    said = [say(number, setting[0]) for number in distances(groups) for setting in readers.settings]
+    return max(TOTAL_GAP, max((extent(text, "numeral-bold").below for text in said), default=0.0) + 0.03)
 
 
-def _scale(groups: tuple[Group, ...], base_y: float, total_size: float, head: float, m: Measures) -> float:
+def _scale(groups: tuple[Group, ...], base_y: float, total_size: float, air: float, head: float, m: Measures) -> float:
     ending = [bar.known_m for bar in all_bars(groups) if bar.stops]
     endless = [bar.known_m for bar in all_bars(groups) if not bar.stops]
     wishes = []
     if ending:
-        top = (digit_ratio("numeral-bold") + TOTAL_GAP + 0.02) * total_size + 0.5 + (max(head, 0.5 * m.broken) if endless else 0.0)
+        top = (
+            (digit_ratio("numeral-bold") + air + 0.02) * total_size
+            + 0.5
+            + (max(head, 0.5 * m.broken) if endless else 0.0)
+        )
         wishes.append((base_y - top) / max(ending))
     if endless and max(endless) > 0:
         wishes.append(0.45 * (base_y - head) / max(endless))
@@ -216,69 +285,53 @@ def _scale(groups: tuple[Group, ...], base_y: float, total_size: float, head: fl
     return min(wishes)
 
 
-def _step(unit: str, scale: float, room_mm: float, steps: tuple[float, ...]) -> float:
-    metres = METRES_IN[unit]
-    return next((step for step in steps if step * metres * scale >= room_mm), steps[-1])
-
-
-def _ruler(
-    unit: str, scale: float, base_y: float, longest_m: float, endless: bool, m: Measures
-) -> tuple[tuple[tuple[float, float | None], ...], float]:
-    metres = METRES_IN[unit]
-    step = _step(unit, scale, 2.2 * m.ruler, _COURSES[unit])
-    half = step / 2 if step / 2 * metres * scale >= 1.6 and step != 25 else step
-    top_room = 2.6 * m.ruler
-    reach = (base_y - top_room) / (metres * scale) if endless else min(longest_m / metres, (base_y - top_room) / (metres * scale))
-    ticks = []
-    for i in range(1, int(reach / half + 1e-9) + 1):
-        value = i * half
-        ticks.append((base_y - value * metres * scale, value if abs(value % step) < 1e-9 else None))
-    top = min((y for y, _ in ticks), default=base_y - top_room)
-    return tuple(ticks), top - 1.1 * m.ruler
-
-
-def _posts(groups: tuple[Group, ...], row: _Row, base_y: float, scale: float, m: Measures) -> tuple[Post, ...]:
-    series = len(groups[0].bars)
-    pair = (row.spans[0][1] - row.spans[0][0] - series * row.column) / max(series - 1, 1)
+def _posts(standing: tuple[_Standing, ...], base_y: float, scale: float, m: Measures) -> tuple[Post, ...]:
     posts = []
-    for g, group in enumerate(groups):
-        for s, bar in enumerate(group.bars):
-            if bar is None:
-                continue
-            x0 = row.spans[g][0] + s * (row.column + pair)
-            top = base_y - bar.known_m * scale if bar.stops else 0.0
-            edges = part_edges(bar, base_y, scale, m.gap, top)
-            posts.append(Post(group=g, series=s, bar=bar, x0=x0, x1=x0 + row.column, top_y=top, edges=edges))
+    for s in standing:
+        top = base_y - s.bar.known_m * scale if s.bar.stops else 0.0
+        edges = part_edges(s.bar, base_y, scale, m.gap, top)
+        posts.append(Post(group=s.group, series=s.series, bar=s.bar, x0=s.x0, x1=s.x1, top_y=top, edges=edges))
     return tuple(posts)
 
 
 def frame(
-    groups: tuple[Group, ...], readers: Readers, m: Measures, needs: Needs, *, width: float, height: float, speed_unit: str, unit: str
+    groups: tuple[Group, ...],
+    readers: Readers,
+    m: Measures,
+    needs: Needs,
+    *,
+    width: float,
+    height: float,
+    speed_unit: str,
+    unit: str,
 ) -> Frame:
     """Stand the columns in `width` x `height` mm so that the tallest fits with its total, granting `needs`.
 
     Raises ValueError where the drawing is too small to hold any column.
     """
     longest = max(bar.known_m for bar in all_bars(groups))
+    endless = any(not bar.stops for bar in all_bars(groups))
     unit_words: tuple[Content, ...] = (Unit(unit),)
-    number = Number(float(math.ceil(longest / METRES_IN[unit])))
+    # Where a column does not end, the ruler runs on to the top: up to 1/0.45 of the longest length there is.
+    number = Number(float(math.ceil(longest / METRES_IN[unit] * (2.3 if endless else 1.0))))
     ruler_words = max(readers.widest((number,), "text", m.ruler), readers.widest(unit_words, "text", m.ruler))
     band_words = readers.widest((Unit(speed_unit),), "text", m.unit)
     ruler = max(m.gutter * 0.4 + m.tick + 0.35 * m.ruler + ruler_words, band_words + 0.8 * m.unit) + 0.2
     row = _across(len(groups), len(groups[0].bars), width, ruler, m, needs)
     if row.column <= 0.2:
         raise ValueError(f"{len(groups)} columns do not fit in {width:g} mm")
-    total, speed, every = _sizes(groups, readers, row, m)
+    speed, every = _every(groups, readers, row, m)
     band_y = height - m.band
     base_y = band_y - m.gap - needs.foot
-    scale = _scale(groups, base_y, total, needs.head, m)
-    endless = any(not bar.stops for bar in all_bars(groups))
-    ticks, unit_y = _ruler(unit, scale, base_y, longest, endless, m)
-    course = _step(unit, scale, 2.6 * m.joint + 1.2, _COURSES[unit])
+    standing = _standing(groups, row)
+    total, scale, taken = _seated(standing, groups, readers, row, base_y, every, m, needs.head)
+    ticks, unit_y = ruler_ticks(unit, scale, base_y, longest, endless, m)
+    course = course_step(unit, scale, 2.6 * m.joint + 1.2) if row.column >= _LEAST_JOINTED_MM else 0.0
     return Frame(
         width=width, height=height, base_y=base_y, band_y=band_y, scale=scale,
-        posts=_posts(groups, row, base_y, scale, m),
+        posts=_posts(standing, base_y, scale, m),
         centres=tuple((a + b) / 2 for a, b in row.spans), spans=row.spans,
-        every=every, total_size=total, speed_size=speed, course=course, course_mm=course * METRES_IN[unit] * scale,
-        columns_end=row.end, ruler_x=row.ruler_x, ticks=ticks, unit_y=unit_y,
+        every=every, total_size=total, seats=taken, speed_size=speed, course=course,
+        course_mm=course * METRES_IN[unit] * scale,
+        columns_end=row.end, granted=row.granted, ruler_x=row.ruler_x, ticks=ticks, unit_y=unit_y,
     )  # fmt: skip

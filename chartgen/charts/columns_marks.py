@@ -28,7 +28,13 @@ class _Sheet:
         return tuple((ink, tuple(self.by_ink[ink])) for ink in _ORDER if self.by_ink[ink])
 
 
-def pieces(frame: Frame, plates: tuple[Plate, ...], strokes: tuple[Polygon, ...], lintels: tuple[tuple[float, ...], ...], m: Measures) -> Pieces:
+def pieces(
+    frame: Frame,
+    plates: tuple[Plate, ...],
+    strokes: tuple[Polygon, ...],
+    lintels: tuple[tuple[float, ...], ...],
+    m: Measures,
+) -> Pieces:
     """All pieces of the drawing in logical mm (reading direction), in the order in which they are laid on."""
     sheet = _Sheet()
     for index, post in enumerate(frame.posts):
@@ -52,7 +58,8 @@ def pieces(frame: Frame, plates: tuple[Plate, ...], strokes: tuple[Polygon, ...]
 
 def _reaction(sheet: _Sheet, post: Post, edge: Edge, plates: list[Plate], m: Measures) -> None:
     """Light, outlined, upright lines: still running."""
-    x0, x1, y0, y1, line = post.x0, post.x1, edge.high_y, edge.low_y, m.outline
+    x0, x1, y0, y1 = post.x0, post.x1, edge.high_y, edge.low_y
+    line = min(m.outline, 0.2 * (x1 - x0))
     sheet.add("reaction", rectangle(x0, y0, x1, y1))
     if y1 - y0 <= 2 * line:
         sheet.add("type", rectangle(x0, y0, x1, y1))
@@ -81,15 +88,19 @@ def _lag(sheet: _Sheet, post: Post, edge: Edge, plates: list[Plate], m: Measures
     sheet.add("lag", rectangle(x0, y0, x1, y1))
     fields = [(x0, x1)]
     for plate in plates:
-        fields = [part for a, b in fields for part in ((a, min(b, plate.x0)), (max(a, plate.x1), b)) if part[1] - part[0] > 0.8]
+        fields = [
+            part
+            for a, b in fields
+            for part in ((a, min(b, plate.x0)), (max(a, plate.x1), b))
+            if part[1] - part[0] > 0.8
+        ]
     across = m.hatch * math.sqrt(2)
     rise = y1 - y0
     for a, b in fields:
-        margin = 0.0 if (a, b) == (x0, x1) else 0.0
         x = a - rise - math.fmod(a - rise - x0, m.hatch_pitch) - m.hatch_pitch
         while x < b:
             line = ((x, y1), (x + rise, y0), (x + rise + across, y0), (x + across, y1))
-            sheet.add("paper", clip(line, a + margin, y0, b - margin, y1))
+            sheet.add("paper", clip(line, a, y0, b, y1))
             x += m.hatch_pitch
 
 
@@ -98,7 +109,7 @@ def _braking(sheet: _Sheet, frame: Frame, post: Post, edge: Edge, plates: list[P
     top = edge.high_y if post.bar.stops else m.broken
     y = edge.low_y
     course = 1
-    while True:
+    while frame.course:
         joint = frame.base_y - course * frame.course_mm
         course += 1
         if joint > edge.low_y - m.joint_clear:
@@ -124,6 +135,11 @@ def _broken(sheet: _Sheet, post: Post, m: Measures) -> None:
     y = foot
     for thick, air in ((0.26, 0.07), (0.17, 0.11), (0.08, 0.15)):
         y -= air * m.broken
-        slab = ((post.x0, y - slant - thick * m.broken), (post.x1, y - thick * m.broken), (post.x1, y), (post.x0, y - slant))
+        slab = (
+            (post.x0, y - slant - thick * m.broken),
+            (post.x1, y - thick * m.broken),
+            (post.x1, y),
+            (post.x0, y - slant),
+        )
         sheet.add("braking", clip(slab, post.x0, 0.0, post.x1, foot))
         y -= thick * m.broken

@@ -1,28 +1,27 @@
 """Where the words and numbers of the columns stand, and what room they ask for outside the columns.
 
-Order of preference of a part's number: inside its part in the part's own ink; beside the column with a leader; where neither
-has room (a middle column of three, columns too narrow for any number) it is left to the table. Of a part's name: inside the
-last column that has room, below or beside the number; else in a lane beside the last column with a leader.
+Order of preference of a part's number: inside its part in the part's own ink; beside the column with a leader; where
+neither has room (a middle column of three, columns too narrow for any number) it is left to the table.
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 from typing import Final
 
 from chartgen.charts.canvas import Polygon
-from chartgen.charts.columns_data import Group, Part
-from chartgen.charts.columns_frame import TOTAL_GAP, Edge, Frame, Needs, Post, distance_decimals, speed_contents
+from chartgen.charts.columns_data import Group, Part, distance_decimals, speed_contents
+from chartgen.charts.columns_frame import Edge, Frame, Needs, Post
 from chartgen.charts.drawing import FaceName, Role
 from chartgen.charts.fonts import digit_ratio
 from chartgen.charts.inks import Palette, contrast, least_contrast
 from chartgen.charts.measures import Measures
-from chartgen.charts.words import LEADING, Content, Key, Name, Number, Readers, Unit
+from chartgen.charts.words import LEADING, Content, Name, Number, Readers, Unit
 
 DIGIT: Final = digit_ratio
-_ON: Final = {"reaction": "type", "lag": "paper", "braking": "paper"}
-_SHRINK: Final = (1.0, 0.88, 0.77, 0.68, 0.6, 0.52, 0.46, 0.4)
+INK_ON: Final = {"reaction": "type", "lag": "paper", "braking": "paper"}
+SHRINK: Final = (1.0, 0.88, 0.77, 0.68, 0.6, 0.52, 0.46, 0.4)
 Align = str
 
 
@@ -42,6 +41,8 @@ class Spot:
     role: Role
     row: int | None = None
     quantity: str | None = None
+    inked: bool = False
+    """True where the box is that of the ink, not of the advance: the text then stands by what is seen of it."""
 
     @property
     def middle(self) -> float:
@@ -68,7 +69,7 @@ class Placed:
     plates: list[Plate] = field(default_factory=list)
     strokes: list[Polygon] = field(default_factory=list)
     lintels: list[tuple[float, float, float, float]] = field(default_factory=list)
-    needs: Needs = Needs()
+    needs: Needs = field(default_factory=Needs)
 
     def need(self, **room: float) -> None:
         self.needs = self.needs.grown(Needs(**room))
@@ -91,10 +92,10 @@ class Task:
 
 def ladder(wish: float, least: float) -> tuple[float, ...]:
     """Font sizes to try, from the wish down to the floor: few steps, so that a drawing keeps few sizes."""
-    return (*(wish * f for f in _SHRINK if wish * f > least * 1.02), least) if wish > least else (least,)
+    return (*(wish * f for f in SHRINK if wish * f > least * 1.02), least) if wish > least else (least,)
 
 
-def _legible(task: Task, ink: str, ground: str, size: float, *, bold: bool) -> bool:
+def legible(task: Task, ink: str, ground: str, size: float, *, bold: bool) -> bool:
     ratio = contrast(task.palette.ink(ink).srgb, task.palette.ink(ground).srgb)
     return ratio >= least_contrast(size, bold=bold)
 
@@ -107,23 +108,17 @@ def stroke(x0: float, y0: float, x1: float, y1: float, thick: float) -> Polygon:
     return ((x0 - h, y0), (x0 + h, y0), (x1 + h, y1), (x1 - h, y1))
 
 
-# ---- totals, speeds, ruler ---------------------------------------------------------------------------------------------------
+# ---- totals, speeds, ruler ----------------------------------------------------------------------
 
 
 def totals(frame: Frame, task: Task, placed: Placed) -> None:
     places = distance_decimals(task.groups)
-    digit = DIGIT("numeral-bold") * frame.total_size
-    for post in frame.posts:
-        if not post.bar.stops or not frame.labelled(post.group):
-            continue
-        content = Number(post.bar.printed_total, places)
-        wide = task.readers.room(content, "numeral-bold", frame.total_size)[1]
-        narrow = frame.every > 1 and wide > post.x1 - post.x0
-        foot = post.top_y - TOTAL_GAP * frame.total_size
-        x0, x1 = (post.x1 - wide, post.x1) if narrow else (post.centre - wide / 2, post.centre + wide / 2)
+    for seat in frame.seats:
+        bar = frame.posts[seat.column].bar
         placed.spots.append(Spot(
-            content=content, x0=x0, x1=x1, y0=foot - digit, y1=foot, align="end" if narrow else "center",
-            size=frame.total_size, face="numeral-bold", ink="type", role="total", row=post.bar.row, quantity="stopping",
+            content=Number(bar.printed_total, places), x0=seat.x0, x1=seat.x1, y0=seat.y0, y1=seat.y1,
+            align="center" if seat.centred else "end", inked=True, size=frame.total_size, face="numeral-bold",
+            ink="type", role="total", row=bar.row, quantity="stopping",
         ))  # fmt: skip
 
 
@@ -144,8 +139,8 @@ def speeds(frame: Frame, task: Task, placed: Placed) -> None:
     count, _ = task.readers.room(Unit(task.speed_unit), "text", size)
     size = min(size, (task.measures.band - 1.0) / (count * LEADING))
     placed.spots.append(Spot(
-        content=Unit(task.speed_unit), x0=frame.ruler_x, x1=frame.width, y0=frame.band_y, y1=frame.height, align="center",
-        size=size, face="text", ink="paper", role="unit",
+        content=Unit(task.speed_unit), x0=frame.ruler_x, x1=frame.width, y0=frame.band_y, y1=frame.height,
+        align="center", size=size, face="text", ink="paper", role="unit",
     ))  # fmt: skip
 
 
@@ -157,42 +152,47 @@ def ruler(frame: Frame, task: Task, placed: Placed) -> None:
         placed.strokes.append(stroke(x, y, x + (m.tick if value is not None else 0.5 * m.tick), y, m.hairline))
         if value is not None:
             placed.spots.append(Spot(
-                content=Number(value), x0=x + m.tick + 0.35 * m.ruler, x1=frame.width, y0=y - digit / 2, y1=y + digit / 2,
-                align="start", size=m.ruler, face="text", ink="type", role="ruler",
+                content=Number(value), x0=x + m.tick + 0.35 * m.ruler, x1=frame.width, y0=y - digit / 2,
+                y1=y + digit / 2, align="start", size=m.ruler, face="text", ink="type", role="ruler",
             ))  # fmt: skip
     count, _ = task.readers.room(Unit(task.distance_unit), "text", m.ruler)
     height = count * LEADING * m.ruler
     placed.spots.append(Spot(
-        content=Unit(task.distance_unit), x0=x + m.tick + 0.35 * m.ruler, x1=frame.width, y0=frame.unit_y - height, y1=frame.unit_y,
-        align="start", size=m.ruler, face="text", ink="type", role="unit",
+        content=Unit(task.distance_unit), x0=x + m.tick + 0.35 * m.ruler, x1=frame.width, y0=frame.unit_y - height,
+        y1=frame.unit_y, align="start", size=m.ruler, face="text", ink="type", role="unit",
     ))  # fmt: skip
 
 
-# ---- numbers of the parts ----------------------------------------------------------------------------------------------------
+# ---- numbers of the parts ----------------------------------------------------------------------
 
 
-def _inner(edge: Edge, m: Measures) -> float:
+def inner_height(edge: Edge, m: Measures) -> float:
     """Height within a part that a number may fill."""
     return edge.height - 2 * (m.outline + 0.5 if edge.part == "reaction" else 0.4)
 
 
-def _least(part: Part, m: Measures) -> float:
+def least_size(part: Part, m: Measures) -> float:
     return m.lag_least if part == "lag" else m.number_least
 
 
-def _inner_width(post: Post, edge: Edge, m: Measures) -> float:
-    """Width within a part that words may fill; the lag's hatch, flat behind words from edge to edge, must stay seen beside them."""
+def inner_width(post: Post, edge: Edge, m: Measures) -> float:
+    """Width within a part that words may fill; the lag's hatch, flat behind words from edge to edge, must stay seen
+    beside them."""
     width = post.x1 - post.x0
     pad = min(m.pad, 0.08 * width)
-    return width - 2 * {"reaction": pad + m.outline, "lag": max(pad, 0.15 * width), "braking": pad}[edge.part]
+    return width - 2 * {"reaction": pad + m.outline, "lag": max(pad, 0.2 * width), "braking": pad}[edge.part]
 
 
 def _number_size(post: Post, edge: Edge, content: Number, task: Task) -> float | None:
     m = task.measures
-    room = _inner_width(post, edge, m)
+    room = inner_width(post, edge, m)
     em = task.readers.room(content, "numeral", 1.0)[1]
-    for size in ladder(m.number, _least(edge.part, m)):
-        if size * DIGIT("numeral") <= _inner(edge, m) and size * em <= room and _legible(task, _ON[edge.part], edge.part, size, bold=False):
+    for size in ladder(m.number, least_size(edge.part, m)):
+        if (
+            size * DIGIT("numeral") <= inner_height(edge, m)
+            and size * em <= room
+            and legible(task, INK_ON[edge.part], edge.part, size, bold=False)
+        ):
             return size
     return None
 
@@ -214,8 +214,8 @@ def numbers(frame: Frame, task: Task, placed: Placed) -> dict[tuple[int, Part], 
             wide, tall = task.readers.room(content, "numeral", size)[1], size * DIGIT("numeral")
             middle = (edge.low_y + edge.high_y) / 2
             inside[index, edge.part] = Spot(
-                content=content, x0=post.centre - wide / 2, x1=post.centre + wide / 2, y0=middle - tall / 2, y1=middle + tall / 2,
-                align="center", size=size, face="numeral", ink=_ON[edge.part],
+                content=content, x0=post.centre - wide / 2, x1=post.centre + wide / 2, y0=middle - tall / 2,
+                y1=middle + tall / 2, align="center", size=size, face="numeral", ink=INK_ON[edge.part],
                 role="lag" if edge.part == "lag" else "part", row=post.bar.row, quantity=edge.part,
             )  # fmt: skip
         if outside and frame.every == 1:
@@ -246,121 +246,6 @@ def _beside(frame: Frame, task: Task, placed: Placed, post: Post, outside: Seque
         placed.spots.append(Spot(
             content=content, x0=near - width if first else near, x1=near if first else near + width,
             y0=middle - digit / 2, y1=middle + digit / 2, align="end" if first else "start", size=m.beside,
-            face="numeral", ink="type", role="lag" if edge.part == "lag" else "part", row=post.bar.row, quantity=edge.part,
-        ))  # fmt: skip
-
-
-# ---- names of the parts ------------------------------------------------------------------------------------------------------
-
-
-def _moved(spot: Spot, dx: float, dy: float) -> Spot:
-    return replace(spot, x0=spot.x0 + dx, x1=spot.x1 + dx, y0=spot.y0 + dy, y1=spot.y1 + dy)
-
-
-def _shrunk(spot: Spot, factor: float) -> Spot:
-    x, y = (spot.x0 + spot.x1) / 2, spot.middle
-    wide, tall = (spot.x1 - spot.x0) * factor / 2, (spot.y1 - spot.y0) * factor / 2
-    return replace(spot, x0=x - wide, x1=x + wide, y0=y - tall, y1=y + tall, size=spot.size * factor)
-
-
-def _name_inside(post: Post, edge: Edge, number: Spot, task: Task) -> tuple[Spot, Spot] | None:
-    """(the number moved aside, the name) where both fit in the part, the name below or beside the number."""
-    m = task.measures
-    content = Key(f"part.{edge.part}")
-    room = _inner_width(post, edge, m)
-    inner = _inner(edge, m)
-    middle = (edge.low_y + edge.high_y) / 2
-    for size, shrink in ((size, shrink) for shrink in _SHRINK[:6] for size in ladder(m.name, m.name_least)):
-        figure = _shrunk(number, shrink)
-        if figure.size < _least(edge.part, m) - 1e-9 or not _legible(task, number.ink, edge.part, figure.size, bold=False):
-            continue
-        tall, wide = figure.y1 - figure.y0, figure.x1 - figure.x0
-        if not _legible(task, _ON[edge.part], edge.part, size, bold=True):
-            continue
-        air = 0.35 * size
-
-        def spot(x0: float, x1: float, y0: float, y1: float, align: str, size: float = size) -> Spot:
-            return Spot(content=content, x0=x0, x1=x1, y0=y0, y1=y1, align=align, size=size, face="text-bold", ink=_ON[edge.part], role="name")
-
-        count, width = task.readers.room(content, "text-bold", size, room)
-        height = count * LEADING * size
-        if width <= room and tall + air + height <= inner:
-            top = middle - (tall + air + height) / 2
-            moved = _moved(figure, 0, top - figure.y0)
-            return moved, spot(post.centre - room / 2, post.centre + room / 2, top + tall + air, top + tall + air + height, "center")
-        count, width = task.readers.room(content, "text-bold", size)
-        height = count * LEADING * size
-        if wide + 2 * air + width <= room and height <= inner:
-            left = post.centre - (wide + 2 * air + width) / 2
-            moved = _moved(figure, left - figure.x0, 0)
-            x0 = left + wide + 2 * air
-            return moved, spot(x0, x0 + width + 0.01, middle - height / 2, middle + height / 2, "start")
-    return None
-
-
-def names(frame: Frame, task: Task, placed: Placed, inside: dict[tuple[int, Part], Spot]) -> None:
-    """Each part's name once, in both languages, where it reads best; then plates for all that stands in a texture."""
-    homeless: list[Part] = []
-    parts: list[Part] = [part for part in ("reaction", "lag", "braking") if any(e.part == part for p in frame.posts for e in p.edges)]
-    plates: dict[tuple[int, Part], list[Spot]] = {key: [spot] for key, spot in inside.items()}
-    for part in parts:
-        for index in range(len(frame.posts) - 1, -1, -1):
-            number = inside.get((index, part))
-            if number is None:
-                continue
-            post = frame.posts[index]
-            found = _name_inside(post, next(e for e in post.edges if e.part == part), number, task)
-            if found is not None:
-                plates[index, part] = list(found)
-                break
-        else:
-            homeless.append(part)
-    for (index, part), spots in plates.items():
-        placed.spots += spots
-        placed.plates.append(_plate(frame.posts[index], index, part, spots, task))
-    _names_lane(frame, task, placed, homeless)
-
-
-def _plate(post: Post, index: int, part: Part, spots: Sequence[Spot], task: Task) -> Plate:
-    margin = 0.18 * spots[0].size
-    left, right = post.centre, post.centre
-    for spot in spots:
-        wide = task.readers.room(spot.content, spot.face, spot.size, spot.x1 - spot.x0)[1]
-        middle = (spot.x0 + spot.x1) / 2
-        left, right = min(left, middle - wide / 2), max(right, middle + wide / 2)
-    edge = next(e for e in post.edges if e.part == part)
-    return Plate(
-        post=index, part=part,
-        x0=max(left - margin, post.x0), x1=min(right + margin, post.x1),
-        y0=max(min(s.y0 for s in spots) - margin, edge.high_y), y1=min(max(s.y1 for s in spots) + margin, edge.low_y),
-    )  # fmt: skip
-
-
-def _names_lane(frame: Frame, task: Task, placed: Placed, homeless: Sequence[Part]) -> None:
-    if not homeless:
-        return
-    m = task.measures
-    size = m.name_least
-    leader = 1.6
-    wide = task.readers.widest([Key(f"part.{part}") for part in homeless], "text-bold", size)
-    placed.need(names_lane=wide + leader + 1.2)
-    foot = frame.base_y
-    for part in homeless:
-        post = next(p for p in reversed(frame.posts) if any(e.part == part for e in p.edges))
-        edge = next(e for e in post.edges if e.part == part)
-        count, _ = task.readers.room(Key(f"part.{part}"), "text-bold", size)
-        height = count * LEADING * size
-        middle = min((edge.low_y + edge.high_y) / 2, foot - height / 2)
-        foot = middle - height / 2 - 0.3 * size
-        x = frame.columns_end + placed.needs.end_lane + leader
-        beside = [s for s in placed.spots if s.row == post.bar.row and s.quantity == part and s.x0 > post.x1]
-        if beside:  # its number stands beside the column already, with the leader that serves both
-            middle = beside[0].middle
-            x = beside[0].x1 + 0.35 * size
-        else:
-            target = min(max(middle, edge.high_y + m.hairline), edge.low_y - m.hairline)
-            placed.strokes.append(stroke(x - 0.4, middle, post.x1, target, m.hairline))
-        placed.spots.append(Spot(
-            content=Key(f"part.{part}"), x0=x, x1=x + wide + 0.01, y0=middle - height / 2, y1=middle + height / 2, align="start",
-            size=size, face="text-bold", ink="type", role="name",
+            face="numeral", ink="type", role="lag" if edge.part == "lag" else "part", row=post.bar.row,
+            quantity=edge.part,
         ))  # fmt: skip

@@ -12,14 +12,14 @@ VERDICT: Final = Key("verdict.does_not_stop")
 
 
 def verdicts(frame: Frame, task: Task, placed: Placed) -> None:
-    """“Does not stop” in every column that does not end, or, where one is too narrow for the words, on a lintel laid across
-    neighbours that all do not end."""
+    """“Does not stop” in every column that does not end, or, where one is too narrow for the words, on a lintel laid
+    across neighbours that all do not end."""
     endless = [post for post in frame.posts if not post.bar.stops]
     if not endless:
         return
     m = task.measures
     room = endless[0].x1 - endless[0].x0 - 2 * m.pad
-    tall = min(post.edges[-1].height for post in endless) - m.broken - 2 * m.pad
+    tall = 0.55 * min(post.edges[-1].height for post in endless) - m.broken - 2 * m.pad  # the rest is the part's name's
     for size in ladder(m.verdict, m.verdict_least):
         count, wide = task.readers.room(VERDICT, "text-bold", size, room)
         if wide <= room and count * LEADING * size <= tall and not placed.needs.head:
@@ -36,7 +36,9 @@ def _in_column(frame: Frame, placed: Placed, post: Post, size: float, height: fl
         content=VERDICT, x0=post.x0 + m.pad, x1=post.x1 - m.pad, y0=top, y1=top + height, align="center", size=size,
         face="text-bold", ink="paper", role="verdict", row=post.bar.row, quantity="stops",
     ))  # fmt: skip
-    placed.plates.append(Plate(post=frame.posts.index(post), part="braking", x0=post.x0, x1=post.x1, y0=top, y1=top + height))
+    placed.plates.append(
+        Plate(post=frame.posts.index(post), part="braking", x0=post.x0, x1=post.x1, y0=top, y1=top + height)
+    )
 
 
 def _runs(posts: tuple[Post, ...]) -> list[list[Post]]:
@@ -68,7 +70,8 @@ def _lintels(frame: Frame, task: Task, placed: Placed) -> None:
             x0, x1 = 0.0, max(x1, wide + 2 * m.pad)
         placed.lintels.append((x0, top, x1, foot))
         placed.spots.append(Spot(
-            content=VERDICT, x0=x0 + m.pad - 0.01, x1=x1 - m.pad + 0.01, y0=top + m.pad, y1=foot - m.pad, align="center", size=size,
+            content=VERDICT, x0=x0 + m.pad - 0.01, x1=x1 - m.pad + 0.01, y0=top + m.pad, y1=foot - m.pad,
+            align="center", size=size,
             face="text-bold", ink="paper", role="verdict", row=run[0].bar.row, quantity="stops",
         ))  # fmt: skip
 
@@ -89,14 +92,27 @@ def drivers(frame: Frame, task: Task, placed: Placed) -> None:
             for post in frame.posts:
                 name = task.drivers[post.series]
                 tall = task.readers.room(name, "text", size, room)[0] * LEADING * size
-                placed.spots.append(_driver(name, post.centre - room / 2, post.centre + room / 2, frame.base_y + 1.0, tall, "center", size))
+                placed.spots.append(
+                    _driver(
+                        name, post.centre - room / 2, post.centre + room / 2, frame.base_y + 1.0, tall, "center", size
+                    )
+                )
             return
     _flags(frame, task, placed)
 
 
 def _driver(name: Name, x0: float, x1: float, top: float, height: float, align: str, size: float) -> Spot:
     return Spot(
-        content=name, x0=x0, x1=x1 + 0.01, y0=top, y1=top + height, align=align, size=size, face="text", ink="type", role="driver"
+        content=name,
+        x0=x0,
+        x1=x1 + 0.01,
+        y0=top,
+        y1=top + height,
+        align=align,
+        size=size,
+        face="text",
+        ink="type",
+        role="driver",
     )
 
 
@@ -112,7 +128,9 @@ def _flags(frame: Frame, task: Task, placed: Placed) -> None:
         room = frame.width - post.centre - 1.0
         count, _ = task.readers.room(name, "text", size, room)
         height = count * LEADING * size
-        placed.strokes.append(stroke(post.centre, frame.base_y + 0.5, post.centre, top + height - 0.25 * size, m.hairline * 1.4))
+        placed.strokes.append(
+            stroke(post.centre, frame.base_y + 0.5, post.centre, top + height - 0.25 * size, m.hairline * 1.4)
+        )
         placed.spots.append(_driver(name, post.centre + 1.0, frame.width, top, height, "start", size))
         top += height + 0.2 * size
     placed.need(foot=top - frame.base_y)

@@ -33,6 +33,8 @@ def alt_text(
         return voice.one(lists[0])
     if len(names_of_series) != len(series):
         raise ValueError("each of several series needs a name")
+    if not any(bar.stops for bars in lists for bar in bars):
+        return voice.one([bar for group in made for bar in group.bars if bar is not None])
     low, high = (language.speed(group.printed_speed, speed_unit) for group in (made[0], made[-1]))
     told = [voice.several(language.text(name), bars) for name, bars in zip(names_of_series, lists, strict=True)]
     return " ".join([language.plain("alt.columns_many", low=low, high=high), *told])
@@ -58,7 +60,12 @@ class _Voice:
                 return say("alt.columns_never", never=self.speed(bars[0]))
             return say("alt.columns_none", low=self.speed(bars[0]), high=self.speed(bars[-1]))
         first, last = stopping[0], stopping[-1]
-        ends = {"first": self.total(first), "low": self.speed(first), "last": self.total(last), "high": self.speed(last)}
+        ends = {
+            "first": self.total(first),
+            "low": self.speed(first),
+            "last": self.total(last),
+            "high": self.speed(last),
+        }
         times = times_as_far(first, last)
         if len(stopping) == 1:
             claim = say("alt.columns_one", total=self.total(first), speed=self.speed(first))
@@ -87,8 +94,8 @@ def _parted(bars: Sequence[Bar]) -> tuple[list[Bar], Bar | None]:
 
 
 def times_as_far(first: Bar, last: Bar) -> int:
-    """The whole number of times that the last distance holds the first, by the printed and by the exact figures (the lesser):
-    "at least so many times as far" is then true of both."""
+    """The whole number of times that the last distance holds the first, by the printed and by the exact figures (the
+    lesser): "at least so many times as far" is then true of both."""
     if not (first.known_m > 0 and first.printed_total > 0):
         return 0
     return math.floor(min(last.known_m / first.known_m, last.printed_total / first.printed_total) + 1e-9)

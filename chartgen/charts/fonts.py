@@ -1,4 +1,5 @@
-"""Faces of a drawing: which static font file, how wide and how tall its glyphs are. Widths come from the files themselves.
+"""Faces of a drawing: which static font file, how wide and how tall its glyphs are. Widths come from the files
+themselves.
 
 One condensed family serves Latin, Greek and Cyrillic; Arabic has a family of its own. Every file is static, so that the
 press, the browser and the pictures of the tests set the same weight.
@@ -39,8 +40,8 @@ class Face:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Extent:
-    """How far a text reaches, in parts of the font size: its advance width, above and below the baseline (both ≥ 0), and the
-    white within the advance before its first and after its last glyph."""
+    """How far a text reaches, in parts of the font size: its advance width, above and below the baseline (both ≥ 0),
+    and the white within the advance before its first and after its last glyph."""
 
     width: float
     above: float
@@ -97,12 +98,15 @@ def face_for(text: str, face: str) -> Face:
         if all(_glyph(found.path, c) is not None for c in seen):
             return found
     missing = sorted({f"U+{ord(c):04X}" for c in seen if _glyph(_face(LATIN, face).path, c) is None})
-    raise MachineFault(f"No font of ours has every character of “{text}” ({', '.join(missing)}).", "Use other characters.")
+    raise MachineFault(
+        f"No font of ours has every character of “{text}” ({', '.join(missing)}).", "Use other characters."
+    )
 
 
 @lru_cache(maxsize=8192)
 def extent(text: str, face: str) -> Extent:
-    """Extent of `text` at font size 1 (multiply by the size). Arabic is measured in its unjoined forms, which are the wider."""
+    """Extent of `text` at font size 1 (multiply by the size). Arabic is measured in its unjoined forms, which are the
+    wider."""
     path = face_for(text, face).path
     glyphs = [glyph for c in text if c not in _UNSEEN and (glyph := _glyph(path, c)) is not None]
     return Extent(

@@ -1,13 +1,14 @@
 """Named inks: an sRGB and a CMYK value chosen together, never converted on the fly.
 
 The three house palettes were mixed in CMYK by hand, in whole percents; the sRGB value is that mixture through a coated
-(SWOP-like) profile, relative colorimetric, so a printer's own proof decides in the end. Type is black alone, so small type
-cannot misregister.
+(SWOP-like) profile, relative colorimetric, so a printer's own proof decides in the end. Type is black alone, so small
+type cannot misregister.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Final
 
 INK_NAMES: Final = ("paper", "type", "reaction", "lag", "braking", "accent")
@@ -122,6 +123,7 @@ def luminance(srgb: str) -> float:
     return 0.2126 * red + 0.7152 * green + 0.0722 * blue
 
 
+@lru_cache(maxsize=1024)
 def contrast(one: str, other: str) -> float:
     """Contrast ratio (1..21) of two "#rrggbb" values: (L1 + 0.05)/(L2 + 0.05), the lighter above. Source: WCAG 2.2."""
     light, dark = sorted((luminance(one), luminance(other)), reverse=True)

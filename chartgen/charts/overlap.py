@@ -1,4 +1,5 @@
-"""Whether a drawing can be read: labels that meet, are cut, stand across an edge, or lack contrast with what they stand on."""
+"""Whether a drawing can be read: labels that meet, are cut, stand across an edge, or lack contrast with what they
+stand on."""
 
 from __future__ import annotations
 
@@ -19,8 +20,8 @@ _TOUCH_MM: Final = 0.05
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Collision:
-    """What is wrong with a label. `kind`: "overlap" (with `other`), "cut" (by the drawing's edge), "crossed" (by an edge
-    of the ink `other`)."""
+    """What is wrong with a label. `kind`: "overlap" (with `other`), "cut" (by the drawing's edge), "crossed" (by an
+    edge of the ink `other`)."""
 
     kind: str
     text: str
@@ -53,7 +54,12 @@ def _crossed(here: Box, pieces: Pieces) -> str | None:
     for ink, polygons in pieces:
         near = [p for p in polygons if min(x for x, _ in p) < here[2] and max(x for x, _ in p) > here[0]]
         covered = [abs(area(part)) for p in near if (part := clip(p, *here))]
-        if covered and max(covered) < 0.999 * whole and sum(covered) > _TOUCH_MM * (here[3] - here[1]) and not _tiled(here, near):
+        if (
+            covered
+            and max(covered) < 0.999 * whole
+            and sum(covered) > _TOUCH_MM * (here[3] - here[1])
+            and not _tiled(here, near)
+        ):
             return ink
     return None
 
@@ -77,7 +83,12 @@ def collisions(drawing: Drawing) -> list[Collision]:
     boxes = [(label, box(label)) for label in drawing.labels if label.text.strip()]
     pieces = read_pieces(drawing.marks_svg)
     for label, here in boxes:
-        if here[0] < -_TOUCH_MM or here[1] < -_TOUCH_MM or here[2] > drawing.width_mm + _TOUCH_MM or here[3] > drawing.height_mm + _TOUCH_MM:
+        if (
+            here[0] < -_TOUCH_MM
+            or here[1] < -_TOUCH_MM
+            or here[2] > drawing.width_mm + _TOUCH_MM
+            or here[3] > drawing.height_mm + _TOUCH_MM
+        ):
             found.append(Collision(kind="cut", text=label.text, other=""))
         ink = _crossed(here, pieces)
         if ink is not None:

@@ -23,7 +23,8 @@ from chartgen.charts.inks import Palette
 
 
 def png(drawing: Drawing, palette: Palette, dpi: float = 100.0) -> bytes:
-    """The drawing on its paper as PNG, `dpi` dots an inch. A missing glyph raises (matplotlib's warning made an error)."""
+    """The drawing on its paper as PNG, `dpi` dots an inch. A missing glyph raises (matplotlib's warning made an
+    error)."""
     figure = Figure(figsize=(drawing.width_mm / 25.4, drawing.height_mm / 25.4), dpi=dpi, facecolor=palette.paper.srgb)
     dots = dpi / 25.4
     page = Affine2D().scale(dots, -dots).translate(0, drawing.height_mm * dots)
@@ -40,5 +41,5 @@ def png(drawing: Drawing, palette: Palette, dpi: float = 100.0) -> bytes:
     # Without hinting a glyph is as wide as its file says, at any resolution.
     with warnings.catch_warnings(), mpl.rc_context({"text.hinting": "none", "text.hinting_factor": 1}):
         warnings.simplefilter("error")
-        FigureCanvasAgg(figure).print_png(target, metadata={"Software": None})
+        FigureCanvasAgg(figure).print_png(target, metadata={"Software": None})  # type: ignore[no-untyped-call]
     return target.getvalue()

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Protocol
 
 from chartgen.charts.drawing import Direction, FaceName
@@ -14,7 +15,8 @@ LEADING: float = 1.2
 
 
 class Words(Protocol):
-    """What this floor asks of a language; `chartgen.language` gives it (a room beside this one, so it is not imported)."""
+    """What this floor asks of a language; `chartgen.language` gives it (a room beside this one, so it is not
+    imported)."""
 
     @property
     def tag(self) -> str: ...
@@ -73,7 +75,8 @@ def say(content: Content, words: Words) -> str:
     """The text of `content` in one language."""
     match content:
         case Number(value, decimals):
-            return words.number(value, decimals)
+            # The condensed face has no narrow no-break space (French groups digits by it); the wide one reads the same.
+            return words.number(value, decimals).replace("\u202f", "\u00a0")
         case Key(key):
             return words.t(key)
         case Unit(name):
@@ -83,7 +86,8 @@ def say(content: Content, words: Words) -> str:
 
 
 def wrap(text: str, face: FaceName, size_mm: float, room_mm: float) -> tuple[str, ...]:
-    """`text` in lines of at most `room_mm`, broken at spaces only (a no-break space holds); a longer word stands alone."""
+    """`text` in lines of at most `room_mm`, broken at spaces only (a no-break space holds); a longer word stands
+    alone."""
     lines: list[str] = []
     for word in text.split(" "):
         longer = f"{lines[-1]} {word}" if lines else word
@@ -102,7 +106,9 @@ class Line:
     words: Words
 
 
-def lines(content: Content, languages: Sequence[Words], face: FaceName, size_mm: float, room_mm: float) -> tuple[Line, ...]:
+def lines(
+    content: Content, languages: Sequence[Words], face: FaceName, size_mm: float, room_mm: float
+) -> tuple[Line, ...]:
     """The lines of one block: language after language, whole. What reads the same in two languages stands once;
     a figure stands once, as the first language writes it."""
     if isinstance(content, Number):
@@ -119,18 +125,30 @@ def lines(content: Content, languages: Sequence[Words], face: FaceName, size_mm:
 
 @dataclass(frozen=True, slots=True)
 class Readers:
-    """Whom a drawing is for: every language one after the other on one drawing (`together`), or each on its own with the
-    same marks. Room is kept for the widest."""
+    """Whom a drawing is for: every language one after the other on one drawing (`together`), or each on its own with
+    the same marks. Room is kept for the widest."""
 
     languages: tuple[Words, ...]
     together: bool
+    _measured: dict[tuple[Content, FaceName], tuple[int, float]] = field(
+        default_factory=dict, compare=False, repr=False
+    )
+    """(lines, width at font size 1) of what was measured unwrapped: each content is asked for at many sizes."""
 
     @property
     def settings(self) -> tuple[tuple[Words, ...], ...]:
         return (self.languages,) if self.together else tuple((words,) for words in self.languages)
 
-    def room(self, content: Content, face: FaceName, size_mm: float, room_mm: float = 1e9) -> tuple[int, float]:
+    def room(self, content: Content, face: FaceName, size_mm: float, room_mm: float = math.inf) -> tuple[int, float]:
         """(lines, width in mm) that hold `content` in every setting, wrapped to `room_mm`."""
+        whole = self._measured.get((content, face))
+        if whole is None:
+            whole = self._measured[content, face] = self._measure(content, face, 1.0, math.inf)
+        if whole[1] * size_mm <= room_mm:
+            return whole[0], whole[1] * size_mm
+        return self._measure(content, face, size_mm, room_mm)
+
+    def _measure(self, content: Content, face: FaceName, size_mm: float, room_mm: float) -> tuple[int, float]:
         count, width = 0, 0.0
         for setting in self.settings:
             block = lines(content, setting, face, size_mm, room_mm)
