@@ -21,7 +21,7 @@ import warnings
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor, as_completed
 from concurrent.futures.process import BrokenProcessPool
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from datetime import date
 from typing import Any, Generic, TypeVar
 
@@ -89,7 +89,7 @@ class Crew:
     """Workers that stay for several rounds of jobs. Made by `crew`."""
 
     workers: int
-    _pool: ProcessPoolExecutor | None = field(default=None)
+    _pool: ProcessPoolExecutor | None
 
     def run(self, jobs: Sequence[Job[T]], done: Callable[[Job[T]], None] = lambda _job: None) -> list[T]:
         """The results of `jobs`, in their order; `done` is called as each is finished.
@@ -97,57 +97,77 @@ class Crew:
         An error of a job is raised here as it was raised there, the first in the order of the jobs. MachineFault where
         a worker was killed.
         """
+        return self.start(jobs, done)()
+
+    def start(
+        self, jobs: Sequence[Job[T]], done: Callable[[Job[T]], None] = lambda _job: None
+    ) -> Callable[[], list[T]]:
+        """As `run`, but the jobs are only begun: what comes back waits for their results and returns them."""
         keys = [job.key for job in jobs]
         first: dict[str, Job[T]] = {}
         for key, job in zip(keys, jobs, strict=True):
             first.setdefault(key, job)
-        made: dict[str, T] = {}
-        if self.workers == 1 or len(first) == 1:
-            for key, job in first.items():
-                made[key] = job.work(*job.args)
-                done(job)
-        else:
-            made = self._spread(first, done)
-        return [made[key] for key in keys]
+        finish = _one_by_one(first, done) if self._pool is None else _spread(self._pool, first, done)
 
-    def _spread(self, jobs: Mapping[str, Job[T]], done: Callable[[Job[T]], None]) -> dict[str, T]:
-        if self._pool is None:
-            self._pool = _pool(self.workers)
+        def results() -> list[T]:
+            made = finish()
+            return [made[key] for key in keys]
+
+        return results
+
+
+def _one_by_one(jobs: Mapping[str, Job[T]], done: Callable[[Job[T]], None]) -> Callable[[], dict[str, T]]:
+    def finish() -> dict[str, T]:
+        made = {}
+        for key, job in jobs.items():
+            made[key] = job.work(*job.args)
+            done(job)
+        return made
+
+    return finish
+
+
+def _spread(
+    pool: ProcessPoolExecutor, jobs: Mapping[str, Job[T]], done: Callable[[Job[T]], None]
+) -> Callable[[], dict[str, T]]:
+    # Longest first: the last to finish is then a short one. Among equals by key, so that a run can be repeated.
+    order = sorted(jobs, key=lambda key: (-jobs[key].weight, key))
+    try:
+        running: dict[str, Future[T]] = {key: pool.submit(jobs[key].work, *jobs[key].args) for key in order}
+    except BrokenProcessPool as error:
+        raise _killed() from error
+
+    def finish() -> dict[str, T]:
+        names = {future: key for key, future in running.items()}
+        for future in as_completed(names):
+            if future.exception() is None:
+                done(jobs[names[future]])
         try:
-            # Longest first: the last to finish is then a short one. Among equals by key, so that a run can be repeated.
-            order = sorted(jobs, key=lambda key: (-jobs[key].weight, key))
-            with warnings.catch_warnings():
-                # Python warns of forking beside threads; the only ones here are a linear-algebra library's idle own,
-                # which it stops and starts again around a fork itself.
-                warnings.filterwarnings("ignore", message=".*multi-threaded.*fork", category=DeprecationWarning)
-                running: dict[Future[T], str] = {self._pool.submit(jobs[k].work, *jobs[k].args): k for k in order}
-            for future in as_completed(running):
-                if future.exception() is None:
-                    done(jobs[running[future]])
+            return {key: running[key].result() for key in jobs}
         except BrokenProcessPool as error:
             raise _killed() from error
-        results = {key: future for future, key in running.items()}
-        try:
-            return {key: results[key].result() for key in jobs}
-        except BrokenProcessPool as error:
-            raise _killed() from error
+
+    return finish
 
 
 @contextlib.contextmanager
-def crew(workers: int) -> Iterator[Crew]:
-    """`workers` processes (1: this process does it all) for the jobs within; gone at the end, whatever happens."""
+def crew(workers: int, preload: Callable[[], None] = lambda: None) -> Iterator[Crew]:
+    """`workers` processes (1: this process does it all) for the jobs within; gone at the end, whatever happens.
+
+    They start at once, and each calls `preload` first: what they need is loaded while this process does its own part.
+    """
     before = set(multiprocessing.active_children())
-    team = Crew(workers)
+    pool = _pool(workers, preload) if workers > 1 else None
     with rare_collections():
         try:
-            yield team
+            yield Crew(workers, pool)
         except BaseException:
             for worker in set(multiprocessing.active_children()) - before:
                 worker.kill()
             raise
         finally:
-            if team._pool is not None:
-                team._pool.shutdown(cancel_futures=True)
+            if pool is not None:
+                pool.shutdown(cancel_futures=True)
 
 
 @contextlib.contextmanager
@@ -163,13 +183,19 @@ def rare_collections() -> Iterator[None]:
         gc.unfreeze()
 
 
-def _pool(workers: int) -> ProcessPoolExecutor:
-    # Forked workers start with everything loaded; elsewhere than on Linux system libraries do not survive a fork.
+def _pool(workers: int, preload: Callable[[], None]) -> ProcessPoolExecutor:
+    # Elsewhere than on Linux system libraries do not survive a fork.
     context = multiprocessing.get_context("fork" if sys.platform == "linux" else "spawn")
-    return ProcessPoolExecutor(workers, mp_context=context, initializer=_start_worker, initargs=(os.getpid(),))
+    pool = ProcessPoolExecutor(workers, context, _start_worker, (os.getpid(), preload))
+    with warnings.catch_warnings():
+        # Python warns of forking beside threads. The only ones there may be are a linear-algebra library's idle own,
+        # which it stops and starts again around a fork itself.
+        warnings.filterwarnings("ignore", message=".*multi-threaded.*fork", category=DeprecationWarning)
+        pool.submit(os.getpid)  # with the first job all workers are forked
+    return pool
 
 
-def _start_worker(parent: int) -> None:
+def _start_worker(parent: int, preload: Callable[[], None]) -> None:
     # Ctrl-C goes to all processes of a terminal; the parent alone decides what becomes of it.
     signal.signal(signal.SIGINT, signal.SIG_IGN)
     signal.signal(signal.SIGTERM, signal.SIG_DFL)
@@ -178,6 +204,9 @@ def _start_worker(parent: int) -> None:
         ctypes.CDLL(None).prctl(_PR_SET_PDEATHSIG, signal.SIGKILL)
         if os.getppid() != parent:
             os._exit(1)
+    preload()
+    gc.freeze()
+    gc.set_threshold(_COLLECT_AFTER, 50, 50)
 
 
 def _killed() -> MachineFault:

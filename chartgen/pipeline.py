@@ -10,6 +10,8 @@
 
 from __future__ import annotations
 
+import contextlib
+import importlib
 from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -17,7 +19,7 @@ from typing import TYPE_CHECKING, Protocol, TypeVar, cast
 
 from chartgen import jobs, output
 from chartgen.edition.model import Edition
-from chartgen.errors import CommandFault, EditionFaults, Fault, Finding, ProductFaults
+from chartgen.errors import CommandFault, EditionFaults, Fault, Finding, MachineFault, ProductFaults
 
 if TYPE_CHECKING:
     from chartgen.figures.record import Figures
@@ -26,6 +28,7 @@ if TYPE_CHECKING:
 
 T = TypeVar("T")
 STEPS = ("Read", "Work out", "Compose", "Print", "Check", "Publish")
+LONG = 1e9  # an edition's pages take longer than any sheet: first into the queue
 WAITING = "waiting: another chartgen is writing into this folder"
 
 
@@ -66,25 +69,24 @@ def press(paths: Sequence[str | Path], build: Path, *, workers: int, progress: P
 
     Raises EditionFaults, CommandFault, ProductFaults (the build folder is then as it was) or MachineFault.
     """
-    progress.step(1, "Reading the editions", len(paths))
-    editions = read(paths, progress)
-    refuse_unmade(editions)
+    with jobs.crew(workers, load_libraries) as crew:
+        progress.step(1, "Reading the editions", len(paths))
+        editions = read(paths, progress)
+        refuse_unmade(editions)
 
-    progress.step(2, "Working out the figures", len(editions))
-    works = [work_out(edition, progress) for edition in editions]
+        progress.step(2, "Working out the figures", len(editions))
+        works = [work_out(edition, progress) for edition in editions]
 
-    load_printer()
-    with jobs.crew(workers) as crew:
-        progress.step(3, "Composing sheets and pages", 3 * len(works))
+        progress.step(3, "Composing sheets and pages", 2 * len(works))
         sheets = compose_sheets(works, crew, progress)
         pages = compose_pages(works, sheets, crew, progress)
 
-        progress.step(4, "Printing the sheets", sum(len(s) for s in sheets))
+        progress.step(4, "Printing the sheets", sum(len(s) for s in sheets) + len(works))
         printed = print_sheets(sheets, crew, progress)
 
         with output.staging(build, lambda: progress.done(WAITING)) as stage:
+            manifests = write(stage, works, pages(), printed())
             progress.step(5, "Checking every number on the finished files", sum(len(s) + 1 for s in sheets))
-            manifests = write(stage, works, pages, printed)
             check(stage.path, works, sheets, crew, progress)
 
             progress.step(6, "Putting the finished files in place", 1)
@@ -137,11 +139,14 @@ def work_out(edition: Edition, progress: Progress) -> Work:
     return work
 
 
-def load_printer() -> None:
-    """Load what the workers need before they are forked, so that each finds it there. MachineFault without Pango."""
+def load_libraries() -> None:
+    """What each worker loads while this process reads the editions. Where Pango is missing, the first sheet says so."""
     from chartgen.press import engine
 
-    engine.load()
+    with contextlib.suppress(MachineFault):
+        engine.load()
+    for name in ("press.preflight", "press.render", "sheets.cards", "sheets.posters", "site.check", "site.pages"):
+        importlib.import_module(f"chartgen.{name}")
 
 
 def compose_sheets(works: Sequence[Work], crew: jobs.Crew, progress: Progress) -> list[tuple[Sheet, ...]]:
@@ -151,7 +156,7 @@ def compose_sheets(works: Sequence[Work], crew: jobs.Crew, progress: Progress) -
         for w in works
         for kind, make in (("posters", _posters), ("cards", _cards))
     ]
-    made = _all_or_faults(crew, work, progress)
+    made = _all_or_faults(crew, work, progress)()
     return [(*made[2 * i], *made[2 * i + 1]) for i in range(len(works))]
 
 
@@ -171,10 +176,10 @@ def _cards(work: Work) -> tuple[Sheet, ...]:
 
 def compose_pages(
     works: Sequence[Work], sheets: Sequence[tuple[Sheet, ...]], crew: jobs.Crew, progress: Progress
-) -> list[tuple[output.File, ...]]:
-    """The web pages and data files of each edition."""
+) -> Callable[[], list[tuple[output.File, ...]]]:
+    """The web pages and data files of each edition, begun: the cores work on them and on the sheets side by side."""
     work = [
-        jobs.Job(name=f"{w.edition.id}: pages", key=f"pages {w.edition.id}", work=_pages, args=(w, made))
+        jobs.Job(name=f"{w.edition.id}: pages", key=f"pages {w.edition.id}", work=_pages, args=(w, made), weight=LONG)
         for w, made in zip(works, sheets, strict=True)
     ]
     return _all_or_faults(crew, work, progress)
@@ -186,15 +191,20 @@ def _pages(work: Work, sheets: tuple[Sheet, ...]) -> tuple[output.File, ...]:
     return tuple(pages(work.edition, work.figures, work.languages, sheets))
 
 
-def _all_or_faults(crew: jobs.Crew, work: Sequence[jobs.Job[T]], progress: Progress) -> list[T]:
+def _all_or_faults(crew: jobs.Crew, work: Sequence[jobs.Job[T]], progress: Progress) -> Callable[[], list[T]]:
     """The results, or what is wrong with any of them, all at once: a person should not mend one sheet a run."""
     tried = [jobs.Job(name=j.name, key=j.key, weight=j.weight, work=_tried, args=(j.work, j.args)) for j in work]
-    results = crew.run(tried, lambda job: progress.done(job.name))
-    if faults := [fault for result in results if isinstance(result, EditionFaults) for fault in result.faults]:
-        raise EditionFaults(tuple(dict.fromkeys(faults)))
-    if findings := [finding for result in results if isinstance(result, ProductFaults) for finding in result.findings]:
-        raise ProductFaults(tuple(findings))
-    return cast("list[T]", results)
+    wait = crew.start(tried, lambda job: progress.done(job.name))
+
+    def results() -> list[T]:
+        made = wait()
+        if faults := [fault for result in made if isinstance(result, EditionFaults) for fault in result.faults]:
+            raise EditionFaults(tuple(dict.fromkeys(faults)))
+        if findings := [finding for result in made if isinstance(result, ProductFaults) for finding in result.findings]:
+            raise ProductFaults(tuple(findings))
+        return cast("list[T]", made)
+
+    return results
 
 
 def _tried(work: Callable[..., T], args: tuple[object, ...]) -> T | EditionFaults | ProductFaults:
@@ -206,8 +216,8 @@ def _tried(work: Callable[..., T], args: tuple[object, ...]) -> T | EditionFault
 
 def print_sheets(
     sheets: Sequence[tuple[Sheet, ...]], crew: jobs.Crew, progress: Progress
-) -> list[tuple[output.File, ...]]:
-    """The PDF of each sheet; sheets with the same content are printed once."""
+) -> Callable[[], list[tuple[output.File, ...]]]:
+    """The PDF of each sheet, begun; sheets with the same content are printed once."""
     from chartgen.press.render import render
 
     work = [
@@ -221,8 +231,13 @@ def print_sheets(
         for made in sheets
         for sheet in made
     ]
-    printed = iter(_all_or_faults(crew, work, progress))
-    return [tuple(output.File(sheet.path, next(printed)) for sheet in made) for made in sheets]
+    wait = _all_or_faults(crew, work, progress)
+
+    def printed() -> list[tuple[output.File, ...]]:
+        data = iter(wait())
+        return [tuple(output.File(sheet.path, next(data)) for sheet in made) for made in sheets]
+
+    return printed
 
 
 def write(
@@ -289,16 +304,15 @@ def _placed(work: Work, findings: Iterable[Finding]) -> tuple[Finding, ...]:
 
 def preflight(paths: Sequence[str | Path], build: Path, *, workers: int, progress: Progress) -> tuple[Work, ...]:
     """Check the finished files of editions again, against the editions as they are now: steps 1, 2, 3 and 5."""
-    progress.step(1, "Reading the editions", len(paths))
-    editions = read(paths, progress)
-    refuse_unmade(editions)
-    for edition in editions:
-        if not (build / edition.id).is_dir():
-            raise CommandFault(f"{build} holds no edition {edition.id}", f"chartgen press {edition.id}")
-    progress.step(2, "Working out the figures", len(editions))
-    works = [work_out(edition, progress) for edition in editions]
-    load_printer()
-    with jobs.crew(workers) as crew:
+    with jobs.crew(workers, load_libraries) as crew:
+        progress.step(1, "Reading the editions", len(paths))
+        editions = read(paths, progress)
+        refuse_unmade(editions)
+        for edition in editions:
+            if not (build / edition.id).is_dir():
+                raise CommandFault(f"{build} holds no edition {edition.id}", f"chartgen press {edition.id}")
+        progress.step(2, "Working out the figures", len(editions))
+        works = [work_out(edition, progress) for edition in editions]
         progress.step(3, "Composing the sheets to compare with", 2 * len(works))
         sheets = compose_sheets(works, crew, progress)
         progress.step(5, "Checking every number on the finished files", sum(len(s) + 1 for s in sheets))
