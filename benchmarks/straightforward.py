@@ -31,24 +31,28 @@ from chartgen.language.load import Language, languages
 from chartgen.language.sentences import caution_sentences
 
 mpl.use("svg")
-from matplotlib import font_manager  # noqa: E402
-from matplotlib import pyplot as plt  # noqa: E402
+from matplotlib import font_manager
+from matplotlib import pyplot as plt
 
 LATIN, ARABIC = "IBM Plex Sans Condensed", "Tajawal"
 WEIGHTS = (400, 700)
 
-PAGE = jinja2.Template("""<!doctype html><html lang="{{ language.tag }}" dir="{{ language.direction }}"><meta charset="utf-8">
+PAGE = jinja2.Template("""<!doctype html>
+<html lang="{{ language.tag }}" dir="{{ language.direction }}"><meta charset="utf-8">
 <title>{{ title }}</title><h1>{{ title }}</h1>
-{% for chart, rows in blocks %}{{ chart }}<table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>
-{% endfor %}</tr>{% endfor %}</table>{% endfor %}{% for sentence in caution %}<p>{{ sentence }}</p>{% endfor %}</html>""")
+{% for chart, rows in blocks %}{{ chart }}
+<table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>{% endfor %}</tr>{% endfor %}</table>
+{% endfor %}{% for sentence in caution %}<p>{{ sentence }}</p>{% endfor %}</html>""")
 
-SHEET = jinja2.Template("""<!doctype html><html lang="{{ languages[0].tag }}"><meta charset="utf-8"><title>{{ title }}</title>
-<style>{{ faces }}@page{size:{{ width }}mm {{ height }}mm;margin:10mm}body{font:{{ size }}pt "{{ latin }}","{{ arabic }}"}
-h1{font-size:3em;margin:0}svg{width:100%;height:auto}td{padding:1mm 3mm}.two{display:flex}.two>div{width:50%}
-.card{width:105mm;height:140mm;float:left}</style>
+SHEET = jinja2.Template("""<!doctype html>
+<html lang="{{ languages[0].tag }}"><meta charset="utf-8"><title>{{ title }}</title>
+<style>{{ faces }}@page{size:{{ width }}mm {{ height }}mm;margin:10mm}
+body{font:{{ size }}pt "{{ latin }}","{{ arabic }}"}h1{font-size:3em;margin:0}svg{width:100%;height:auto}
+td{padding:1mm 3mm}.two{display:flex}.two>div{width:50%}.card{width:105mm;height:140mm;float:left}</style>
 {% for headline in headlines %}<h1>{{ headline }}</h1>{% endfor %}{{ chart }}
-{% for rows in tables %}<div class="{{ kind }}"><table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>
-{% endfor %}</tr>{% endfor %}</table></div>{% endfor %}
+{% for rows in tables %}<div class="{{ kind }}">
+<table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>{% endfor %}</tr>{% endfor %}</table>
+</div>{% endfor %}
 <div class="two">{% for language in languages %}<div dir="{{ language.direction }}">
 {% for sentence in caution(language) %}<p>{{ sentence }}</p>{% endfor %}</div>{% endfor %}</div></html>""")
 
@@ -73,7 +77,9 @@ def register_fonts() -> str:
     return faces
 
 
-def chart(job: Job, series: list[pd.DataFrame], speakers: tuple[Language, ...], width_mm: float, height_mm: float) -> str:
+def chart(
+    job: Job, series: list[pd.DataFrame], speakers: tuple[Language, ...], width_mm: float, height_mm: float
+) -> str:
     """Stacked bars with every part and total labelled, named in each of the `speakers`, as an SVG."""
     inks = palette(job.edition.palette)
     first = speakers[0]
