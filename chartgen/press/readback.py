@@ -94,11 +94,17 @@ def _bounds(raw: Any, item: Any, height: float) -> list[float]:
 def numbers(text: str) -> list[str]:
     """Every number in a text, digits of any script as 0-9; a space between digits separates, a stop or comma joins.
 
-    >>> numbers("23\u00a0m, 0,68\u00a0s, ٢٣")
-    ['23', '0,68', '23']
+    >>> numbers("23\u00a0m, 0,68\u00a0s, ٢٣, 12.0 1,000")
+    ['23', '0,68', '23', '12', '1,000']
     """
     plain = "".join(str(unicodedata.digit(c)) if unicodedata.category(c) == "Nd" else c for c in text)
-    return _NUMBER.findall(plain.translate(_SEPARATORS))
+    return [_without_trailing_zeros(number) for number in _NUMBER.findall(plain.translate(_SEPARATORS))]
+
+
+def _without_trailing_zeros(number: str) -> str:
+    """12.0 and 12.50 as 12 and 12.5: a column of equal decimals says no more. Three digits after a sign may be
+    thousands and stay."""
+    return re.sub(r"[.,]0{1,2}$|(?<=[.,]\d)0$", "", number)
 
 
 def squeezed(text: str) -> str:

@@ -17,6 +17,8 @@ A3 = (297.0, 420.0)
 QR_MM = 40.0
 """Least side of the code on an A3 poster, quiet zone not counted (requirement D5)."""
 FIELD_COLUMNS = 6
+_FIELD_AIR = 1.6
+"""Between two lines of fields, in millimetres of the A3 design."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -191,9 +193,11 @@ def _fields(fields: Sequence[Field], width: float, gap: float, s: Sizes) -> tupl
     for start in range(0, len(fields), FIELD_COLUMNS):
         line = fields[start : start + FIELD_COLUMNS]
         height = max(_field_height(field, width, s) for field in line)
-        places += [Block(left=i * (width + gap), top=top, width=width, height=height) for i in range(len(line))]
-        top += height + 1.6 * s.unit
-    return tuple(places), top - 1.6 * s.unit
+        # Arabic tails reach below their line, into the air that follows.
+        tail = 1.2 * s.unit
+        places += [Block(left=i * (width + gap), top=top, width=width, height=height + tail) for i in range(len(line))]
+        top += height + _FIELD_AIR * s.unit
+    return tuple(places), top - _FIELD_AIR * s.unit
 
 
 def _field_height(field: Field, width: float, s: Sizes) -> float:
