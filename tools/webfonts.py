@@ -28,7 +28,7 @@ _LATIN = (
     | {0x0218, 0x0219, 0x021A, 0x021B}  # Romanian with comma below
     | set(map(ord, "ẀẁẂẃẄẅỲỳ"))
 )
-_SIGNS = set(map(ord, "‐‑–—‘’‚“”„…‹›‰−×÷·•²³½≈≤≥≠→←µμθηπ√°€ \u00a0\u2009\u202f"))
+_SIGNS = set(map(ord, "‐‑–—‘’‚“”„…‹›‰−×÷·•²³½≈≤≥≠→←µμβθηπ√∫°€ \u00a0\u2009\u202f"))
 _CYRILLIC = set(range(0x0400, 0x0460)) | {0x0490, 0x0491}
 _ARABIC = set(range(0x0600, 0x0700)) | set(range(0x20, 0x7F)) | set(range(0xA0, 0x100)) | _SIGNS
 # Where the source has no glyph of its own, a near one stands in: a narrow no-break space, a no-break hyphen.
@@ -52,6 +52,7 @@ FACES = (
     Face("text-400", "IBM Plex Sans", 400, "Chartgen Text", frozenset(_LATIN | _SIGNS)),
     Face("narrow-500", "IBM Plex Sans Condensed", 500, "Chartgen Narrow", frozenset(_LATIN | _SIGNS)),
     Face("narrow-700", "IBM Plex Sans Condensed", 700, "Chartgen Narrow", frozenset(_LATIN | _SIGNS)),
+    Face("text-400-basic", "IBM Plex Sans", 400, "Chartgen Text", _BASIC),
     Face("narrow-500-basic", "IBM Plex Sans Condensed", 500, "Chartgen Narrow", _BASIC),
     Face("narrow-700-basic", "IBM Plex Sans Condensed", 700, "Chartgen Narrow", _BASIC),
     # The condensed cut has no Cyrillic: there bold text takes the full width.

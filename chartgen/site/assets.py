@@ -20,15 +20,15 @@ INKS: Final = ("paper", "type", "reaction", "lag", "braking", "accent")
 # its contrast and a label its ground. Chosen by eye, held by the contrast tests.
 DARK: Final[Mapping[str, Mapping[str, str]]] = {
     "gorse": {
-        "paper": "#17151c", "type": "#f4efe2", "reaction": "#5d4a08", "lag": "#a788bf", "braking": "#d3c6ee",
+        "paper": "#17151c", "type": "#f4efe2", "reaction": "#5d4a08", "lag": "#916baf", "braking": "#dfd6f3",
         "accent": "#f0916f",
     },
     "lichen": {
-        "paper": "#131a1d", "type": "#eef2ea", "reaction": "#3f5527", "lag": "#6ea8a1", "braking": "#c6d8e2",
+        "paper": "#131a1d", "type": "#eef2ea", "reaction": "#3f5527", "lag": "#4f847e", "braking": "#d0dfe7",
         "accent": "#f0966c",
     },
     "bracken": {
-        "paper": "#1b1613", "type": "#f6eee1", "reaction": "#664a0e", "lag": "#cf8d55", "braking": "#ecd9c8",
+        "paper": "#1b1613", "type": "#f6eee1", "reaction": "#664a0e", "lag": "#ae6a31", "braking": "#ecd9c8",
         "accent": "#5fc3c0",
     },
 }  # fmt: skip
@@ -44,11 +44,18 @@ _FACES: Final[Mapping[str, tuple[tuple[str, str, int], ...]]] = {
     "arabic": (
         ("arabic-400", "Chartgen Arabic", 400),
         ("arabic-700", "Chartgen Arabic", 700),
+        ("text-400-basic", "Chartgen Text", 400),
         ("narrow-500-basic", "Chartgen Narrow", 500),
         ("narrow-700-basic", "Chartgen Narrow", 700),
     ),
 }
-_UNICODE_RANGE: Final = {"cyrillic": "U+0400-04FF"}
+_DESCRIPTORS: Final = {
+    "text-400-cyrillic": "unicode-range:U+0400-04FF;",
+    "text-700-cyrillic": "unicode-range:U+0400-04FF;",
+    # The face's own box stands so low that its letters hang at the top of a button; these centre them.
+    "arabic-400": "ascent-override:86%;descent-override:36%;line-gap-override:0%;",
+    "arabic-700": "ascent-override:86%;descent-override:36%;line-gap-override:0%;",
+}
 _SCRIPTS: Final = {"ar": ("arabic",), "fa": ("arabic",), "ur": ("arabic",), "uk": ("latin", "cyrillic"),
                    "bg": ("latin", "cyrillic"), "ru": ("latin", "cyrillic")}  # fmt: skip
 
@@ -88,9 +95,8 @@ def _fonts_css(script: str) -> str:
     out = []
     for file, family, weight in _FACES[script]:
         data = base64.b64encode((templates() / "site" / "fonts" / f"{file}.woff2").read_bytes()).decode("ascii")
-        limit = f"unicode-range:{_UNICODE_RANGE[script]};" if script in _UNICODE_RANGE else ""
         out.append(
-            f'@font-face{{font-family:"{family}";font-weight:{weight};font-display:swap;{limit}'
+            f'@font-face{{font-family:"{family}";font-weight:{weight};font-display:swap;{_DESCRIPTORS.get(file, "")}'
             f"src:url(data:font/woff2;base64,{data}) format('woff2')}}\n"
         )
     return "".join(out)

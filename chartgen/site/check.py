@@ -39,8 +39,7 @@ def check_pages(
     files: Mapping[str, bytes], edition: Edition, figures: Figures, languages: tuple[Language, ...]
 ) -> tuple[Finding, ...]:
     """Everything wrong with the finished files of an edition (`files`: bytes by path); () where all is right."""
-    rows = figures.table.to_dict("records")
-    records: Records = {int(r["row"]): {str(name): value for name, value in r.items()} for r in rows}
+    records = records_of(figures)
     pages = {path: read_page(data) for path, data in files.items() if path.endswith(".html")}
     findings = [*_expected(files, edition, figures, languages), *_data(files, figures)]
     for path, page in pages.items():
@@ -50,7 +49,7 @@ def check_pages(
         for path, page in pages.items():
             if path.startswith(f"{language.tag}/"):
                 findings += _language(path, page, language, languages)
-                findings += _numbers(path, page, language, records)
+                findings += check_numbers(path, page, language, records)
         findings += _every_row(pages, language, records)
     return tuple(findings)
 
@@ -120,7 +119,14 @@ def _language(path: str, page: ReadPage, language: Language, languages: tuple[La
             yield Finding("site.alternative", path, "has a chart without a text alternative in the page's language")
 
 
-def _numbers(path: str, page: ReadPage, language: Language, records: Records) -> Iterator[Finding]:
+def records_of(figures: Figures) -> Records:
+    """The rows of the figures by their number."""
+    rows = figures.table.to_dict("records")
+    return {int(row["row"]): {str(name): value for name, value in row.items()} for row in rows}
+
+
+def check_numbers(path: str, page: ReadPage, language: Language, records: Records) -> Iterator[Finding]:
+    """Every number of the page's tables and charts that is not the figures' own."""
     for table in page.tables:
         if table.kind in ("dist", "trace"):
             yield from _table(path, table, language, records)
@@ -194,9 +200,13 @@ def _agrees(printed: float, value: float, text: str, quantity: str, tag: str, ki
 
 
 def read_number(text: str, tag: str) -> float | None:
-    """A number as a locale writes it, back to a float; None where it is not one."""
+    """A number as a locale writes it, back to a float; None where it is not one.
+
+    Where thousands are parted by a space, either no-break space is read: a drawing takes the wide one for the narrow.
+    """
     style = number_style(tag)
-    plain = text.replace(style.group, "").replace(style.decimal, ".").replace(MINUS, "-")
+    groups = "\u00a0\u202f" if style.group.isspace() else style.group
+    plain = text.translate(dict.fromkeys(map(ord, groups))).replace(style.decimal, ".").replace(MINUS, "-")
     return float(plain) if re.fullmatch(r"-?\d+(\.\d+)?", plain) else None
 
 

@@ -41,8 +41,8 @@ _ANCHOR: Final = {
     ("left", "ltr"): "", ("center", "ltr"): "middle", ("right", "ltr"): "end",
     ("left", "rtl"): "end", ("center", "rtl"): "middle", ("right", "rtl"): "",
 }  # fmt: skip
-_ROLES: Final = {"ruler": "ruler"}
-"""Numbers that are no figures carry their role, so that the check of the finished page can tell them."""
+_FIGURES: Final = ("total", "part", "lag", "speed")
+"""Roles of labels that print a figure; the others are marked, so that the check of the finished page can tell them."""
 _OPENING: Final = re.compile(r"^<svg\b")
 
 
@@ -159,7 +159,9 @@ def _shared(label: Label, language: Language) -> str:
     """Attributes that several labels have in common. The direction is said outright where it is not the page's: in a
     right-to-left page it would be inherited and turn the anchor."""
     attributes = {
-        "class": " ".join(c for c in (_FACES[label.face], f"ink-{label.ink}", _ROLES.get(label.role)) if c),
+        "class": " ".join(
+            c for c in (_FACES[label.face], f"ink-{label.ink}", "" if label.role in _FIGURES else "free") if c
+        ),
         "font-size": f"{label.size_mm:g}",
         "text-anchor": _ANCHOR[label.anchor, label.dir],
         "direction": label.dir if label.dir != language.direction else "",

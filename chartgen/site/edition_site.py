@@ -142,7 +142,7 @@ def slope(language: Language, grade: float) -> Markup:
     if grade == 0.0:
         return escape(language.t("word.level"))
     word = language.t("word.uphill" if grade > 0 else "word.downhill")
-    return Markup('<bdi dir="ltr">{}</bdi>, {}').format(language.percent(abs(grade)), word)
+    return Markup('<bdi dir="ltr">{}</bdi>{}{}').format(language.percent(abs(grade)), comma(language), word)
 
 
 def slope_plain(language: Language, grade: float) -> str:
@@ -150,12 +150,17 @@ def slope_plain(language: Language, grade: float) -> str:
     if grade == 0.0:
         return language.t("word.level")
     word = language.t("word.uphill" if grade > 0 else "word.downhill")
-    return f"{isolated(language.percent(abs(grade)), language.direction)}, {word}"
+    return f"{isolated(language.percent(abs(grade)), language.direction)}{comma(language)}{word}"
 
 
 def colon(language: Language) -> str:
     """What stands between a label and its value: French sets a no-break space before the colon."""
     return "\u00a0: " if language.tag.split("-", maxsplit=1)[0] == "fr" else ": "
+
+
+def comma(language: Language) -> str:
+    """What stands between two parts of a name: Arabic has a comma of its own."""
+    return "\u060c " if language.direction == "rtl" else ", "
 
 
 def grade_id(grade: float) -> str:

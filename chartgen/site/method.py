@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Final
@@ -19,6 +20,9 @@ from chartgen.site.tables import TIME_STEP_S, deceleration, least_deceleration
 from chartgen.site.trace import Trace, traces
 
 GRAVITY_MPS2: Final = 9.80665
+"""Standard gravity, exact by definition; a test holds it to the mechanics' own."""
+
+_PLACEHOLDER: Final = re.compile(r"\{[a-z_]+\}")
 
 # The formulas of architecture's mechanics as they are worked out; one-letter symbols, explained below them.
 _BRAKES = Markup(
@@ -280,7 +284,9 @@ def _words(language: Language) -> Part:
     if language.own:
         paragraphs.append(language.html("method.words_own", count=language.number(len(language.own))))
     rows = tuple(
-        ValueRow("", (escape(text), Markup('<span lang="en-GB" dir="ltr">{}</span>').format(note)))
+        ValueRow(
+            "", (escape(_PLACEHOLDER.sub("…", text)), Markup('<span lang="en-GB" dir="ltr">{}</span>').format(note))
+        )
         for _, text, note in language.doubtful
     )
     paragraphs.append(escape(language.t("method.words_doubtful" if rows else "method.words_none_doubtful")))

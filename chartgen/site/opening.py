@@ -8,12 +8,14 @@ from typing import Any, Final
 
 from chartgen.edition.model import Edition
 from chartgen.language.load import Language
+from chartgen.language.sentences import caution_sentences
 from chartgen.output import File
 from chartgen.site.assets import scripts
 from chartgen.site.frame import CSP
 from chartgen.site.render import render
 
 PATH: Final = "index.html"
+_TONGUE: Final = {"tag", "direction", "own_name", "title", "publisher", "editions", "caution_title", "caution"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,6 +45,8 @@ def about(edition: Edition, languages: Sequence[Language]) -> dict[str, object]:
                 "title": language.text(edition.title),
                 "publisher": language.text(edition.publisher),
                 "editions": language.t("page.opening"),
+                "caution_title": language.t("caution.title"),
+                "caution": " ".join(caution_sentences(language)),
             }
             for language in languages
         ],
@@ -55,11 +59,14 @@ def opening(editions: Mapping[str, Mapping[str, Any]]) -> File:
     An edition whose record lacks its languages (another program's, or an older one's) is left out. Raises ValueError
     where none is left.
     """
-    ids = sorted(id for id in editions if editions[id].get("languages"))
+    ids = sorted(id for id in editions if _known(editions[id]))
     if not ids:
         raise ValueError("no edition to list")
     tongues = {tongue["tag"]: tongue for id in ids for tongue in editions[id]["languages"]}
     first = editions[ids[0]]["languages"][0]
+    headings: dict[str, Mapping[str, str]] = {}  # the same word in two languages stands once
+    for tag in sorted(tongues, key=lambda tag: (tag != first["tag"], tag)):
+        headings.setdefault(tongues[tag]["editions"], tongues[tag])
     sheets = [f"{ids[0]}/assets/site.css"]
     for id in ids:
         for tongue in editions[id]["languages"]:
@@ -72,7 +79,8 @@ def opening(editions: Mapping[str, Mapping[str, Any]]) -> File:
         first=first,
         stylesheets=sheets,
         icon=f"{ids[0]}/assets/icon.svg",
-        headings=[tongues[tag] for tag in sorted(tongues, key=lambda tag: (tag != first["tag"], tag))],
+        headings=list(headings.values()),
+        tongues=list(tongues.values()),
         editions=[
             {
                 "id": id,
@@ -85,6 +93,11 @@ def opening(editions: Mapping[str, Mapping[str, Any]]) -> File:
         ],
     )
     return File(PATH, page)
+
+
+def _known(about: Mapping[str, Any]) -> bool:
+    tongues = about.get("languages") or ()
+    return bool(tongues) and {"reference", "issue", "issued"} <= set(about) and all(set(t) >= _TONGUE for t in tongues)
 
 
 def _entry(id: str, tongue: Mapping[str, str]) -> _Entry:

@@ -78,14 +78,7 @@ def pages(
     ``index.html`` (choice of language), ``<tag>/*.html``, ``assets/*``, ``data/figures.csv`` and ``.json``.
     `sizes`: bytes of finished sheets by path; where given, the download lists name them.
     """
-    known = sizes or {}
-    site = Site(
-        edition=edition,
-        figures=figures,
-        languages=languages,
-        leaflets=tuple(Leaflet(path=s.path, title=s.title, lang=s.lang, bytes=known.get(s.path)) for s in sheets),
-        groups=tuple(groups(edition, figures)),
-    )
+    site = _site(edition, figures, languages, sheets, sizes or {})
     drawings = Drawings(site)
     data = tuple(data_files(figures))
     yield File("index.html", choose_page(site))
@@ -93,6 +86,42 @@ def pages(
         yield from _language_pages(site, language, drawings, data)
     yield from assets(edition.palette, (language.tag for language in languages))
     yield from data
+
+
+def sized_pages(
+    edition: Edition,
+    figures: Figures,
+    languages: tuple[Language, ...],
+    sheets: Iterable[Printed],
+    sizes: Mapping[str, int],
+) -> Iterator[File]:
+    """The downloads pages alone, once the sheets' sizes are known: the same files as `pages` gives with `sizes`."""
+    site = _site(edition, figures, languages, sheets, sizes)
+    data = tuple(data_files(figures))
+    for language in languages:
+        yield _downloads(site, language, data)
+
+
+def _site(
+    edition: Edition,
+    figures: Figures,
+    languages: tuple[Language, ...],
+    sheets: Iterable[Printed],
+    sizes: Mapping[str, int],
+) -> Site:
+    return Site(
+        edition=edition,
+        figures=figures,
+        languages=languages,
+        leaflets=tuple(Leaflet(path=s.path, title=s.title, lang=s.lang, bytes=sizes.get(s.path)) for s in sheets),
+        groups=tuple(groups(edition, figures)),
+    )
+
+
+def _downloads(site: Site, language: Language, data: tuple[File, ...]) -> File:
+    page = downloads_page(site, language, data)
+    framed = frame(site, language, "downloads.html", page.title, page.title)
+    return File(f"{language.tag}/downloads.html", render("downloads.html", frame=framed, page=page))
 
 
 def _language_pages(site: Site, language: Language, drawings: Drawings, data: tuple[File, ...]) -> Iterator[File]:
@@ -108,9 +137,7 @@ def _language_pages(site: Site, language: Language, drawings: Drawings, data: tu
     method = method_page(site, language)
     framed = frame(site, language, "method.html", method.title, method.intro)
     yield File(f"{folder}/method.html", render("method.html", frame=framed, page=method))
-    downloads = downloads_page(site, language, data)
-    framed = frame(site, language, "downloads.html", downloads.title, downloads.title)
-    yield File(f"{folder}/downloads.html", render("downloads.html", frame=framed, page=downloads))
+    yield _downloads(site, language, data)
 
 
 def _overview(site: Site, language: Language, blocks: Blocks) -> bytes:

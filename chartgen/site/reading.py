@@ -132,7 +132,7 @@ class _Reader(HTMLParser):
 
     def handle_data(self, data: str) -> None:
         if self.chart is not None:
-            if not any("ruler" in values.get("class", "").split() for _, values in self.open):
+            if not any("free" in values.get("class", "").split() for _, values in self.open):
                 self.chart.numbers += [data] if any(c.isdigit() for c in data) else []
             return
         self.words.append(data)
