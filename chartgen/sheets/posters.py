@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
@@ -172,32 +173,29 @@ def _made(task: _Task, html: str, account: Account) -> Sheet:
 
 def _fit(task: _Task, room: PosterPlan, headlines: Sequence[str]) -> tuple[Drawing, PosterPlan, Headline]:
     """The drawing as tall as may be, with the headline in its free paper; where that is too small, the headline gets
-    paper of its own above the drawing, as much as it needs and no more."""
+    paper of its own above the drawing, in thirds of what it needs there, so that it is no more than it takes."""
     unit = room.sizes.unit
-    wanted = [_HEADLINE_MM * unit * step for step in _HEADLINE_STEPS]
-    enough = [size for size in wanted if size >= _ENOUGH * wanted[0]]
-    lowered = 0.0
-    while True:
-        block = Block(
-            left=room.drawing.left, top=room.drawing.top + lowered, width=room.drawing.width,
-            height=room.drawing.height - lowered,
-        )  # fmt: skip
+    sizes = [_HEADLINE_MM * unit * step for step in _HEADLINE_STEPS]
+    clear = 4 * unit
+    later = 1.0 if task.edition.emphasis == "equal" else _LATER_SCALE
+    against = [i for i, language in enumerate(task.languages) if language.direction != task.direction]
+    free = [(0.0, room.drawing.width, math.inf)]
+    alone = fit_headline(headlines, free, top_mm=0, sizes_mm=sizes, clear_mm=0, later_scale=later, against=against)
+    if alone is None or alone.bottom_mm > 0.4 * room.drawing.height:
+        raise EditionFaults((_headline_fault(task, headlines),))
+    smallest = min(_ENOUGH * sizes[0], alone.lines[0].size_mm)
+    for thirds in range(4):
+        lowered = (alone.bottom_mm + clear) * thirds / 3
+        block = replace(room.drawing, top=room.drawing.top + lowered, height=room.drawing.height - lowered)
         drawing = _drawing(task, block)
-        sizes = enough if block.height > 0.5 * room.drawing.height else wanted
+        skyline = [(start, end, y + lowered) for start, end, y in reading_order(drawing)]
         fitted = fit_headline(
-            headlines,
-            [(start, end, y + lowered) for start, end, y in reading_order(drawing)],
-            top_mm=0.0,
-            sizes_mm=sizes,
-            clear_mm=4 * unit,
-            later_scale=1.0 if task.edition.emphasis == "equal" else _LATER_SCALE,
-            against=[i for i, language in enumerate(task.languages) if language.direction != task.direction],
-        )
+            headlines, skyline, top_mm=0, sizes_mm=[size for size in sizes if size >= smallest], clear_mm=clear,
+            later_scale=later, against=against,
+        )  # fmt: skip
         if fitted is not None:
             return drawing, replace(room, drawing=block), fitted
-        if block.height < 0.4 * room.drawing.height:
-            raise EditionFaults((_headline_fault(task, headlines),))
-        lowered += 8 * unit
+    raise EditionFaults((_headline_fault(task, headlines),))
 
 
 def _drawing(task: _Task, block: Block) -> Drawing:

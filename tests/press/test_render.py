@@ -128,18 +128,17 @@ for path, digest in sorted((s.path, hashlib.sha256(render(s)).hexdigest()) for s
 def test_two_processes_print_the_same_bytes(tmp_path: Path) -> None:
     root = Path(__file__).parents[2]
     edition = root / "tests/sheets/editions/two-ways.toml"
-    heard = []
+    started = []
     for seed, zone, tongue, order in (("1", "UTC", "C.UTF-8", "forward"), ("2", "Asia/Tokyo", "fr_FR.UTF-8", "back")):
         folder = tmp_path / seed
         folder.mkdir()
         environment = {**os.environ, "PYTHONHASHSEED": seed, "TZ": zone, "LANG": tongue, "LC_ALL": tongue}
         environment |= {"SOURCE_DATE_EPOCH": seed} if seed == "2" else {}
-        done = subprocess.run(
-            [sys.executable, "-c", PROGRAM, str(root), str(edition), order],
-            cwd=folder, env=environment, capture_output=True, text=True, check=True,
-        )  # fmt: skip
-        heard.append(done.stdout.splitlines())
-        assert not list(folder.iterdir())
+        command = [sys.executable, "-c", PROGRAM, str(root), str(edition), order]
+        started.append(subprocess.Popen(command, cwd=folder, env=environment, stdout=subprocess.PIPE, text=True))
+    heard = [process.communicate()[0].splitlines() for process in started]
+    assert [process.returncode for process in started] == [0, 0]
+    assert not [path for seed in "12" for path in (tmp_path / seed).iterdir()]
     assert len(heard[0]) == 4
     assert heard[0] == heard[1]
 
