@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 from chartgen.errors import ChartgenError, CommandFault, EditionFaults, Fault, MachineFault, ProductFaults
 
 
@@ -22,17 +24,28 @@ def sentences(error: ChartgenError) -> tuple[str, ...]:
             return (_end(str(error)),)
 
 
+_COUNTED = re.compile(r"(driver|surface|vehicle|case|poster)\[([0-9]+)\]")
+"""Sections that stand in a file more than once: key paths count them from 1, and the message says so in words."""
+
+
 def fault_line(fault: Fault) -> str:
     """``file: key = given: problem. Right: allowed. Did you mean "near"?``, without what is not there."""
     where = ": ".join(filter(None, [fault.file, fault.key]))
     if fault.given is not None:
         where += f" = {fault.given}" if fault.key else f": {fault.given}"
+    if (counted := _COUNTED.match(fault.key)) is not None:
+        where += f" (in the {_ordinal(int(counted[2]))} [[{counted[1]}]])"
     parts = [f"{where}: {_end(fault.problem)}"]
     if fault.allowed:
         parts.append(f"Right: {_end(fault.allowed)}")
     if fault.near:
         parts.append(f'Did you mean "{fault.near}"?')
     return " ".join(parts)
+
+
+def _ordinal(number: int) -> str:
+    tail = "th" if number % 100 in (11, 12, 13) else {1: "st", 2: "nd", 3: "rd"}.get(number % 10, "th")
+    return f"{number}{tail}"
 
 
 def _count(number: int, what: str, so: str) -> str:

@@ -8,16 +8,16 @@ from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import Any, TypeVar, cast
 
+from chartgen.edition import cases as case_lists
 from chartgen.edition import parts, prints, scales
 from chartgen.edition.find import edition_file, read_text, read_toml
-from chartgen.edition.model import Case, Edition
+from chartgen.edition.model import Edition
 from chartgen.edition.reading import TAG_PATTERN, Reading, Row, listed, near
 from chartgen.edition.walk import read_table
 from chartgen.edition.wording import own_words
 from chartgen.errors import EditionFaults
 from chartgen.resources import templates
 
-MOST_ROWS = 5000
 _T = TypeVar("_T")
 
 
@@ -53,25 +53,27 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     vehicles = _each(root, "vehicle", lambda row: parts.vehicle(reading, row, method, root["vehicle"]))
     for kind in ("driver", "surface", "vehicle", "poster"):
         parts.unique(reading, root.get(kind, []))
-    ids = {
-        kind: tuple(row["id"] for row in root.get(kind, []) if "id" in row) for kind in ("driver", "vehicle", "surface")
-    }
-    cases = _cases(reading, root, ids)
-    _not_too_many(reading, cases, len(speeds))
+    ids = {kind: _ids(root.get(kind, [])) for kind in ("driver", "vehicle", "surface")}
+    cases = case_lists.cases(reading, root, ids)
+    few_enough = case_lists.few_enough(reading, cases, max(len(speeds), 1))
     words = own_words(reading, folder)
     press: Row = root.get("press", Row("press"))
     for key in press:
         reading.not_yet(press.at(key), "the press edition (inks, bleed, marks, profile) is not made yet")
-    if not cases or not speed_unit or not distance_unit or not speeds:
+    if not (speed_unit and distance_unit and speeds):
         return None
     made = prints.Made(
-        speeds={float(s.number): scales.shown(s.number, speed_unit) for s in speeds},
+        speeds={float(s.number): s.text for s in speeds},
         speed_unit=speed_unit,
         distance_unit=distance_unit,
         ids=ids,
         cases=cases,
-        rows=frozenset(r for case in cases for r in _product(case)),
-        lengths={row["id"]: row["length"].value if "length" in row else None for row in root["vehicle"] if "id" in row},
+        rows=frozenset(r for c in cases for r in case_lists.combinations(c)) if cases and few_enough else None,
+        lengths={
+            row["id"]: row["length"].value if "length" in row else None
+            for row in root.get("vehicle", [])
+            if "id" in row
+        },
     )
     posters = [prints.poster(reading, row, i, made) for i, row in enumerate(root.get("poster", []), 1)]
     cards = prints.cards(reading, root["cards"], folder, made) if "cards" in root else None
@@ -115,6 +117,12 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     )
 
 
+def _ids(rows: Sequence[Row]) -> tuple[str, ...]:
+    """The ids there are; none where one is not sound, since what refers to it would be faulted for its sake."""
+    ids = tuple(dict.fromkeys(row["id"] for row in rows if "id" in row))
+    return ids if all("id" in row for row in rows) else ()
+
+
 def _each(root: Row, kind: str, build: Callable[[Row], _T | None]) -> tuple[_T, ...]:
     built = [build(row) for row in root.get(kind, [])]
     return tuple(item for item in built if item is not None)
@@ -154,57 +162,3 @@ def _document_control(reading: Reading, head: Row) -> None:
             if key not in head and key not in head.broken:
                 right = "review_by = 2027-11-02" if key == "review_by" else f'{key} = "…"'
                 reading.fault(head.at(key), "a controlled edition needs this", right)
-
-
-# ---- cases -------------------------------------------------------------------------------------------------------
-
-
-def _cases(reading: Reading, root: Row, ids: dict[str, tuple[str, ...]]) -> tuple[Case, ...]:
-    rows: Sequence[Row] = root.get("case", [])
-    if not rows:
-        if "case" in root.broken or not all(ids.values()):
-            return ()
-        return (Case(drivers=ids["driver"], vehicles=ids["vehicle"], surfaces=ids["surface"]),)
-    cases: list[Case] = []
-    seen: dict[tuple[str, str, str, float], str] = {}
-    for row in rows:
-        for kind in ("driver", "vehicle", "surface"):
-            for number, given in enumerate(row.get(kind, ()), 1):
-                if not prints.known(reading, f"{row.at(kind)}[{number}]", kind, given, ids[kind]):
-                    row.broken.add(kind)
-        if row.broken:
-            continue
-        grades = tuple(g.value for g in row["grade"]) if "grade" in row else (0.0,)
-        case = Case(drivers=row["driver"], vehicles=row["vehicle"], surfaces=row["surface"], grades=grades)
-        cases.append(case)
-        _only_once(reading, row, case, seen)
-    return tuple(cases)
-
-
-def _product(case: Case) -> list[tuple[str, str, str, float]]:
-    return [(d, v, s, g) for d in case.drivers for v in case.vehicles for s in case.surfaces for g in case.grades]
-
-
-def _only_once(reading: Reading, row: Row, case: Case, seen: dict[tuple[str, str, str, float], str]) -> None:
-    """A combination in two cases would stand in every table twice."""
-    if len(case.drivers) * len(case.vehicles) * len(case.surfaces) * len(case.grades) > MOST_ROWS:
-        return
-    for combination in _product(case):
-        if combination in seen:
-            driver, vehicle, surface, grade = combination
-            reading.fault(
-                row.path,
-                f"this combination stands in {seen[combination]} already",
-                "each combination once",
-                given=f"{driver}, {vehicle}, {surface}, {grade * 100:g} %",
-            )
-            return
-        seen[combination] = row.path
-
-
-def _not_too_many(reading: Reading, cases: Sequence[Case], speeds: int) -> None:
-    rows = speeds * sum(len(c.drivers) * len(c.vehicles) * len(c.surfaces) * len(c.grades) for c in cases)
-    if rows > MOST_ROWS:
-        reading.fault(
-            "case", f"the cases make {rows:,} rows", f"at most {MOST_ROWS:,} rows: fewer speeds or shorter lists"
-        )

@@ -141,7 +141,7 @@ def _lognormal(reading: Reading, given: Row) -> tuple[float, float] | None:
 
 def _plain(row: Row) -> dict[str, str]:
     """A table of quantities as it was written, for a message."""
-    return {key: f"{float(value.number):g} {value.unit}" for key, value in row.items()}
+    return {key: value.text for key, value in row.items()}
 
 
 # ---- surfaces ----------------------------------------------------------------------------------------------------
@@ -216,7 +216,7 @@ def _falling(reading: Reading, given: Row) -> Friction | None:
             given.path,
             f"near standstill this friction reaches {at_rest:.2f}",
             f"max = … beside f60 and sp, {FRICTION_BOUNDS.says}",
-            given={"f60": f60, "sp": f"{sp_kmh:g} km/h"},
+            given={"f60": f60, "sp": given["sp"].text},
         )
         return None
     if at_rest > 1.2:
@@ -276,7 +276,7 @@ def _method_inputs(reading: Reading, row: Row, method: str) -> None:
     for key in [k for k in row if k in unused]:
         row.broken.add(key)
         value = row[key]
-        shown = f"{float(value.number):g} {value.unit}" if isinstance(value, Quantity) else value
+        shown = value.text if isinstance(value, Quantity) else value
         reading.fault(
             row.at(key),
             f"the method {method} cannot use this",

@@ -2,41 +2,43 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
 
 from chartgen.edition import headline
+from chartgen.edition.cases import Combination, combination_text, known
 from chartgen.edition.catalogue import GAP_RULES
 from chartgen.edition.model import Cards, Case, Poster, Show
 from chartgen.edition.paper import paper
 from chartgen.edition.reading import Reading, Row, listed, near
 from chartgen.edition.roster import read_roster
 
-_Row = tuple[str, str, str, float]
-
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Made:
     """What the rest of the edition offers to a sheet. `speeds`: value -> as written; `ids` by "driver", "vehicle",
-    "surface"; `rows`: every (driver, vehicle, surface, grade) that some case has."""
+    "surface"."""
 
     speeds: Mapping[float, str]
     speed_unit: str
     distance_unit: str
     ids: Mapping[str, tuple[str, ...]]
     cases: tuple[Case, ...]
-    rows: frozenset[_Row]
+    rows: frozenset[Combination] | None
+    """None where a case is at fault: then no combination is missed, and one mistake gives one message."""
     lengths: Mapping[str, float | None]
     """Length in m by vehicle id."""
 
+    def first(self) -> Case:
+        """What a sheet shows that does not say: the first of each list of the first case."""
+        if self.cases:
+            return self.cases[0]
+        # No sound case: stand-ins, so that the rest of a sheet can be held against the edition all the same.
+        return Case(drivers=self.ids["driver"], vehicles=self.ids["vehicle"], surfaces=self.ids["surface"])
 
-def known(reading: Reading, where: str, kind: str, given: str, ids: Sequence[str]) -> bool:
-    """Fault a reference to an id that does not exist."""
-    if given in ids:
-        return True
-    reading.fault(where, f"there is no {kind} with this id", listed(ids), given=given, near=near(given, ids))
-    return False
+    def has(self, combination: Combination) -> bool:
+        return self.rows is None or combination in self.rows
 
 
 # ---- posters -----------------------------------------------------------------------------------------------------
@@ -45,11 +47,11 @@ def known(reading: Reading, where: str, kind: str, given: str, ids: Sequence[str
 def poster(reading: Reading, row: Row, number: int, made: Made) -> Poster | None:
     """One [[poster]]; None where it does not hold together."""
     show = _show(reading, row, made)
-    if show is not None and "headline" in row:
-        for tag, text in row["headline"].items():
-            where = row.at(f"headline.{tag}")
-            for item in headline.check(reading, where, text, made.speeds, made.speed_unit, made.ids):
-                _exists(reading, where, show, item, made)
+    for tag, text in row.get("headline", {}).items():
+        where = row.at(f"headline.{tag}")
+        for item in headline.check(reading, where, text, made.speeds, made.speed_unit, made.ids):
+            if show is not None:
+                _row_exists(reading, where, show, item, made)
     if row.broken or show is None:
         return None
     read_from = row.get("read_from")
@@ -68,25 +70,22 @@ def _show(reading: Reading, row: Row, made: Made) -> Show | None:
     given: Row = row.get("show", Row(row.at("show")))
     if "show" in row.broken or given.broken:
         return None
-    first = made.cases[0]
+    first = made.first()
     before = len(reading.faults)
     drivers: tuple[str, ...] = given.get("driver", first.drivers[:1])
-    vehicle: str = given.get("vehicle", first.vehicles[0])
-    surface: str = given.get("surface", first.surfaces[0])
+    vehicle: str = given.get("vehicle", next(iter(first.vehicles), ""))
+    surface: str = given.get("surface", next(iter(first.surfaces), ""))
     grade = given["grade"].value if "grade" in given else first.grades[0]
-    for driver in drivers:
-        known(reading, given.at("driver"), "driver", driver, made.ids["driver"])
-    known(reading, given.at("vehicle"), "vehicle", vehicle, made.ids["vehicle"])
-    known(reading, given.at("surface"), "surface", surface, made.ids["surface"])
+    for kind, chosen in (("driver", drivers), ("vehicle", (vehicle,)), ("surface", (surface,))):
+        for item in chosen if kind in given else ():
+            known(reading, given.at(kind), kind, item, made.ids[kind])
     speeds = _speeds(reading, given, made)
     if len(reading.faults) > before:
         return None
-    for driver in drivers:
-        if (driver, vehicle, surface, grade) not in made.rows:
-            _no_row(reading, given.path, (driver, vehicle, surface, grade))
-    if len(reading.faults) > before:
-        return None
-    return Show(drivers=drivers, vehicle=vehicle, surface=surface, grade=grade, speeds=speeds)
+    missing = [c for c in ((driver, vehicle, surface, grade) for driver in drivers) if not made.has(c)]
+    for combination in missing:
+        _no_row(reading, given.path, combination)
+    return None if missing else Show(drivers=drivers, vehicle=vehicle, surface=surface, grade=grade, speeds=speeds)
 
 
 def _speeds(reading: Reading, given: Row, made: Made) -> tuple[float, ...] | None:
@@ -100,7 +99,7 @@ def _speeds(reading: Reading, given: Row, made: Made) -> tuple[float, ...] | Non
                 f"{given.at('speeds')}[{number}]",
                 "this is not one of the edition's speeds",
                 listed(list(made.speeds.values())),
-                given=f"{value:g} {quantity.unit}",
+                given=quantity.text,
             )
         elif value in values:
             reading.fault(f"{given.at('speeds')}[{number}]", "this speed stands there twice", "each speed once")
@@ -108,21 +107,20 @@ def _speeds(reading: Reading, given: Row, made: Made) -> tuple[float, ...] | Non
     return tuple(sorted(values))
 
 
-def _no_row(reading: Reading, where: str, row: _Row) -> None:
-    driver, vehicle, surface, grade = row
-    given = f"{driver}, {vehicle}, {surface}, {grade * 100:g} %"
-    reading.fault(where, "no [[case]] has this combination", "a case with all four of them", given=given)
+def _no_row(reading: Reading, where: str, combination: Combination) -> None:
+    given, allowed = combination_text(combination), "a case with all four of them"
+    reading.fault(where, "no [[case]] has this combination", allowed, given=given)
 
 
-def _exists(reading: Reading, where: str, show: Show, item: headline.Placeholder, made: Made) -> None:
-    row = (
-        item.rows.get("driver", show.drivers[0]),
+def _row_exists(reading: Reading, where: str, show: Show, item: headline.Placeholder, made: Made) -> None:
+    combination = (
+        item.rows.get("driver", next(iter(show.drivers), "")),
         item.rows.get("vehicle", show.vehicle),
         item.rows.get("surface", show.surface),
         show.grade if item.grade is None else item.grade,
     )
-    if row not in made.rows:
-        _no_row(reading, where, row)
+    if not made.has(combination):
+        _no_row(reading, where, combination)
 
 
 # ---- cards -------------------------------------------------------------------------------------------------------
@@ -130,14 +128,15 @@ def _exists(reading: Reading, where: str, show: Show, item: headline.Placeholder
 
 def cards(reading: Reading, row: Row, folder: Path, made: Made) -> Cards | None:
     """The [cards] section with its roster; None where it does not hold together."""
-    first = made.cases[0]
+    first = made.first()
     before = len(reading.faults)
-    driver: str = row.get("driver", first.drivers[0])
+    driver: str = row.get("driver", next(iter(first.drivers), ""))
     surfaces: tuple[str, ...] = row.get("surfaces", first.surfaces)
     grade = row["grade"].value if "grade" in row else first.grades[0]
-    known(reading, row.at("driver"), "driver", driver, made.ids["driver"])
-    for surface in surfaces:
-        known(reading, row.at("surfaces"), "surface", surface, made.ids["surface"])
+    if "driver" in row:
+        known(reading, row.at("driver"), "driver", driver, made.ids["driver"])
+    for number, surface in enumerate(row.get("surfaces", ()), 1):
+        known(reading, f"{row.at('surfaces')}[{number}]", "surface", surface, made.ids["surface"])
     gap = _gap(reading, row, made)
     size, sheet = row.get("size") or paper("A6"), row.get("sheet") or paper("A4")
     for key, given, now in (("size", size, "A6"), ("sheet", sheet, "A4")):
@@ -146,12 +145,12 @@ def cards(reading: Reading, row: Row, folder: Path, made: Made) -> Cards | None:
     if row.broken or gap is None or len(reading.faults) > before:
         return None
     works = {
-        vehicle: all((driver, vehicle, surface, grade) in made.rows for surface in surfaces)
+        vehicle: all(made.has((driver, vehicle, surface, grade)) for surface in surfaces)
         for vehicle in made.ids["vehicle"]
     }
     roster = read_roster(reading, folder, row["roster"], works)
     if GAP_RULES[gap].per_length_s_per_m is not None:
-        for vehicle in dict.fromkeys(r.vehicle for r in roster if made.lengths[r.vehicle] is None):
+        for vehicle in dict.fromkeys(r.vehicle for r in roster if made.lengths.get(r.vehicle) is None):
             reading.fault(
                 row.at("gap"), f'the rule goes by length, and the vehicle "{vehicle}" states none', 'length = "16.5 m"',
                 given=gap,

@@ -18,14 +18,13 @@ from chartgen.edition.misspelt import what_is_wrong
 
 @dataclass(frozen=True, slots=True)
 class Quantity:
-    """`number` and `unit` as written, `value` in the measure's inside unit."""
+    """`text` as written; its `number` and `unit`; `value` in the measure's inside unit."""
+
+    text: str
 
     number: Fraction
     unit: str
     value: float
-
-    def __str__(self) -> str:
-        return f"{float(self.number):g} {self.unit}"
 
 
 @cache
@@ -56,7 +55,7 @@ def parse(text: str, measure: Measure) -> Quantity:
     if found is None or found[2] not in measure.units:
         raise what_is_wrong(text, measure)
     number = Fraction(found[1])
-    return Quantity(number, found[2], float(number * factor(measure.units[found[2]], measure.inside)))
+    return Quantity(text, number, found[2], float(number * factor(measure.units[found[2]], measure.inside)))
 
 
 def parse_size(text: str) -> tuple[float, float]:

@@ -91,6 +91,8 @@ def near(word: str, names: Iterable[str]) -> str | None:
 
 
 def listed(names: Iterable[str]) -> str:
-    """ "a, b or c"."""
+    """ "a, b or c"; of a long list the first twelve."""
     words = list(names)
+    if len(words) > 12:
+        return ", ".join(words[:12]) + f" … ({len(words)} in all)"
     return " or ".join(filter(None, [", ".join(words[:-1]), *words[-1:]]))

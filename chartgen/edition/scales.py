@@ -47,7 +47,8 @@ def units(reading: Reading, root: Row) -> tuple[SpeedUnit | None, DistanceUnit |
 
 
 def shown(number: Fraction, unit: str) -> str:
-    return f"{float(number):g} {unit}"
+    """A number made here, as it would be written."""
+    return f"{float(number):.12g} {unit}"
 
 
 def speeds(reading: Reading, root: Row, unit: str | None) -> tuple[Quantity, ...]:
@@ -73,7 +74,7 @@ def speeds(reading: Reading, root: Row, unit: str | None) -> tuple[Quantity, ...
 
 
 def _speed_is_sound(reading: Reading, where: str, speed: Quantity, unit: str | None) -> None:
-    given = shown(speed.number, speed.unit)
+    given = speed.text
     if speed.number <= 0:
         reading.fault(where, "a speed must be above 0", f'such as "30 {unit or "mph"}"', given=given)
     elif speed.value > FASTEST_MPS:
@@ -90,14 +91,14 @@ def _rising(reading: Reading, row: Row) -> tuple[Quantity, ...]:
                 f"speeds.steps[{i}]",
                 "this speed stands there twice",
                 "each speed once",
-                given=shown(after.number, after.unit),
+                given=after.text,
             )
         elif after.number < before.number:
             reading.fault(
                 f"speeds.steps[{i}]",
                 "the speeds do not rise",
                 "from slow to fast",
-                given=shown(after.number, after.unit),
+                given=after.text,
             )
     return steps
 
@@ -106,21 +107,21 @@ def _stepped(reading: Reading, row: Row, unit: str) -> tuple[Quantity, ...]:
     """from, to, by: exact, counted before any is made."""
     first, last, by = (row[key].number for key in ("from", "to", "by"))
     if last < first:
-        reading.fault("speeds.to", "the last speed is below the first", "from slow to fast", given=shown(last, unit))
+        reading.fault("speeds.to", "the last speed is below the first", "from slow to fast", given=row["to"].text)
         return ()
     steps = (last - first) / by
     if steps + 1 > MOST_SPEEDS:
         count = f"{int(steps) + 1:,}"
-        reading.fault("speeds.by", f"these are {count} speeds", f"at most {MOST_SPEEDS}", given=shown(by, unit))
+        reading.fault("speeds.by", f"these are {count} speeds", f"at most {MOST_SPEEDS}", given=row["by"].text)
         return ()
     if steps.denominator != 1:
         below = first + int(steps) * by
         right = f'"{shown(below, unit)}" or "{shown(below + by, unit)}"'
-        reading.fault("speeds.to", "the last speed is not one of the steps", right, given=shown(last, unit))
+        reading.fault("speeds.to", "the last speed is not one of the steps", right, given=row["to"].text)
         return ()
     to_mps = factor(SPEED.units[unit], SPEED.inside)
     numbers = [first + i * by for i in range(int(steps) + 1)]
-    return tuple(Quantity(n, unit, float(n * to_mps)) for n in numbers)
+    return tuple(Quantity(shown(n, unit), n, unit, float(n * to_mps)) for n in numbers)
 
 
 def rounding(reading: Reading, figures: Row, unit: str | None, also: str | None) -> Rounding:
@@ -137,7 +138,7 @@ def rounding(reading: Reading, figures: Row, unit: str | None, also: str | None)
         )
     if "also_step" in row and also is None:
         reading.fault(row.at("also_step"), "there is no second distance unit", "units.also, or leave it out",
-                      given=shown(row["also_step"].number, row["also_step"].unit))  # fmt: skip
+                      given=row["also_step"].text)  # fmt: skip
         also_step = 1.0
     else:
         also_step = _step(reading, row, "also_step", also)
@@ -148,7 +149,7 @@ def _step(reading: Reading, row: Row, key: str, unit: str | None) -> float:
     step: Quantity | None = row.get(key)
     if step is None or unit is None:
         return 1.0
-    given = shown(step.number, step.unit)
+    given = step.text
     if step.unit != unit:
         reading.fault(row.at(key), f"this distance is printed in {unit}", f'such as "1 {unit}"', given=given)
     elif not 0 < step.number <= 100:

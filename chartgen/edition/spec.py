@@ -181,7 +181,9 @@ SURFACE: dict[str, Key] = {
 }
 VEHICLE: dict[str, Key] = {
     "id": Key(says="Name used in this file and in web addresses.", form="id", needed=True),
-    "use": Key(says="A preset of the catalogue; keys beside it override it.", form="use"),
+    "use": Key(
+        says="A preset of the catalogue.", form="use", not_yet="the catalogue has no vehicles; write the values here"
+    ),
     "kind": Key(says="What it is.", form="choice", choices=KINDS),
     "name": Key(says="Name, by language.", form="texts"),
     "load": Key(says="Laden or unladen.", form="choice", choices=("laden", "unladen")),

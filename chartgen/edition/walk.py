@@ -48,8 +48,11 @@ def _read_key(reading: Reading, row: Row, key: str, about: Key, raw: object) -> 
         reading.fault(where, f"not yet: {about.not_yet}", "leave it out", given=raw)
     else:
         value = _read_value(reading, where, about, raw)
-        if value is not None and len(reading.faults) == before:
+        sound = len(reading.faults) == before
+        # Tables come back with what is sound in them: others refer to their ids, and one mistake gives one message.
+        if value is not None and (sound or isinstance(value, Row) or about.form == "tables"):
             row[key] = value
+        if value is not None and sound:
             return
     row.broken.add(key)
 
