@@ -40,6 +40,8 @@ _HEADLINE_MM = 20.0
 _HEADLINE_STEPS = tuple(0.95**i for i in range(18))
 _ENOUGH = 0.6
 """A headline smaller than this part of its largest size gets paper of its own above the drawing."""
+_MOST_HEADLINE = 0.36
+"""Part of the height between brand and table that a headline with paper of its own may take."""
 _LATER_SCALE = 0.72
 """Size of the second language's headline where the edition favours the first."""
 
@@ -180,8 +182,13 @@ def _fit(task: _Task, room: PosterPlan, headlines: Sequence[str]) -> tuple[Drawi
     later = 1.0 if task.edition.emphasis == "equal" else _LATER_SCALE
     against = [i for i, language in enumerate(task.languages) if language.direction != task.direction]
     free = [(0.0, room.drawing.width, math.inf)]
-    alone = fit_headline(headlines, free, top_mm=0, sizes_mm=sizes, clear_mm=0, later_scale=later, against=against)
-    if alone is None or alone.bottom_mm > 0.4 * room.drawing.height:
+    tried = (
+        fit_headline(headlines, free, top_mm=0, sizes_mm=[size], clear_mm=0, later_scale=later, against=against)
+        for size in sizes
+    )
+    fits = (found for found in tried if found is not None and found.bottom_mm <= _MOST_HEADLINE * room.drawing.height)
+    alone = next(fits, None)
+    if alone is None:
         raise EditionFaults((_headline_fault(task, headlines),))
     smallest = min(_ENOUGH * sizes[0], alone.lines[0].size_mm)
     for thirds in range(4):
