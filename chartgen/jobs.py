@@ -204,7 +204,9 @@ def _start_worker(parent: int, preload: Callable[[], None]) -> None:
         ctypes.CDLL(None).prctl(_PR_SET_PDEATHSIG, signal.SIGKILL)
         if os.getppid() != parent:
             os._exit(1)
-    preload()
+    # What cannot be loaded is told by the first job that needs it, in this program's own way.
+    with contextlib.suppress(Exception):
+        preload()
     gc.freeze()
     gc.set_threshold(_COLLECT_AFTER, 50, 50)
 

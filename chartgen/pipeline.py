@@ -10,7 +10,6 @@
 
 from __future__ import annotations
 
-import contextlib
 import importlib
 from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
@@ -19,7 +18,7 @@ from typing import TYPE_CHECKING, Protocol, TypeVar, cast
 
 from chartgen import jobs, output
 from chartgen.edition.model import Edition
-from chartgen.errors import CommandFault, EditionFaults, Fault, Finding, MachineFault, ProductFaults
+from chartgen.errors import CommandFault, EditionFaults, Fault, Finding, ProductFaults
 
 if TYPE_CHECKING:
     from chartgen.figures.record import Figures
@@ -140,13 +139,10 @@ def work_out(edition: Edition, progress: Progress) -> Work:
 
 
 def load_libraries() -> None:
-    """What each worker loads while this process reads the editions. Where Pango is missing, the first sheet says so."""
-    from chartgen.press import engine
-
-    with contextlib.suppress(MachineFault):
-        engine.load()
-    for name in ("press.preflight", "press.render", "sheets.cards", "sheets.posters", "site.check", "site.pages"):
+    """What each worker loads while this process reads the editions."""
+    for name in ("sheets.posters", "sheets.cards", "site.pages", "site.check", "press.preflight", "press.render"):
         importlib.import_module(f"chartgen.{name}")
+    importlib.import_module("chartgen.press.engine").load()
 
 
 def compose_sheets(works: Sequence[Work], crew: jobs.Crew, progress: Progress) -> list[tuple[Sheet, ...]]:

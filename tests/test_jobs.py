@@ -83,6 +83,24 @@ def test_a_worker_killed_by_the_system_is_a_fault_of_the_machine() -> None:
     assert multiprocessing.active_children() == []
 
 
+def broken() -> None:
+    raise ModuleNotFoundError("matplotlib")
+
+
+def test_a_worker_that_cannot_load_something_works_on_until_it_needs_it(capfd: pytest.CaptureFixture[str]) -> None:
+    with jobs.crew(2, broken) as crew:
+        assert len(crew.run([Job(name=str(n), key=str(n), work=late, args=(n,)) for n in range(3)])) == 3
+    assert capfd.readouterr() == ("", "")
+
+
+def test_jobs_that_are_begun_run_beside_each_other() -> None:
+    with jobs.crew(2) as crew:
+        waits = [crew.start([Job(name="", key=str(n), work=late, args=(n,))]) for n in (0, 3)]
+        began = time.perf_counter()
+        assert [wait()[0][0] for wait in waits] == [0, 3]
+    assert time.perf_counter() - began < 5
+
+
 PARENT = """
 import os, sys, time
 from pathlib import Path
