@@ -93,7 +93,8 @@ run_logged() {  # WHAT COMMAND...
   what=$1
   shift
   "$@" </dev/null >>"$log" 2>&1 && return
-  fail "$what failed (all of it: $log): $(grep -v '^ *$' "$log" | tail -n 1)"
+  said=$(grep -m 1 '^ERROR' "$log" || tail -n 1 "$log")
+  fail "$what failed (all of it: $log): $said"
 }
 
 set_up() {

@@ -150,6 +150,27 @@ def test_a_virtual_environment_whose_python_is_gone_is_made_again(machine: Machi
     assert machine.start().returncode == 3
 
 
+def test_a_failing_installation_is_told_by_its_first_error(machine: Machine) -> None:
+    """A wrong hash, say: pip refuses the file, no stamp is written, and the next start begins anew."""
+    script = """case "$1 $2" in
+  "-m venv") mkdir -p "$3/bin"; cat >"$3/bin/python" <<'X'
+#!/bin/sh
+printf 'Collecting a\\nERROR: THE HASHES DO NOT MATCH\\n  Got 12\\n'
+exit 1
+X
+  chmod +x "$3/bin/python" ;;
+esac"""
+    machine.tool("python3", script)
+    machine.tool("chmod", 'exec /bin/chmod "$@"')
+    got = machine.start()
+    said = "installing the pinned packages failed"
+    assert got.stderr.splitlines()[-1] == (
+        f"start.sh: {said} (all of it: {machine.root}/.setup.log): ERROR: THE HASHES DO NOT MATCH"
+    )
+    assert got.returncode == 3
+    assert not (machine.root / ".venv/.stamp").exists()
+
+
 def test_two_at_once_wait_for_each_other(machine: Machine) -> None:
     lock = machine.root / ".setup.lock"
     holder = subprocess.Popen(["flock", str(lock), "-c", "echo held; sleep 1"], stdout=subprocess.PIPE, text=True)
