@@ -36,7 +36,8 @@ def modules() -> list[str]:
     return [".".join(p.relative_to(ROOT).with_suffix("").parts).removesuffix(".__init__") for p in paths]
 
 
-HEAVY = ("matplotlib", "pandas", "weasyprint", "pint", "pydantic", "babel", "pikepdf", "rich", "numpy", "jinja2", "segno")
+HEAVY = ["matplotlib", "pandas", "weasyprint", "pint", "pydantic", "babel", "pikepdf", "rich", "numpy", "jinja2"]
+HEAVY += ["segno", "pypdfium2"]
 
 
 @pytest.mark.parametrize("module", ["cli", "pipeline", "jobs", "output", "report", "begin", "errors", "resources"])

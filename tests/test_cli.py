@@ -9,6 +9,7 @@ import shutil
 import signal
 import subprocess
 import sys
+import tempfile
 import time
 from collections.abc import Callable
 from datetime import date
@@ -95,8 +96,10 @@ def test_a_reader_that_closes_the_pipe_is_no_fault() -> None:
 
 
 def test_output_is_utf_8_whatever_the_terminal_is_set_to() -> None:
-    environment = {"LC_ALL": "C", "PYTHONUTF8": "0", "PYTHONCOERCECLOCALE": "0", "PYTHONIOENCODING": "latin-1"}
-    assert chartgen("figures", "tarnholt", **environment).stdout == chartgen("figures", "tarnholt").stdout
+    odd = chartgen(
+        "figures", "tarnholt", LC_ALL="C", PYTHONUTF8="0", PYTHONCOERCECLOCALE="0", PYTHONIOENCODING="latin-1"
+    )
+    assert odd.stdout == chartgen("figures", "tarnholt").stdout
 
 
 def test_faults_of_all_editions_are_told_at_once(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
@@ -179,7 +182,7 @@ def test_what_nobody_foresaw_is_one_line_and_a_log(
         raise ZeroDivisionError("division by zero")
 
     monkeypatch.setattr(cli, "_figures", fail)
-    monkeypatch.setattr(cli.tempfile, "tempdir", str(tmp_path))
+    monkeypatch.setattr(tempfile, "tempdir", str(tmp_path))
     assert cli.main(["figures", "x"]) == 3
     (log,) = tmp_path.iterdir()
     said = f"Something went wrong inside chartgen: ZeroDivisionError: 'division by zero'. Details: {log}\n"
