@@ -13,17 +13,20 @@ import ctypes
 import dataclasses
 import gc
 import hashlib
+import heapq
 import multiprocessing
 import os
+import pickle
 import signal
 import sys
+import traceback
 import warnings
 from collections.abc import Callable, Iterator, Mapping, Sequence
-from concurrent.futures import Future, ProcessPoolExecutor, as_completed
-from concurrent.futures.process import BrokenProcessPool
 from dataclasses import dataclass
 from datetime import date
-from typing import Any, Generic, TypeVar
+from multiprocessing.connection import Connection, wait
+from multiprocessing.process import BaseProcess
+from typing import Any, Generic, TypeVar, cast
 
 from chartgen.errors import MachineFault
 
@@ -84,12 +87,21 @@ def cores() -> int:
     return os.cpu_count() or 1
 
 
-@dataclass(slots=True)
 class Crew:
-    """Workers that stay for several rounds of jobs. Made by `crew`."""
+    """Workers that stay for several rounds of jobs. Made by `crew`.
 
-    workers: int
-    _pool: ProcessPoolExecutor | None
+    No threads and no shared queues: each worker has a pipe of its own and one job at a time, so that a worker that dies
+    or is sent away can hold up nobody.
+    """
+
+    def __init__(self, workers: int, preload: Callable[[], None]) -> None:
+        self._waiting: list[tuple[float, str, int]] = []
+        self._jobs: dict[int, Job[Any]] = {}
+        self._results: dict[int, tuple[bool, Any]] = {}
+        self._done: dict[int, Callable[[Job[Any]], None]] = {}
+        self._workers = [_hire(preload) for _ in range(workers)] if workers > 1 else []
+        self._idle = list(self._workers)
+        self._busy: dict[Connection, tuple[_Worker, int]] = {}
 
     def run(self, jobs: Sequence[Job[T]], done: Callable[[Job[T]], None] = lambda _job: None) -> list[T]:
         """The results of `jobs`, in their order; `done` is called as each is finished.
@@ -103,51 +115,66 @@ class Crew:
         self, jobs: Sequence[Job[T]], done: Callable[[Job[T]], None] = lambda _job: None
     ) -> Callable[[], list[T]]:
         """As `run`, but the jobs are only begun: what comes back waits for their results and returns them."""
-        keys = [job.key for job in jobs]
-        first: dict[str, Job[T]] = {}
-        for key, job in zip(keys, jobs, strict=True):
-            first.setdefault(key, job)
-        finish = _one_by_one(first, done) if self._pool is None else _spread(self._pool, first, done)
+        tickets: dict[str, int] = {}
+        for job in jobs:
+            if job.key not in tickets:
+                tickets[job.key] = ticket = len(self._jobs)
+                self._jobs[ticket], self._done[ticket] = job, done
+                # Longest first: the last to finish is then a short one. Among equals by key: a run can be repeated.
+                # Alone it makes no difference, and errors are met in the order of the jobs.
+                heapq.heappush(self._waiting, (-job.weight, job.key, ticket) if self._workers else (0.0, "", ticket))
+        self._hand_out()
 
         def results() -> list[T]:
-            made = finish()
-            return [made[key] for key in keys]
+            while not all(ticket in self._results for ticket in tickets.values()):
+                if self._workers:
+                    self._take_in()
+                else:
+                    self._do_next()
+            made = {key: self._results.pop(ticket) for key, ticket in tickets.items()}
+            return [_opened(made[job.key]) for job in jobs]
 
         return results
 
+    def _hand_out(self) -> None:
+        while self._idle and self._waiting:
+            worker, (_, _, ticket) = self._idle.pop(), heapq.heappop(self._waiting)
+            job = self._jobs[ticket]
+            try:
+                worker.pipe.send((job.work, job.args))
+            except OSError as error:
+                raise _killed() from error
+            self._busy[worker.pipe] = (worker, ticket)
 
-def _one_by_one(jobs: Mapping[str, Job[T]], done: Callable[[Job[T]], None]) -> Callable[[], dict[str, T]]:
-    def finish() -> dict[str, T]:
-        made = {}
-        for key, job in jobs.items():
-            made[key] = job.work(*job.args)
-            done(job)
-        return made
+    def _take_in(self) -> None:
+        """Wait for any worker, keep what it has made and give it more to do."""
+        for pipe in wait([*self._busy]):
+            worker, ticket = self._busy.pop(cast("Connection", pipe))
+            try:
+                self._results[ticket] = worker.pipe.recv()
+            except (EOFError, OSError) as error:
+                raise _killed() from error
+            self._idle.append(worker)
+            self._hand_out()
+            self._finished(ticket)
 
-    return finish
+    def _do_next(self) -> None:
+        ticket = heapq.heappop(self._waiting)[2]
+        job = self._jobs[ticket]
+        self._results[ticket] = (True, job.work(*job.args))
+        self._finished(ticket)
 
+    def _finished(self, ticket: int) -> None:
+        if self._results[ticket][0]:
+            self._done[ticket](self._jobs[ticket])
 
-def _spread(
-    pool: ProcessPoolExecutor, jobs: Mapping[str, Job[T]], done: Callable[[Job[T]], None]
-) -> Callable[[], dict[str, T]]:
-    # Longest first: the last to finish is then a short one. Among equals by key, so that a run can be repeated.
-    order = sorted(jobs, key=lambda key: (-jobs[key].weight, key))
-    try:
-        running: dict[str, Future[T]] = {key: pool.submit(jobs[key].work, *jobs[key].args) for key in order}
-    except BrokenProcessPool as error:
-        raise _killed() from error
-
-    def finish() -> dict[str, T]:
-        names = {future: key for key, future in running.items()}
-        for future in as_completed(names):
-            if future.exception() is None:
-                done(jobs[names[future]])
-        try:
-            return {key: running[key].result() for key in jobs}
-        except BrokenProcessPool as error:
-            raise _killed() from error
-
-    return finish
+    def dismiss(self) -> None:
+        """Send all workers away, whatever they are doing."""
+        for worker in self._workers:
+            worker.process.kill()
+        for worker in self._workers:
+            worker.process.join()
+            worker.pipe.close()
 
 
 @contextlib.contextmanager
@@ -156,18 +183,12 @@ def crew(workers: int, preload: Callable[[], None] = lambda: None) -> Iterator[C
 
     They start at once, and each calls `preload` first: what they need is loaded while this process does its own part.
     """
-    before = set(multiprocessing.active_children())
-    pool = _pool(workers, preload) if workers > 1 else None
     with rare_collections():
+        team = Crew(workers, preload)
         try:
-            yield Crew(workers, pool)
-        except BaseException:
-            for worker in set(multiprocessing.active_children()) - before:
-                worker.kill()
-            raise
+            yield team
         finally:
-            if pool is not None:
-                pool.shutdown(cancel_futures=True)
+            team.dismiss()
 
 
 @contextlib.contextmanager
@@ -183,19 +204,31 @@ def rare_collections() -> Iterator[None]:
         gc.unfreeze()
 
 
-def _pool(workers: int, preload: Callable[[], None]) -> ProcessPoolExecutor:
+@dataclass(frozen=True, slots=True)
+class _Worker:
+    process: BaseProcess
+    pipe: Connection
+
+
+def _hire(preload: Callable[[], None]) -> _Worker:
     # Elsewhere than on Linux system libraries do not survive a fork.
-    context = multiprocessing.get_context("fork" if sys.platform == "linux" else "spawn")
-    pool = ProcessPoolExecutor(workers, context, _start_worker, (os.getpid(), preload))
+    if sys.platform == "linux":
+        new_process: Callable[..., BaseProcess] = multiprocessing.get_context("fork").Process
+    else:
+        new_process = multiprocessing.get_context("spawn").Process
+    ours, theirs = multiprocessing.Pipe()
+    process = new_process(target=_work, args=(theirs, os.getpid(), preload), daemon=True)
     with warnings.catch_warnings():
         # Python warns of forking beside threads. The only ones there may be are a linear-algebra library's idle own,
         # which it stops and starts again around a fork itself.
         warnings.filterwarnings("ignore", message=".*multi-threaded.*fork", category=DeprecationWarning)
-        pool.submit(os.getpid)  # with the first job all workers are forked
-    return pool
+        process.start()
+    theirs.close()
+    return _Worker(process, ours)
 
 
-def _start_worker(parent: int, preload: Callable[[], None]) -> None:
+def _work(pipe: Connection, parent: int, preload: Callable[[], None]) -> None:
+    """The life of a worker: one job after another until the pipe is closed."""
     # Ctrl-C goes to all processes of a terminal; the parent alone decides what becomes of it.
     signal.signal(signal.SIGINT, signal.SIG_IGN)
     signal.signal(signal.SIGTERM, signal.SIG_DFL)
@@ -209,6 +242,30 @@ def _start_worker(parent: int, preload: Callable[[], None]) -> None:
         preload()
     gc.freeze()
     gc.set_threshold(_COLLECT_AFTER, 50, 50)
+    with contextlib.suppress(EOFError):
+        while True:
+            work, args = pipe.recv()
+            pipe.send_bytes(_packed(work, args))
+
+
+def _packed(work: Callable[..., object], args: tuple[Any, ...]) -> bytes:
+    """The outcome of a job as the parent reads it: (True, result) or (False, error)."""
+    try:
+        return pickle.dumps((True, work(*args)))
+    except Exception as error:  # noqa: BLE001  # whatever it is, it is raised again in the parent
+        error.add_note(traceback.format_exc())
+        with contextlib.suppress(Exception):
+            packed = pickle.dumps((False, error))
+            pickle.loads(packed)  # noqa: S301  # some errors can be packed but not unpacked
+            return packed
+        return pickle.dumps((False, RuntimeError(f"{type(error).__name__}: {error}")))
+
+
+def _opened(outcome: tuple[bool, Any]) -> Any:
+    made, value = outcome
+    if not made:
+        raise value
+    return value
 
 
 def _killed() -> MachineFault:

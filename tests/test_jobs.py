@@ -76,6 +76,36 @@ def test_the_first_failure_in_the_order_of_the_jobs_comes_back_with_its_facts(wo
     assert multiprocessing.active_children() == []
 
 
+class Stubborn(Exception):
+    """An error that can be packed but not unpacked."""
+
+    def __init__(self, one: int, two: int) -> None:
+        super().__init__(f"{one} and {two}")
+
+
+def stubborn(number: int) -> int:
+    raise Stubborn(number, number)
+
+
+def test_an_error_that_cannot_travel_is_told_all_the_same() -> None:
+    with pytest.raises(RuntimeError, match="Stubborn: 1 and 1"), jobs.crew(2) as crew:
+        crew.run([Job(name="", key="", work=stubborn, args=(1,))])
+
+
+def large(data: bytes) -> bytes:
+    if len(data) > 3_000_000:
+        os.kill(os.getpid(), signal.SIGKILL)
+    return data
+
+
+def test_a_worker_killed_while_much_is_on_the_way_holds_up_nobody() -> None:
+    """More than a pipe holds, to and from each worker, and one of them dies."""
+    sizes = (2_000_000, 2_000_001, 4_000_000, 2_000_002, 2_000_003)
+    with pytest.raises(MachineFault), jobs.crew(2) as crew:
+        crew.run([Job(name="", key=str(n), work=large, args=(bytes(n),)) for n in sizes])
+    assert multiprocessing.active_children() == []
+
+
 def test_a_worker_killed_by_the_system_is_a_fault_of_the_machine() -> None:
     with pytest.raises(MachineFault) as caught, jobs.crew(2) as crew:
         crew.run([Job(name="", key=str(n), work=dies, args=(n,)) for n in range(4)])
