@@ -66,12 +66,12 @@ def downloads_page(site: Site, language: Language, data: tuple[File, ...]) -> Do
 
 
 def leaflet_items(site: Site, language: Language) -> tuple[FileItem, ...]:
-    """The sheets: those in the page's language or in several, then those in the others."""
+    """The sheets, in the order in which the edition asks for them."""
     return tuple(_leaflet(site, language, leaflet) for leaflet in site.leaflets)
 
 
 def _leaflet(site: Site, language: Language, leaflet: Leaflet) -> FileItem:
-    tags = [other for other in site.languages if other.tag == leaflet.lang]
+    tags = [other for other in site.languages if other.tag in leaflet.tags]
     names = Markup(", ").join(Markup('<bdi lang="{}">{}</bdi>').format(other.tag, other.own_name) for other in tags)
     notes = [Markup("<bdi>PDF</bdi>")]
     if names:
@@ -79,7 +79,7 @@ def _leaflet(site: Site, language: Language, leaflet: Leaflet) -> FileItem:
     if leaflet.bytes is not None:
         notes.append(size(language, leaflet.bytes))
     note = Markup(" · ").join(notes)
-    return FileItem(f"../{leaflet.path}", isolate(leaflet.title), note, "application/pdf", leaflet.lang)
+    return FileItem(f"../{leaflet.path}", isolate(leaflet.title, leaflet.lang), note, "application/pdf", leaflet.lang)
 
 
 def size(language: Language, count: int) -> Markup:

@@ -21,11 +21,13 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Leaflet:
-    """A finished sheet that lies beside the pages: `path` from the edition's folder, `bytes` None where not known."""
+    """A finished sheet that lies beside the pages: `path` from the edition's folder, `bytes` None where not known.
+    `lang` is that of its title, `tags` all languages that stand on it."""
 
     path: str
     title: str
     lang: str
+    tags: tuple[str, ...]
     bytes: int | None
 
 

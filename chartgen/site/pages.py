@@ -26,7 +26,7 @@ from chartgen.site.render import render
 
 
 class Printed(Protocol):
-    """What is asked of a sheet: where it lies, what it is called, its language."""
+    """What is asked of a sheet: where it lies, what it is called, the languages of its title and of its sentences."""
 
     @property
     def path(self) -> str: ...
@@ -36,6 +36,9 @@ class Printed(Protocol):
 
     @property
     def lang(self) -> str: ...
+
+    @property
+    def sentences(self) -> tuple[tuple[str, str], ...]: ...
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -113,9 +116,14 @@ def _site(
         edition=edition,
         figures=figures,
         languages=languages,
-        leaflets=tuple(Leaflet(path=s.path, title=s.title, lang=s.lang, bytes=sizes.get(s.path)) for s in sheets),
+        leaflets=tuple(_leaflet(sheet, sizes.get(sheet.path)) for sheet in sheets),
         groups=tuple(groups(edition, figures)),
     )
+
+
+def _leaflet(sheet: Printed, size: int | None) -> Leaflet:
+    tags = tuple(dict.fromkeys((sheet.lang, *(tag for tag, _ in sheet.sentences))))
+    return Leaflet(path=sheet.path, title=sheet.title, lang=sheet.lang, tags=tags, bytes=size)
 
 
 def _downloads(site: Site, language: Language, data: tuple[File, ...]) -> File:

@@ -25,6 +25,7 @@ class Leaf:
     path: str
     title: str
     lang: str
+    sentences: tuple[tuple[str, str], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,10 +53,14 @@ def made(name: str) -> Made:
 
 def make(edition: Edition) -> Made:
     table, tongues = figures(edition), languages(edition)
-    sheet = Leaf("sheets/poster.pdf", tongues[0].text(edition.title), tongues[0].tag)
+    sheet = Leaf("sheets/poster.pdf", tongues[0].text(edition.title), tongues[0].tag, _said(tongues))
     content = b"%PDF-1.7 a stand-in"
     files = {f.path: f.data for f in pages(edition, table, tongues, [sheet], {sheet.path: len(content)})}
     return Made(edition, table, tongues, files | {sheet.path: content})
+
+
+def _said(tongues: tuple[Language, ...]) -> tuple[tuple[str, str], ...]:
+    return tuple((language.tag, language.t("caution.law")) for language in tongues)
 
 
 def write(folder: Path) -> Path:

@@ -207,10 +207,15 @@ def test_sizes_come_with_the_sheets() -> None:
     from chartgen.site.pages import sized_pages
 
     it = made("tarnholt")
-    sheet = Leaf("sheets/poster.pdf", it.languages[0].text(it.edition.title), it.languages[0].tag)
+    first = it.languages[0]
+    said = tuple((language.tag, "…") for language in it.languages)
+    sheet = Leaf("sheets/poster.pdf", first.text(it.edition.title), first.tag, said)
     again = {f.path: f.data for f in sized_pages(it.edition, it.figures, it.languages, [sheet], {sheet.path: 19})}
     assert set(again) == {f"{language.tag}/downloads.html" for language in it.languages}
     assert all(it.files[path] == data for path, data in again.items())
+    for data in again.values():
+        words = read_page(data).text
+        assert all(language.own_name in words for language in it.languages)
 
 
 PRINT_HASH = """
