@@ -28,7 +28,7 @@ def render(sheet: PrintPage) -> bytes:
     findings += [Finding("press.engine", sheet.path, text) for text in dict.fromkeys(warnings)]
     if findings:
         raise ProductFaults(tuple(findings))
-    return finish(data)
+    return finish(data, two_sided=sheet.pages > 1)
 
 
 def _page_problems(document: Any, sheet: PrintPage) -> list[str]:

@@ -130,6 +130,9 @@ def test_a_back_lies_behind_its_front(made: Made) -> None:
 def test_the_document_keeps_its_tags_and_its_two_languages(made: Made) -> None:
     with pikepdf.open(io.BytesIO(made[4])) as pdf:
         assert pdf.Root.MarkInfo.Marked
+        assert pdf.Root.ViewerPreferences.Duplex == "/DuplexFlipLongEdge"
+        assert pdf.Root.ViewerPreferences.PrintScaling == "/None"
+        assert pdf.Root.ViewerPreferences.DisplayDocTitle
         tags = {
             str(item.get("/Lang")) for item in pdf.objects if isinstance(item, pikepdf.Dictionary) and "/Lang" in item
         }
