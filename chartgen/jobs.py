@@ -99,9 +99,9 @@ class Crew:
         self._jobs: dict[int, Job[Any]] = {}
         self._results: dict[int, tuple[bool, Any]] = {}
         self._done: dict[int, Callable[[Job[Any]], None]] = {}
-        self._workers = [_hire(preload) for _ in range(workers)] if workers > 1 else []
-        self._idle = list(self._workers)
-        self._busy: dict[Connection, tuple[_Worker, int]] = {}
+        self._processes, self._idle = _hire(workers, preload) if workers > 1 else ([], [])
+        self._busy: dict[Connection, int] = {}
+        self._alone = not self._idle
 
     def run(self, jobs: Sequence[Job[T]], done: Callable[[Job[T]], None] = lambda _job: None) -> list[T]:
         """The results of `jobs`, in their order; `done` is called as each is finished.
@@ -122,15 +122,15 @@ class Crew:
                 self._jobs[ticket], self._done[ticket] = job, done
                 # Longest first: the last to finish is then a short one. Among equals by key: a run can be repeated.
                 # Alone it makes no difference, and errors are met in the order of the jobs.
-                heapq.heappush(self._waiting, (-job.weight, job.key, ticket) if self._workers else (0.0, "", ticket))
+                heapq.heappush(self._waiting, (0.0, "", ticket) if self._alone else (-job.weight, job.key, ticket))
         self._hand_out()
 
         def results() -> list[T]:
             while not all(ticket in self._results for ticket in tickets.values()):
-                if self._workers:
-                    self._take_in()
-                else:
+                if self._alone:
                     self._do_next()
+                else:
+                    self._take_in()
             made = {key: self._results.pop(ticket) for key, ticket in tickets.items()}
             return [_opened(made[job.key]) for job in jobs]
 
@@ -138,23 +138,23 @@ class Crew:
 
     def _hand_out(self) -> None:
         while self._idle and self._waiting:
-            worker, (_, _, ticket) = self._idle.pop(), heapq.heappop(self._waiting)
+            pipe, (_, _, ticket) = self._idle.pop(), heapq.heappop(self._waiting)
             job = self._jobs[ticket]
             try:
-                worker.pipe.send((job.work, job.args))
+                pipe.send((job.work, job.args))
             except OSError as error:
                 raise _killed() from error
-            self._busy[worker.pipe] = (worker, ticket)
+            self._busy[pipe] = ticket
 
     def _take_in(self) -> None:
         """Wait for any worker, keep what it has made and give it more to do."""
-        for pipe in wait([*self._busy]):
-            worker, ticket = self._busy.pop(cast("Connection", pipe))
+        for pipe in cast("list[Connection]", wait([*self._busy])):
+            ticket = self._busy.pop(pipe)
             try:
-                self._results[ticket] = worker.pipe.recv()
+                self._results[ticket] = pipe.recv()
             except (EOFError, OSError) as error:
                 raise _killed() from error
-            self._idle.append(worker)
+            self._idle.append(pipe)
             self._hand_out()
             self._finished(ticket)
 
@@ -170,11 +170,10 @@ class Crew:
 
     def dismiss(self) -> None:
         """Send all workers away, whatever they are doing."""
-        for worker in self._workers:
-            worker.process.kill()
-        for worker in self._workers:
-            worker.process.join()
-            worker.pipe.close()
+        for process in self._processes:
+            process.kill()
+        for process in self._processes:
+            process.join()
 
 
 @contextlib.contextmanager
@@ -204,45 +203,82 @@ def rare_collections() -> Iterator[None]:
         gc.unfreeze()
 
 
-@dataclass(frozen=True, slots=True)
-class _Worker:
-    process: BaseProcess
-    pipe: Connection
-
-
-def _hire(preload: Callable[[], None]) -> _Worker:
-    # Elsewhere than on Linux system libraries do not survive a fork.
+def _hire(count: int, preload: Callable[[], None]) -> tuple[Sequence[BaseProcess], list[Connection]]:
+    """The processes to be killed at the end, and a pipe to each worker."""
+    ours, theirs = map(list, zip(*(multiprocessing.Pipe() for _ in range(count)), strict=True))
     if sys.platform == "linux":
-        new_process: Callable[..., BaseProcess] = multiprocessing.get_context("fork").Process
-    else:
-        new_process = multiprocessing.get_context("spawn").Process
-    ours, theirs = multiprocessing.Pipe()
-    process = new_process(target=_work, args=(theirs, os.getpid(), preload), daemon=True)
-    with warnings.catch_warnings():
-        # Python warns of forking beside threads. The only ones there may be are a linear-algebra library's idle own,
-        # which it stops and starts again around a fork itself.
-        warnings.filterwarnings("ignore", message=".*multi-threaded.*fork", category=DeprecationWarning)
-        process.start()
-    theirs.close()
-    return _Worker(process, ours)
+        fork = multiprocessing.get_context("fork").Process
+        processes: list[BaseProcess] = [fork(target=_lead, args=(theirs, ours, os.getpid(), preload), daemon=True)]
+    else:  # elsewhere system libraries do not survive a fork
+        spawn = multiprocessing.get_context("spawn").Process
+        processes = [spawn(target=_start_alone, args=(pipe, preload), daemon=True) for pipe in theirs]
+    with _forking_beside_idle_threads():
+        for process in processes:
+            process.start()
+    for pipe in theirs:
+        pipe.close()
+    return processes, ours
 
 
-def _work(pipe: Connection, parent: int, preload: Callable[[], None]) -> None:
-    """The life of a worker: one job after another until the pipe is closed."""
-    # Ctrl-C goes to all processes of a terminal; the parent alone decides what becomes of it.
-    signal.signal(signal.SIGINT, signal.SIG_IGN)
-    signal.signal(signal.SIGTERM, signal.SIG_DFL)
-    if sys.platform == "linux":
-        # A worker must not outlive a parent that was killed outright.
-        ctypes.CDLL(None).prctl(_PR_SET_PDEATHSIG, signal.SIGKILL)
-        if os.getppid() != parent:
-            os._exit(1)
+def _lead(theirs: Sequence[Connection], ours: Sequence[Connection], parent: int, preload: Callable[[], None]) -> None:
+    """The foreman: loads once what all workers need, becomes their parent, and lives as long as they do."""
+    _die_with(parent)
+    for pipe in ours:
+        pipe.close()
+    _load(preload)
+    this = os.getpid()
+    for number, pipe in enumerate(theirs):
+        with _forking_beside_idle_threads():
+            child = os.fork()
+        if child == 0:
+            try:
+                _die_with(this)
+                for other in theirs[number + 1 :]:
+                    other.close()  # else nobody would see it closed when its worker dies
+                _work(pipe)
+            finally:
+                os._exit(0)
+        pipe.close()
+    with contextlib.suppress(ChildProcessError):
+        while True:
+            os.wait()
+
+
+def _start_alone(pipe: Connection, preload: Callable[[], None]) -> None:
+    _load(preload)
+    _work(pipe)
+
+
+def _load(preload: Callable[[], None]) -> None:
     # What cannot be loaded is told by the first job that needs it, in this program's own way.
     with contextlib.suppress(Exception):
         preload()
     gc.freeze()
     gc.set_threshold(_COLLECT_AFTER, 50, 50)
-    with contextlib.suppress(EOFError):
+
+
+def _die_with(parent: int) -> None:
+    # Ctrl-C goes to all processes of a terminal; the parent alone decides what becomes of it. When it is killed
+    # outright, the system kills this one.
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
+    signal.signal(signal.SIGTERM, signal.SIG_DFL)
+    ctypes.CDLL(None).prctl(_PR_SET_PDEATHSIG, signal.SIGKILL)
+    if os.getppid() != parent:
+        os._exit(1)
+
+
+@contextlib.contextmanager
+def _forking_beside_idle_threads() -> Iterator[None]:
+    with warnings.catch_warnings():
+        # Python warns of forking beside threads. The only ones there may be are a linear-algebra library's idle own,
+        # which it stops and starts again around a fork itself.
+        warnings.filterwarnings("ignore", message=".*multi-threaded.*fork", category=DeprecationWarning)
+        yield
+
+
+def _work(pipe: Connection) -> None:
+    """The life of a worker: one job after another until the pipe is closed."""
+    with contextlib.suppress(EOFError, OSError):
         while True:
             work, args = pipe.recv()
             pipe.send_bytes(_packed(work, args))
