@@ -45,8 +45,8 @@ def _case(reading: Reading, row: Row, ids: Mapping[str, tuple[str, ...]]) -> Cas
 
 
 def known(reading: Reading, where: str, kind: str, given: str, ids: Sequence[str]) -> bool:
-    """Fault a reference to an id that does not exist."""
-    if given in ids:
+    """Fault a reference to an id that does not exist; where the ids themselves are at fault (none), it may be right."""
+    if given in ids or not ids:
         return True
     reading.fault(where, f"there is no {kind} with this id", listed(ids), given=given, near=near(given, ids))
     return False
@@ -60,7 +60,7 @@ def combinations(case: Case) -> list[Combination]:
 def combination_text(combination: Combination) -> str:
     """ "ready, car, dry, -9 %"."""
     driver, vehicle, surface, grade = combination
-    return f"{driver}, {vehicle}, {surface}, {grade * 100:g} %"
+    return f"{driver}, {vehicle}, {surface}, {grade * 100:.6g} %"
 
 
 def _size(case: Case) -> int:
@@ -73,8 +73,8 @@ def _only_once(reading: Reading, found: Sequence[tuple[str, Case]]) -> None:
     for path, case in found:
         for combination in combinations(case):
             if combination in seen:
-                problem = f"this combination stands in {seen[combination]} already"
-                reading.fault(path, problem, "each combination once", given=combination_text(combination))
+                problem = f"the combination {combination_text(combination)} stands in {seen[combination]} already"
+                reading.fault(path, problem, "each combination once")
                 break
             seen[combination] = path
 

@@ -87,4 +87,7 @@ _TOML_HINT = 'sections such as [units], keys such as system = "uk", texts in dou
 
 
 def _plain(message: str) -> str:
+    place = message[message.rfind("(at ") :] if "(at " in message else ""
+    if message.startswith(("Cannot overwrite", "Cannot declare", "Duplicate")):
+        return f"a key or a section stands there twice {place}".rstrip()
     return message[:1].lower() + message[1:160]

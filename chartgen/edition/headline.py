@@ -71,15 +71,15 @@ def check(
     where: str,
     headline: str,
     speeds: Mapping[float, str],
-    speed_unit: str,
+    speed_unit: str | None,
     ids: Mapping[str, tuple[str, ...]],
 ) -> tuple[Placeholder, ...]:
-    """Hold one headline against the edition: `speeds` by value as written, `ids` by override key. Faults are noted."""
+    """Hold one headline against the edition: `speeds` by value as written, `ids` by override key (an empty one is at
+    fault itself, and nothing is held against it). Faults are noted."""
     rest = PLACEHOLDER.sub("", headline)
     if "{" in rest or "}" in rest:
         reading.fault(where, "a curly bracket stands alone", "placeholders such as {stopping:70 mph}", given=headline)
-    digits = re.search(r"[^\W\d_]*\d[\d.,]*", rest)
-    if digits:
+    elif digits := re.search(r"\d+(?:[.,]\d+)*", rest):
         reading.fault(
             where,
             f'the number "{digits[0]}" is typed; numbers in a headline come from the table',
@@ -93,13 +93,13 @@ def check(
         if isinstance(item, _Wrong):
             reading.fault(where, item.problem, item.allowed, given=item.given, near=item.near)
             continue
-        if item.speed_unit != speed_unit or item.speed not in speeds:
+        if speeds and (item.speed_unit != speed_unit or item.speed not in speeds):
             reading.fault(
                 where, "the placeholder's speed is not one of the edition's speeds", listed(list(speeds.values())),
                 given=item.text,
             )  # fmt: skip
         for key, value in item.rows.items():
-            if value not in ids[key]:
+            if ids[key] and value not in ids[key]:
                 reading.fault(
                     where, f"there is no {key} with this id", listed(ids[key]), given=item.text,
                     near=near(value, ids[key]),

@@ -39,9 +39,9 @@ def load_edition(path: str | os.PathLike[str]) -> Edition:
 
 def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | None:
     _languages_first(reading, raw)
+    _known_languages(reading)
     root = cast("Row", read_table(reading, raw, "", ""))
     head: Row = root.get("edition", Row("edition"))
-    _known_languages(reading)
     _document_control(reading, head)
     speed_unit, distance_unit, also_unit = scales.units(reading, root)
     speeds = scales.speeds(reading, root, speed_unit)
@@ -51,6 +51,9 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     drivers = _each(root, "driver", lambda row: parts.driver(reading, row))
     surfaces = _each(root, "surface", lambda row: parts.surface(reading, row, method))
     vehicles = _each(root, "vehicle", lambda row: parts.vehicle(reading, row, method, root["vehicle"]))
+    for number, row in enumerate(root.get("poster", []), 1):
+        if "id" not in row.broken:
+            row.setdefault("id", f"poster-{number}")
     for kind in ("driver", "surface", "vehicle", "poster"):
         parts.unique(reading, root.get(kind, []))
     ids = {kind: _ids(root.get(kind, [])) for kind in ("driver", "vehicle", "surface")}
@@ -60,8 +63,6 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     press: Row = root.get("press", Row("press"))
     for key in press:
         reading.not_yet(press.at(key), "the press edition (inks, bleed, marks, profile) is not made yet")
-    if not (speed_unit and distance_unit and speeds):
-        return None
     made = prints.Made(
         speeds={float(s.number): s.text for s in speeds},
         speed_unit=speed_unit,
@@ -75,9 +76,9 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
             if "id" in row
         },
     )
-    posters = [prints.poster(reading, row, i, made) for i, row in enumerate(root.get("poster", []), 1)]
+    posters = _each(root, "poster", lambda row: prints.poster(reading, row, made))
     cards = prints.cards(reading, root["cards"], folder, made) if "cards" in root else None
-    if reading.faults:
+    if reading.faults or speed_unit is None or distance_unit is None:
         return None
     settings: Row = root["languages"]
     return Edition(
@@ -108,7 +109,7 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         surfaces=surfaces,
         vehicles=vehicles,
         cases=cases,
-        posters=tuple(p for p in posters if p is not None),
+        posters=posters,
         cards=cards,
         own_words=words,
         palette=head.get("palette", "gorse"),
@@ -118,9 +119,8 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
 
 
 def _ids(rows: Sequence[Row]) -> tuple[str, ...]:
-    """The ids there are; none where one is not sound, since what refers to it would be faulted for its sake."""
-    ids = tuple(dict.fromkeys(row["id"] for row in rows if "id" in row))
-    return ids if all("id" in row for row in rows) else ()
+    """The ids there are; none where one is not sound, so that what refers to it is not faulted for its sake."""
+    return tuple(dict.fromkeys(row["id"] for row in rows)) if all("id" in row for row in rows) else ()
 
 
 def _each(root: Row, kind: str, build: Callable[[Row], _T | None]) -> tuple[_T, ...]:
@@ -139,12 +139,11 @@ def _languages_first(reading: Reading, raw: dict[str, Any]) -> None:
 
 def _known_languages(reading: Reading) -> None:
     known = tuple(sorted(file.stem for file in (templates() / "words").glob("*.po")))
+    reading.unlisted = frozenset(reading.languages) - frozenset(known)
     for number, tag in enumerate(reading.languages, 1):
-        if tag not in known and re.fullmatch(TAG_PATTERN, tag):
-            reading.fault(
-                f"languages.use[{number}]", "there is no word list for this language", listed(known), given=tag,
-                near=near(tag, known),
-            )  # fmt: skip
+        if tag in reading.unlisted and re.fullmatch(TAG_PATTERN, tag):
+            where, problem = f"languages.use[{number}]", "there is no word list for this language"
+            reading.fault(where, problem, listed(known), given=tag, near=near(tag, known))
 
 
 def _document_control(reading: Reading, head: Row) -> None:

@@ -38,7 +38,7 @@ def what_is_wrong(text: str, measure: Measure) -> NotAQuantityError:
 
 
 def _example(measure: Measure) -> str:
-    return f'"{measure.example}"'
+    return f'such as "{measure.example}"'
 
 
 def _listed(units: tuple[str, ...]) -> str:

@@ -21,8 +21,8 @@ class Made:
     "surface"."""
 
     speeds: Mapping[float, str]
-    speed_unit: str
-    distance_unit: str
+    speed_unit: str | None
+    distance_unit: str | None
     ids: Mapping[str, tuple[str, ...]]
     cases: tuple[Case, ...]
     rows: frozenset[Combination] | None
@@ -44,7 +44,7 @@ class Made:
 # ---- posters -----------------------------------------------------------------------------------------------------
 
 
-def poster(reading: Reading, row: Row, number: int, made: Made) -> Poster | None:
+def poster(reading: Reading, row: Row, made: Made) -> Poster | None:
     """One [[poster]]; None where it does not hold together."""
     show = _show(reading, row, made)
     for tag, text in row.get("headline", {}).items():
@@ -56,7 +56,7 @@ def poster(reading: Reading, row: Row, number: int, made: Made) -> Poster | None
         return None
     read_from = row.get("read_from")
     return Poster(
-        id=row.get("id", f"poster-{number}"),
+        id=row["id"],
         layout="columns",
         paper=row.get("paper") or paper("A3"),
         together=row.get("languages", "together") == "together",
@@ -89,7 +89,7 @@ def _show(reading: Reading, row: Row, made: Made) -> Show | None:
 
 
 def _speeds(reading: Reading, given: Row, made: Made) -> tuple[float, ...] | None:
-    if "speeds" not in given:
+    if "speeds" not in given or not made.speeds:
         return None
     values = []
     for number, quantity in enumerate(given["speeds"], 1):
@@ -108,8 +108,8 @@ def _speeds(reading: Reading, given: Row, made: Made) -> tuple[float, ...] | Non
 
 
 def _no_row(reading: Reading, where: str, combination: Combination) -> None:
-    given, allowed = combination_text(combination), "a case with all four of them"
-    reading.fault(where, "no [[case]] has this combination", allowed, given=given)
+    problem = f"no [[case]] has the combination {combination_text(combination)}"
+    reading.fault(where, problem, "a case with all four of them")
 
 
 def _row_exists(reading: Reading, where: str, show: Show, item: headline.Placeholder, made: Made) -> None:
@@ -142,13 +142,15 @@ def cards(reading: Reading, row: Row, folder: Path, made: Made) -> Cards | None:
     for key, given, now in (("size", size, "A6"), ("sheet", sheet, "A4")):
         if given.name != now:
             reading.not_yet(row.at(key), f"cards are made on {now} only; {given.name} is not made yet")
-    if row.broken or gap is None or len(reading.faults) > before:
+    if not row.broken <= {"size", "sheet", "gap"} or len(reading.faults) > before + (gap is None):
         return None
     works = {
         vehicle: all(made.has((driver, vehicle, surface, grade)) for surface in surfaces)
         for vehicle in made.ids["vehicle"]
     }
     roster = read_roster(reading, folder, row["roster"], works)
+    if gap is None:
+        return None
     if GAP_RULES[gap].per_length_s_per_m is not None:
         for vehicle in dict.fromkeys(r.vehicle for r in roster if made.lengths.get(r.vehicle) is None):
             reading.fault(

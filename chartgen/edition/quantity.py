@@ -64,5 +64,8 @@ def parse_size(text: str) -> tuple[float, float]:
     if len(sides) != 2:
         problem = "a size is width x height, each with its unit"
         raise NotAQuantityError(problem, '"600 mm x 900 mm" or "18 in x 24 in"')
+    without_unit = re.compile(r"[0-9]+(\.[0-9]+)?")
+    if without_unit.fullmatch(sides[0]) and (unit := sides[1].rpartition(" ")[2]) in SIZE.units:
+        raise NotAQuantityError("each side needs its unit", f'"{sides[0]} {unit} x {sides[1]}"')
     width, height = (parse(side, SIZE).value for side in sides)
     return width, height

@@ -21,6 +21,8 @@ class Reading:
 
     file: str
     languages: tuple[str, ...] = ()
+    unlisted: frozenset[str] = frozenset()
+    """Languages without a word list: noted once, their texts are not missed as well."""
     draft: bool = False
     faults: list[Fault] = field(default_factory=list)
     warnings: list[str] = field(default_factory=list)
@@ -42,6 +44,8 @@ class Reading:
 
     def missing_text(self, key: str, tag: str) -> None:
         """A text is not there in one of the edition's languages: a draft may miss it, nothing else may."""
+        if tag in self.unlisted:
+            return
         if self.draft:
             self.warn(key, "the text in this language is missing; only a draft may miss it.")
         else:
@@ -79,7 +83,7 @@ def as_written(value: object) -> str:
     elif isinstance(value, list):
         shown = "[" + ", ".join(as_written(v) for v in value[:8]) + (", …" if len(value) > 8 else "") + "]"
     else:
-        shown = str(value)
+        shown = {"Infinity": "inf", "-Infinity": "-inf", "NaN": "nan"}.get(str(value), str(value))
     return shown if len(shown) <= 80 else shown[:78] + " …"
 
 

@@ -98,10 +98,10 @@ def _row(
             reading.fault(at + column, "the cell does not fit a card", f"one line, at most {LONGEST} characters",
                           given=cell, file=shown)  # fmt: skip
     vehicle = cells["vehicle"]
-    if vehicle and vehicle not in vehicles:
+    if vehicle and vehicles and vehicle not in vehicles:
         reading.fault(at + "vehicle", "there is no vehicle with this id", listed(vehicles), given=vehicle,
                       near=near(vehicle, vehicles), file=shown)  # fmt: skip
-    elif vehicle and not vehicles[vehicle]:
+    elif vehicle and not vehicles.get(vehicle, True):
         reading.fault(at + "vehicle", "no case has this vehicle with the driver, surfaces and grade of the cards",
                       listed([v for v, works in vehicles.items() if works]) or "a [[case]] that has them",
                       given=vehicle, file=shown)  # fmt: skip

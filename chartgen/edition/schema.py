@@ -61,7 +61,7 @@ def _ref(about: Key) -> _Schema:
 
 
 def _plain(about: Key) -> _Schema:
-    return _FORMS.get(about.form, lambda _: _text())(about)
+    return _FORMS[about.form](about) if about.form in _FORMS else _text()
 
 
 def _texts(_: Key) -> _Schema:

@@ -6,7 +6,8 @@ handbook. Plain data; nothing is read here.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, field
 from typing import Literal
 
 from chartgen.edition import measures as q
@@ -32,7 +33,7 @@ class Bounds:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Key:
-    """`table` beside a form other than table(s): the value may be such a table instead. `file_only`: see `of`."""
+    """`table` beside a form other than table(s): the value may be such a table instead."""
 
     says: str
     form: Form
@@ -47,6 +48,10 @@ class Key:
     """How many entries a list may have."""
     not_yet: str = ""
     """Set: the whole key is known but not made yet; the reason."""
+    list_not_yet: str = ""
+    """Set: as a list the value is known but not made yet; the reason."""
+    meant: Mapping[str, str] = field(default_factory=dict)
+    """Other words for the choices, as people may write them."""
 
 
 REACTION_BOUNDS = Bounds(least=0.2, most=10, says="0.2 s to 10 s", usual=(0.3, 4), usual_says="0.3 s to 4 s")
@@ -55,6 +60,10 @@ FRICTION_BOUNDS = Bounds(
 )
 LAYOUTS_LATER = ("trail", "fan", "leftover")
 KINDS = ("car", "van", "bus", "lorry", "articulated", "motorcycle", "bicycle")
+OTHER_KINDS = {
+    "truck": "lorry", "hgv": "lorry", "rigid": "lorry", "tractor-trailer": "articulated", "artic": "articulated",
+    "semi": "articulated", "coach": "bus", "motorbike": "motorcycle", "bike": "bicycle", "cycle": "bicycle",
+}  # fmt: skip
 NEEDS_LIMIT = ("bus", "lorry", "articulated")
 METHODS = ("first-principles", "sight-metric", "sight-us", "slide-metric", "slide-us")
 PALETTES = ("gorse", "lichen", "bracken")
@@ -172,7 +181,11 @@ SURFACE: dict[str, Key] = {
     "name": Key(says="Name, by language.", form="texts"),
     "state": Key(says="For the checks between surfaces.", form="choice", choices=("dry", "wet", "snow", "ice")),
     "friction": Key(
-        says="A constant, or { f60, sp } falling with speed.", form="number", bounds=FRICTION_BOUNDS, table="friction"
+        says="A constant, or { f60, sp } falling with speed.",
+        form="number",
+        bounds=FRICTION_BOUNDS,
+        table="friction",
+        list_not_yet="friction from a list of speeds is not made yet",
     ),
     "friction_range": Key(
         says="Lowest and highest value of a constant.", form="numbers", bounds=FRICTION_BOUNDS, count=(2, 2)
@@ -184,7 +197,7 @@ VEHICLE: dict[str, Key] = {
     "use": Key(
         says="A preset of the catalogue.", form="use", not_yet="the catalogue has no vehicles; write the values here"
     ),
-    "kind": Key(says="What it is.", form="choice", choices=KINDS),
+    "kind": Key(says="What it is.", form="choice", choices=KINDS, meant=OTHER_KINDS),
     "name": Key(says="Name, by language.", form="texts"),
     "load": Key(says="Laden or unladen.", form="choice", choices=("laden", "unladen")),
     "unladen_of": Key(says="Id of the laden vehicle this one is the unladen state of.", form="use"),

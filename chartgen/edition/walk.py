@@ -29,12 +29,16 @@ def read_table(reading: Reading, raw: object, path: str, name: str) -> Row | Non
         return None
     keys = TABLES[name]
     row = Row(path)
-    for key in raw:
-        if key not in keys:
-            reading.fault(row.at(key), "this key is not known", listed(keys), given=raw[key], near=near(key, keys))
+    meant = {key: near(key, [k for k in keys if k not in raw]) for key in raw if key not in keys}
+    for key, guess in meant.items():
+        reading.fault(row.at(key), "this key is not known", listed(keys), given=raw[key], near=guess)
+    excused = any(keys[key].not_yet for key in raw if key in keys)
     for key, about in keys.items():
         if key in raw:
             _read_key(reading, row, key, about, raw[key])
+        elif about.needed and (excused or key in meant.values()):
+            # Its absence follows from a fault that is noted already.
+            row.broken.add(key)
         elif about.needed:
             row.broken.add(key)
             reading.fault(row.at(key), "this is needed and missing", example(key, about, reading))
@@ -58,6 +62,9 @@ def _read_key(reading: Reading, row: Row, key: str, about: Key, raw: object) -> 
 
 
 def _read_value(reading: Reading, where: str, about: Key, raw: object) -> Any:
+    if about.list_not_yet and isinstance(raw, list):
+        reading.fault(where, f"not yet: {about.list_not_yet}", example("", about, reading), given=raw)
+        return None
     if about.form == "table" or (about.table and about.form != "tables" and isinstance(raw, dict)):
         return read_table(reading, raw, where, about.table)
     return _FORMS[about.form](reading, where, about, raw)
@@ -84,8 +91,8 @@ def example(key: str, about: Key, reading: Reading) -> str:
             return f"a section [{key}]"
         case "tables":
             return f"one section [[{key}]] or more"
-        case "number" if about.bounds:
-            return about.bounds.says
+        case "number":
+            return _number_says(about)
         case _:
             return f'{key} = "…"'
 
@@ -185,7 +192,7 @@ def _choice(reading: Reading, where: str, about: Key, raw: object) -> str | None
             reading.fault(where, f'not yet: "{raw}" is not made yet', listed(now), given=raw)
             return None
         return raw
-    guess = near(raw, about.choices) if isinstance(raw, str) else None
+    guess = about.meant.get(raw.lower()) or near(raw, about.choices) if isinstance(raw, str) else None
     reading.fault(where, "this is not one of the choices", listed(about.choices), given=raw, near=guess)
     return None
 
@@ -232,9 +239,13 @@ def _number(reading: Reading, where: str, about: Key, raw: object) -> float | No
         return None
     value = float(raw)
     if not isfinite(value):
-        reading.fault(where, "this is not a number", about.bounds.says if about.bounds else "a number", given=raw)
+        reading.fault(where, "this is not a number", _number_says(about), given=raw)
         return None
     return value if within(reading, where, about.bounds, value, raw) else None
+
+
+def _number_says(about: Key) -> str:
+    return f"a number {about.bounds.says}" if about.bounds else "a number"
 
 
 def _numbers(reading: Reading, where: str, about: Key, raw: object) -> tuple[float, ...] | None:
