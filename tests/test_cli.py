@@ -254,3 +254,12 @@ def test_begin_refuses_a_name_that_makes_no_id(tmp_path: Path, capsys: pytest.Ca
     assert cli.main(["begin", "fleet", str(tmp_path / "طرق")]) == 2
     said = 'the folder name "طرق" makes no id.\nRight: a name with letters a to z or digits.\n'
     assert capsys.readouterr().err == said
+
+
+def test_the_readme_names_every_command_and_every_starter() -> None:
+    readme = (ROOT / "README.md").read_text(encoding="utf-8")
+    for name in ("press", "figures", "preflight", "begin"):
+        assert f"`chartgen {name} " in readme
+    for starter, edition in cli.STARTERS.items():
+        assert f"`{starter}`" in readme or f" {starter} " in readme
+        assert f"`{edition}`" in readme
