@@ -430,6 +430,8 @@ def test_all_faults_are_said_at_once(messages: Callable[..., list[str]]) -> None
 
 def test_a_fault_in_an_id_brings_no_others(messages: Callable[..., list[str]]) -> None:
     assert messages(('id = "wet"', 'id = "Wet road"')) == [
-        ('vale/edition.toml: surface[2].id = "Wet road" (in the 2nd [[surface]]): this is not an id. '
-        'Right: small letters a to z, digits and hyphens, at most 64: "wet-road".')
+        (
+            'vale/edition.toml: surface[2].id = "Wet road" (in the 2nd [[surface]]): this is not an id. '
+            'Right: small letters a to z, digits and hyphens, at most 64: "wet-road".'
+        )
     ]
