@@ -7,6 +7,8 @@ colour that carries meaning.
 
 from __future__ import annotations
 
+import re
+import unicodedata
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
@@ -31,7 +33,8 @@ from chartgen.sheets.template import fill
 if TYPE_CHECKING:
     import pandas as pd
 
-PATH = "sheets/cab-cards.pdf"
+PATH = "sheets/cab-cards{}.pdf"
+_SEVERAL = 2
 SMALL_MM = 2.2
 """Running text and document control: 6.2 pt, held in the hand."""
 JOINT = " · "
@@ -79,51 +82,70 @@ class _Task:
 
 
 def cards(edition: Edition, figures: Figures, languages: Sequence[Language]) -> tuple[Sheet, ...]:
-    """The edition's cab cards as one document: fronts and backs in turn, to be turned over the long edge.
+    """The edition's cab cards, one document a depot: fronts and backs in turn, to be turned over the long edge.
 
     A roster row with two languages gives two cards. Nothing where the edition asks for no cards.
     """
-    if edition.cards is None or not edition.cards.roster:
+    if edition.cards is None:
         return ()
-    imposed = grid(edition.cards.size, edition.cards.sheet)
-    if imposed is None:
-        return ()
+    depots: dict[str, list[RosterRow]] = {}
+    for row in edition.cards.roster:
+        depots.setdefault(row.depot, []).append(row)
+    paths = _paths(tuple(depots))
+    made = (_document(edition, figures, languages, rows, paths[depot]) for depot, rows in depots.items())
+    return tuple(sheet for sheet in made if sheet is not None)
+
+
+def _paths(depots: Sequence[str]) -> dict[str, str]:
+    """A file a depot, named after it; the plain name where there is only one."""
+    if len(depots) < _SEVERAL:
+        return dict.fromkeys(depots, PATH.format(""))
+    found: dict[str, str] = {}
+    for number, depot in enumerate(depots, 1):
+        name = re.sub(
+            r"[^a-z0-9]+", "-", unicodedata.normalize("NFKD", depot).lower().encode("ascii", "ignore").decode()
+        )
+        path = PATH.format(f"-{name.strip('-')}" if name.strip("-") else f"-{number}")
+        found[depot] = path if path not in found.values() else PATH.format(f"-{number}")
+    return found
+
+
+def _document(
+    edition: Edition, figures: Figures, languages: Sequence[Language], roster: Sequence[RosterRow], path: str
+) -> Sheet | None:
+    ordered = edition.cards
+    imposed = grid(ordered.size, ordered.sheet) if ordered else None
+    if ordered is None or imposed is None:
+        return None
     by_tag = {language.tag: language for language in languages}
-    wanted = [(row, by_tag[tag]) for row in edition.cards.roster for tag in row.languages]
+    wanted = [(row, by_tag[tag]) for row in roster for tag in row.languages]
     account = Account(figures)
-    fronts: list[list[Side]] = []
-    backs: list[list[Side]] = []
+    pages: list[list[Side]] = [[] for _ in range(2 * -(-len(wanted) // imposed.places))]
     for number, (row, language) in enumerate(wanted):
         sheet, index = divmod(number, imposed.places)
         task = _Task(
-            edition=edition, cards=edition.cards, figures=figures, account=account, row=row, language=language,
+            edition=edition, cards=ordered, figures=figures, account=account, row=row, language=language,
             grid=imposed, index=index, sheet=sheet,
         )  # fmt: skip
-        if index == 0:
-            fronts.append([])
-            backs.append([])
-        fronts[sheet].append(_front(task))
-        backs[sheet].append(_back(task))
-    pages = [page for pair in zip(fronts, backs, strict=True) for page in pair]
+        pages[2 * sheet].append(_front(task))
+        pages[2 * sheet + 1].append(_back(task))
     first = languages[0]
-    title = JOINT.join((first.t("sheet.cards"), first.text(edition.title)))
+    title = JOINT.join(filter(None, (first.t("sheet.cards"), roster[0].depot, first.text(edition.title))))
     html = fill(
         "cards.html", edition=edition, title=title, first=first, pages=pages, grid=imposed, small=SMALL_MM,
-        size=edition.cards.size, margin=plan.MARGIN_MM,
+        size=ordered.size, margin=plan.MARGIN_MM,
     )  # fmt: skip
-    return (
-        Sheet(
-            path=PATH,
-            title=title,
-            lang=first.tag,
-            html=html,
-            width_mm=imposed.sheet.width_mm,
-            height_mm=imposed.sheet.height_mm,
-            pages=len(pages),
-            inked=account.inked,
-            facts=tuple(account.facts),
-            sentences=tuple(account.sentences),
-        ),
+    return Sheet(
+        path=path,
+        title=title,
+        lang=first.tag,
+        html=html,
+        width_mm=imposed.sheet.width_mm,
+        height_mm=imposed.sheet.height_mm,
+        pages=len(pages),
+        inked=account.inked,
+        facts=tuple(account.facts),
+        sentences=tuple(account.sentences),
     )
 
 

@@ -32,8 +32,26 @@ def made() -> Made:
     """The fleet's cards, printed once for all tests."""
     edition = load_edition("quillane")
     table, spoken = figures(edition), languages(edition)
+    assert edition.cards is not None
+    one_depot = tuple(replace(row, depot="Ridge yard") for row in edition.cards.roster)
+    edition = replace(edition, cards=replace(edition.cards, roster=one_depot))
     (sheet,) = cards(edition, table, spoken)
     return edition, table, spoken, sheet, render(sheet)
+
+
+def test_each_depot_has_a_document_of_its_own() -> None:
+    edition = load_edition("quillane")
+    assert edition.cards is not None
+    sheets = cards(edition, figures(edition), languages(edition))
+    assert [sheet.path for sheet in sheets] == [
+        "sheets/cab-cards-ridge-yard.pdf",
+        "sheets/cab-cards-stonefold.pdf",
+        "sheets/cab-cards-low-ferry.pdf",
+    ]
+    for sheet, depot in zip(sheets, dict.fromkeys(row.depot for row in edition.cards.roster), strict=True):
+        assert depot in sheet.title
+        there = [row.vehicle_id for row in edition.cards.roster if row.vehicle_id in sheet.facts]
+        assert there == [row.vehicle_id for row in edition.cards.roster if row.depot == depot]
 
 
 def texts(data: bytes) -> Iterator[str]:
