@@ -29,7 +29,7 @@ def edition_file(path: str | os.PathLike[str]) -> Path:
         if inside.is_file():
             return inside
         if not re.fullmatch(ID_PATTERN, str(path)) or str(path) not in names():
-            raise CommandFault(f'the folder "{named}" holds no {FILE_NAME}', f"a folder with a file {FILE_NAME}")
+            raise CommandFault(f'The folder "{named}" holds no {FILE_NAME}', f"a folder with a file {FILE_NAME}")
     if named.is_file():
         return named
     known = names()
@@ -37,7 +37,7 @@ def edition_file(path: str | os.PathLike[str]) -> Path:
         return known[str(path)]
     guess = near(str(path), known)
     allowed = "a folder that holds edition.toml, that file, or one of: " + ", ".join(known)
-    raise CommandFault(f'there is no edition "{path}"' + (f'; did you mean "{guess}"?' if guess else ""), allowed)
+    raise CommandFault(f'There is no edition "{path}"' + (f'; did you mean "{guess}"?' if guess else ""), allowed)
 
 
 def names() -> dict[str, Path]:
@@ -72,7 +72,9 @@ def read_text(file: Path, shown: str) -> str:
 def read_toml(text: str, shown: str) -> dict[str, Any]:
     """The tables of an edition file; numbers with a point as Decimal, as they were written."""
     if not text.strip():
-        raise EditionFaults((Fault(shown, "", "the file is empty", "at least [edition], [languages], [units], …"),))
+        raise EditionFaults(
+            (Fault(shown, "", "the file is empty", "at least [edition], [languages], [units] and so on"),)
+        )
     try:
         return tomllib.loads(text, parse_float=Decimal)
     except RecursionError as fault:
