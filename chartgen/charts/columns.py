@@ -43,9 +43,14 @@ class Plan:
 
     @property
     def unlabelled(self) -> tuple[int, ...]:
-        """Rows that stop and whose total found no seat."""
-        seated = {spot.row for spot in self.spots if spot.role == "total"}
-        return tuple(post.bar.row for post in self.frame.posts if post.bar.stops and post.bar.row not in seated)
+        """Rows whose total found no seat, or that do not stop and carry no words that say so."""
+        told = {spot.row for spot in self.spots if spot.role in {"total", "verdict"}}
+        across = [(x0, x1) for x0, _, x1, _ in self.lintels]
+        return tuple(
+            post.bar.row
+            for post in self.frame.posts
+            if post.bar.row not in told and (post.bar.stops or not any(x0 <= post.centre <= x1 for x0, x1 in across))
+        )
 
     @property
     def total_digit_mm(self) -> float:
@@ -72,9 +77,9 @@ def plan(
     language tag for each series, needed for two or three. Raises ValueError for rows that cannot be drawn and for too
     small a drawing.
     """
+    made = groups(series)
     if len(series) > 1 and len(names_of_series) != len(series):
         raise ValueError("each of several series needs a name")
-    made = groups(series)
     m = measures.poster(width_mm, height_mm) if medium == "poster" else measures.web(width_mm, height_mm)
     task = Task(
         groups=made,
@@ -87,15 +92,31 @@ def plan(
     )
     settled = _settle(task, width_mm, height_mm)
     if any((settled.needs.start_lane, settled.needs.end_lane, settled.needs.before_groups, settled.needs.after_groups)):
-        # Numbers beside the columns make columns and totals smaller: beyond a seventh the totals win.
         without = _settle(replace(task, lanes=False), width_mm, height_mm)
-        if (
-            not settled.frame.granted
-            or settled.frame.total_size < 0.85 * without.frame.total_size
-            or len(settled.frame.seats) < len(without.frame.seats)
-        ):
+        if not _worth_its_lanes(settled, without):
             return without
     return settled
+
+
+def _worth_its_lanes(made: Plan, without: Plan) -> bool:
+    """Whether numbers beside the columns may stay: they have the room they asked for, meet no total, cost no total its
+    seat, and make the totals at most a seventh smaller."""
+    beside = [
+        spot for spot in made.spots if spot.role in {"part", "lag"} and spot.ink == "type" and spot.align != "center"
+    ]
+    leader = max(1.2, 0.35 * made.measures.beside)
+    seated = [spot for spot in made.spots if spot.role == "total"]
+    meets = any(
+        one.x0 - leader < two.x1 and one.x1 + leader > two.x0 and one.y0 < two.y1 + 0.3 and one.y1 + 0.3 > two.y0
+        for one in beside
+        for two in seated
+    )
+    return (
+        made.frame.granted
+        and not meets
+        and len(made.frame.seats) >= len(without.frame.seats)
+        and made.frame.total_size >= 0.85 * without.frame.total_size
+    )
 
 
 def _settle(task: Task, width_mm: float, height_mm: float) -> Plan:

@@ -124,22 +124,28 @@ class Frame:
 def part_edges(bar: Bar, base_y: float, scale: float, gap: float, top_y: float) -> tuple[Edge, ...]:
     """The parts of a bar stacked on the base line from unrounded lengths, a white gap centred on each boundary.
 
-    A part thinner than the gap keeps a visible sliver and pushes the boundary above it up; the column's end stays
-    exact.
+    A part thinner than its share of the gaps keeps a visible sliver and moves the boundary it shares with the greater
+    neighbour; the column's end stays exact. Where the whole column is shorter than slivers and gaps, both shrink.
     """
+    parts: tuple[Part, ...] = bar.parts if bar.stops else (*bar.parts, "braking")
     marks = [base_y]
     for length in bar.lengths_m:
         marks.append(marks[-1] - length * scale)
-    parts: tuple[Part, ...] = bar.parts
-    if not bar.stops:
+    if bar.stops:
+        marks[-1] = top_y
+    else:
         marks.append(top_y)
-        parts = (*parts, "braking")
-    last = len(parts) - 1
-    for i in range(last):
-        eaten = gap if i > 0 else gap / 2
-        marks[i + 1] = min(marks[i + 1], marks[i] - eaten - _LEAST_PART_MM)
+    n = len(parts)
+    shrink = min(1.0, (base_y - top_y) / (n * _LEAST_PART_MM + (n - 1) * gap)) if n else 1.0
+    gap, least = gap * shrink, _LEAST_PART_MM * shrink
+    # What a part needs between its boundaries: its sliver and its share of the gaps at either end.
+    needs = [least + gap / 2 * ((i > 0) + (i < n - 1)) for i in range(n)]
+    for i in range(1, n):
+        marks[i] = min(marks[i], marks[i - 1] - needs[i - 1])
+    for i in range(n - 1, 0, -1):
+        marks[i] = max(marks[i], marks[i + 1] + needs[i])
     return tuple(
-        Edge(part=part, low_y=marks[i] - (gap / 2 if i else 0), high_y=marks[i + 1] + (gap / 2 if i < last else 0))
+        Edge(part=part, low_y=marks[i] - (gap / 2 if i else 0), high_y=marks[i + 1] + (gap / 2 if i < n - 1 else 0))
         for i, part in enumerate(parts)
     )
 
@@ -312,8 +318,8 @@ def frame(
     longest = max(bar.known_m for bar in all_bars(groups))
     endless = any(not bar.stops for bar in all_bars(groups))
     unit_words: tuple[Content, ...] = (Unit(unit),)
-    # Where a column does not end, the ruler runs on to the top: up to 1/0.45 of the longest length there is.
-    number = Number(float(math.ceil(longest / METRES_IN[unit] * (2.3 if endless else 1.0))))
+    # Where a column does not end, the ruler runs on to the top: less than four times the longest length there is.
+    number = Number(float(math.ceil(longest / METRES_IN[unit] * (4.0 if endless else 1.0))))
     ruler_words = max(readers.widest((number,), "text", m.ruler), readers.widest(unit_words, "text", m.ruler))
     band_words = readers.widest((Unit(speed_unit),), "text", m.unit)
     ruler = max(m.gutter * 0.4 + m.tick + 0.35 * m.ruler + ruler_words, band_words + 0.8 * m.unit) + 0.2
@@ -325,7 +331,7 @@ def frame(
     base_y = band_y - m.gap - needs.foot
     standing = _standing(groups, row)
     total, scale, taken = _seated(standing, groups, readers, row, base_y, every, m, needs.head)
-    ticks, unit_y = ruler_ticks(unit, scale, base_y, longest, endless, m)
+    ticks, unit_y = ruler_ticks(unit, scale, base_y, longest, endless, readers.room(Unit(unit), "text", m.ruler)[0], m)
     course = course_step(unit, scale, 2.6 * m.joint + 1.2) if row.column >= _LEAST_JOINTED_MM else 0.0
     return Frame(
         width=width, height=height, base_y=base_y, band_y=band_y, scale=scale,

@@ -33,12 +33,13 @@ def _name_inside(post: Post, edge: Edge, number: Spot, task: Task) -> tuple[Spot
     """(the number moved aside, the name) where both fit in the part, the name below or beside the number, which may
     shrink."""
     m, part = task.measures, edge.part
-    room, inner, middle = inner_width(post, edge, m), inner_height(edge, m), (edge.low_y + edge.high_y) / 2
+    room, inner, middle = inner_width(post, edge, m, hatch=0.12), inner_height(edge, m), (edge.low_y + edge.high_y) / 2
     content = Key(f"part.{part}")
     base = Spot(
         content=content, x0=0, x1=0, y0=0, y1=0, align="start", size=0, face="text-bold", ink=INK_ON[part], role="name"
     )
     sizes = [size for size in ladder(m.name, m.name_least) if legible(task, INK_ON[part], part, size, bold=True)]
+    longest = task.readers.longest_word(content, "text-bold")
     for shrink in SHRINK[:6]:
         figure = number.size * shrink
         if figure < least_size(part, m) - 1e-9 or not legible(task, number.ink, part, figure, bold=False):
@@ -46,17 +47,18 @@ def _name_inside(post: Post, edge: Edge, number: Spot, task: Task) -> tuple[Spot
         tall, wide = (number.y1 - number.y0) * shrink, (number.x1 - number.x0) * shrink
         for size in sizes:
             air = 0.35 * size
-            count, width = task.readers.room(content, "text-bold", size, room)
-            height = count * LEADING * size
-            if width <= room and tall + air + height <= inner:
-                top = middle - (tall + air + height) / 2
-                moved = _at(number, post.centre - wide / 2, top, wide, tall, figure)
-                return moved, replace(
-                    _at(base, post.centre - room / 2, top + tall + air, room, height, size), align="center"
-                )
+            if longest * size <= room:
+                count, width = task.readers.room(content, "text-bold", size, room)
+                height = count * LEADING * size
+                if width <= room and tall + air + height + 0.2 * size <= inner:
+                    top = middle - (tall + air + height) / 2
+                    moved = _at(number, post.centre - wide / 2, top, wide, tall, figure)
+                    return moved, replace(
+                        _at(base, post.centre - room / 2, top + tall + air, room, height, size), align="center"
+                    )
             count, width = task.readers.room(content, "text-bold", size)
             height = count * LEADING * size
-            if wide + 2 * air + width <= room and max(height, tall) <= inner:
+            if wide + 2 * air + width <= room and max(height + 0.2 * size, tall) <= inner:
                 left = post.centre - (wide + 2 * air + width) / 2
                 moved = _at(number, left, middle - tall / 2, wide, tall, figure)
                 return moved, _at(base, left + wide + 2 * air, middle - height / 2, width + 0.01, height, size)
@@ -71,7 +73,10 @@ def _name_in_open_column(frame: Frame, task: Task) -> tuple[int, Spot] | None:
         return None
     post, edge, m = frame.posts[index], frame.posts[index].edges[-1], task.measures
     room = inner_width(post, edge, m)
+    longest = task.readers.longest_word(Key("part.braking"), "text-bold")
     for size in ladder(m.name, m.name_least):
+        if longest * size > room:
+            continue
         count, width = task.readers.room(Key("part.braking"), "text-bold", size, room)
         height = count * LEADING * size
         if width <= room and height <= 0.3 * edge.height:
@@ -138,17 +143,19 @@ def _names_lane(frame: Frame, task: Task, placed: Placed, homeless: Sequence[Par
     placed.need(names_lane=wide + leader + 1.2)
     foot = frame.base_y
     for part in homeless:
-        post = next(p for p in reversed(frame.posts) if any(e.part == part for e in p.edges))
-        edge = next(e for e in post.edges if e.part == part)
+        post = frame.posts[-1]
+        edge = next((e for e in post.edges if e.part == part), None)
+        if edge is None:  # only columns further in have it: a leader would cross the last one
+            continue
         count, _ = task.readers.room(Key(f"part.{part}"), "text-bold", size)
         height = count * LEADING * size
-        middle = min((edge.low_y + edge.high_y) / 2, foot - height / 2)
-        foot = middle - height / 2 - 0.3 * size
         x = frame.columns_end + placed.needs.end_lane + leader
-        beside = [s for s in placed.spots if s.row == post.bar.row and s.quantity == part and s.x0 > post.x1]
-        if beside:  # its number stands beside the column already, with the leader that serves both
-            middle = beside[0].middle
-            x = beside[0].x1 + 0.35 * size
+        beside = [s for s in placed.spots if s.row == post.bar.row and s.x0 > post.x1]
+        own = next((s.middle for s in beside if s.quantity == part), None)
+        middle = min((edge.low_y + edge.high_y) / 2 if own is None else own, foot - height / 2)
+        foot = middle - height / 2 - 0.3 * size
+        if own is not None:  # its number stands beside the column already, with the leader that serves both
+            x = max(s.x1 for s in beside) + 0.35 * size
         else:
             target = min(max(middle, edge.high_y + m.hairline), edge.low_y - m.hairline)
             placed.strokes.append(stroke(x - 0.4, middle, post.x1, target, m.hairline))

@@ -21,7 +21,7 @@ def course_step(unit: str, scale: float, room_mm: float) -> float:
 
 
 def ruler_ticks(
-    unit: str, scale: float, base_y: float, longest_m: float, endless: bool, m: Measures
+    unit: str, scale: float, base_y: float, longest_m: float, endless: bool, unit_lines: int, m: Measures
 ) -> tuple[tuple[tuple[float, float | None], ...], float]:
     """(ticks as (y, the number it carries or None), the y on which the unit's word stands above them).
 
@@ -30,7 +30,7 @@ def ruler_ticks(
     metres = METRES_IN[unit]
     step = course_step(unit, scale, 2.2 * m.ruler)
     half = step / 2 if step / 2 * metres * scale >= 1.6 and step != 25 else step
-    top_room = 2.6 * m.ruler
+    top_room = (1.6 + 1.2 * unit_lines) * m.ruler
     reach = (
         (base_y - top_room) / (metres * scale)
         if endless

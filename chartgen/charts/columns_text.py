@@ -175,12 +175,12 @@ def least_size(part: Part, m: Measures) -> float:
     return m.lag_least if part == "lag" else m.number_least
 
 
-def inner_width(post: Post, edge: Edge, m: Measures) -> float:
-    """Width within a part that words may fill; the lag's hatch, flat behind words from edge to edge, must stay seen
-    beside them."""
+def inner_width(post: Post, edge: Edge, m: Measures, *, hatch: float = 0.2) -> float:
+    """Width within a part that words may fill. `hatch`: the part of the width that the lag's hatch keeps at either
+    side, since words lie on flat ink through the part's whole height."""
     width = post.x1 - post.x0
     pad = min(m.pad, 0.08 * width)
-    return width - 2 * {"reaction": pad + m.outline, "lag": max(pad, 0.2 * width), "braking": pad}[edge.part]
+    return width - 2 * {"reaction": pad + m.outline, "lag": max(pad, hatch * width), "braking": pad}[edge.part]
 
 
 def _number_size(post: Post, edge: Edge, content: Number, task: Task) -> float | None:

@@ -63,11 +63,17 @@ def _lintels(frame: Frame, task: Task, placed: Placed) -> None:
     top = m.broken
     foot = top + count * LEADING * size + 2 * m.pad
     placed.need(head=foot + 1.0)
-    for run in _runs(frame.posts):
+    taken = frame.columns_end
+    for run in reversed(_runs(frame.posts)):
         x1 = run[-1].x1
         x0 = min(run[0].x0, x1 - wide - 2 * m.pad)
         if x0 < 0:
             x0, x1 = 0.0, max(x1, wide + 2 * m.pad)
+        if x1 > taken + 0.01:
+            # Columns that end and columns that do not stand by turns, closer than the words are wide: the greater
+            # speed's lintel speaks; this run keeps its open top and is told as unlabelled.
+            continue
+        taken = x0 - 1.0
         placed.lintels.append((x0, top, x1, foot))
         placed.spots.append(Spot(
             content=VERDICT, x0=x0 + m.pad - 0.01, x1=x1 - m.pad + 0.01, y0=top + m.pad, y1=foot - m.pad,
@@ -82,7 +88,7 @@ def drivers(frame: Frame, task: Task, placed: Placed) -> None:
     if len(task.drivers) < 2:
         return
     m = task.measures
-    room = min(post.x1 - post.x0 for post in frame.posts) + 0.5 * m.pair
+    room = min(post.x1 - post.x0 for post in frame.posts)
     for size in ladder(m.driver, m.driver_least):
         blocks = [task.readers.room(name, "text", size, room) for name in task.drivers]
         most = max(count for count, _ in blocks)

@@ -7,11 +7,15 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
+from typing import Final
 
 import pandas as pd
 
 from chartgen.charts.columns_data import Bar, groups
 from chartgen.charts.words import Words
+
+MOST_CHARACTERS: Final = 150
+"""Of a text alternative (requirement A4)."""
 
 
 def alt_text(
@@ -37,7 +41,15 @@ def alt_text(
         return voice.one([bar for group in made for bar in group.bars if bar is not None])
     low, high = (language.speed(group.printed_speed, speed_unit) for group in (made[0], made[-1]))
     told = [voice.several(language.text(name), bars) for name, bars in zip(names_of_series, lists, strict=True)]
-    return " ".join([language.plain("alt.columns_many", low=low, high=high), *told])
+    whole = " ".join([language.plain("alt.columns_many", low=low, high=high), *told])
+    short = " ".join(told)
+    if len(whole) <= MOST_CHARACTERS:
+        return whole
+    # Too long to listen to. Where one series does not stop and another does, both stay; else the claim of the series
+    # that needs most room, which errs on no side but the long one.
+    if len(short) <= MOST_CHARACTERS and any(not bar.stops for bars in lists for bar in bars):
+        return short
+    return voice.one(max(lists, key=_reach))
 
 
 class _Voice:
@@ -91,6 +103,11 @@ def _parted(bars: Sequence[Bar]) -> tuple[list[Bar], Bar | None]:
         if not bar.stops:
             return list(bars[:index]), bar
     return list(bars), None
+
+
+def _reach(bars: Sequence[Bar]) -> float:
+    """The greatest length of a series; endless where one does not stop."""
+    return max(bar.known_m if bar.stops else math.inf for bar in bars)
 
 
 def times_as_far(first: Bar, last: Bar) -> int:

@@ -42,10 +42,10 @@ class Drawing:
 
     `marks_svg`: an ``<svg>`` with a viewBox in mm, no size, no ids, no style: one ``<path class="ink-NAME"
     fill="#rrggbb">`` an ink. `total_digit_mm`: digit height of the totals (0 where none is printed), for the check
-    against the reading distance. `unlabelled`: rows whose total found no room (the columns are too many or too
-    narrow). `course`: what one course of the braking part is worth, in the distance unit (0 where no joint is drawn).
-    `skyline`: free paper above the columns, as (x0, x1, y) in reading order from left to right: nothing is drawn above
-    y between x0 and x1.
+    against the reading distance. `unlabelled`: rows whose total, or whose “does not stop”, found no room (the columns
+    are too many or too narrow). `course`: what one course of the braking part is worth, in the distance unit (0 where
+    no joint is drawn). `skyline`: free paper above the columns, as (x0, x1, y) in reading order from left to right:
+    nothing is drawn above y between x0 and x1.
     """
 
     name: str

@@ -8,8 +8,9 @@ from itertools import combinations
 from typing import Final
 
 import numpy as np
+import numpy.typing as npt
 
-from chartgen.charts.canvas import Pieces, area, clip, read_pieces
+from chartgen.charts.canvas import Pieces, Polygon, area, clip, read_pieces
 from chartgen.charts.drawing import Drawing, Label
 from chartgen.charts.fonts import extent
 
@@ -48,23 +49,44 @@ def _meet(one: Box, two: Box) -> bool:
     return across > _TOUCH_MM and down > _TOUCH_MM
 
 
-def _crossed(here: Box, pieces: Pieces) -> str | None:
+@dataclass(frozen=True, slots=True)
+class _Layer:
+    """The pieces of one ink and their bounds (one row of x0, y0, x1, y1 a piece), to find at once what lies near."""
+
+    ink: str
+    polygons: tuple[Polygon, ...]
+    bounds: npt.NDArray[np.float64]
+
+    def near(self, here: Box) -> list[Polygon]:
+        b = self.bounds
+        meets = (b[:, 0] < here[2]) & (b[:, 2] > here[0]) & (b[:, 1] < here[3]) & (b[:, 3] > here[1])
+        return [self.polygons[i] for i in np.flatnonzero(meets)]
+
+
+def _layers(pieces: Pieces) -> list[_Layer]:
+    return [
+        _Layer(
+            ink,
+            polygons,
+            np.array([[*map(min, zip(*p, strict=True)), *map(max, zip(*p, strict=True))] for p in polygons]),
+        )
+        for ink, polygons in pieces
+    ]
+
+
+def _crossed(here: Box, layers: list[_Layer]) -> str | None:
     """The ink that covers a label's box in part: a label stands wholly on an ink or wholly off it."""
     whole = (here[2] - here[0]) * (here[3] - here[1])
-    for ink, polygons in pieces:
-        near = [p for p in polygons if min(x for x, _ in p) < here[2] and max(x for x, _ in p) > here[0]]
+    for layer in layers:
+        near = layer.near(here)
         covered = [abs(area(part)) for p in near if (part := clip(p, *here))]
-        if (
-            covered
-            and max(covered) < 0.999 * whole
-            and sum(covered) > _TOUCH_MM * (here[3] - here[1])
-            and not _tiled(here, near)
-        ):
-            return ink
+        seen = sum(covered) > _TOUCH_MM * (here[3] - here[1])
+        if seen and max(covered) < 0.999 * whole and not _tiled(here, near):
+            return layer.ink
     return None
 
 
-def _tiled(here: Box, polygons: list[tuple[tuple[float, float], ...]]) -> bool:
+def _tiled(here: Box, polygons: list[Polygon]) -> bool:
     """True where convex pieces of one ink cover the box together: no point of a fine net is left bare."""
     x, y = np.meshgrid(np.linspace(here[0], here[2], 32), np.linspace(here[1], here[3], 96))
     bare = np.ones_like(x, dtype=bool)
@@ -81,7 +103,7 @@ def collisions(drawing: Drawing) -> list[Collision]:
     """Every fault of the labels; an empty list where all can be read."""
     found = []
     boxes = [(label, box(label)) for label in drawing.labels if label.text.strip()]
-    pieces = read_pieces(drawing.marks_svg)
+    layers = _layers(read_pieces(drawing.marks_svg))
     for label, here in boxes:
         if (
             here[0] < -_TOUCH_MM
@@ -90,7 +112,7 @@ def collisions(drawing: Drawing) -> list[Collision]:
             or here[3] > drawing.height_mm + _TOUCH_MM
         ):
             found.append(Collision(kind="cut", text=label.text, other=""))
-        ink = _crossed(here, pieces)
+        ink = _crossed(here, layers)
         if ink is not None:
             found.append(Collision(kind="crossed", text=label.text, other=ink))
     for (one, first), (two, second) in combinations(boxes, 2):

@@ -39,7 +39,7 @@ def png(drawing: Drawing, palette: Palette, dpi: float = 100.0) -> bytes:
         )  # fmt: skip
     target = io.BytesIO()
     # Without hinting a glyph is as wide as its file says, at any resolution.
-    with warnings.catch_warnings(), mpl.rc_context({"text.hinting": "none", "text.hinting_factor": 1}):
+    with warnings.catch_warnings(), mpl.rc_context({"text.hinting": "none"}):
         warnings.simplefilter("error")
         FigureCanvasAgg(figure).print_png(target, metadata={"Software": None})  # type: ignore[no-untyped-call]
     return target.getvalue()

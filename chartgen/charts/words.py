@@ -134,6 +134,7 @@ class Readers:
         default_factory=dict, compare=False, repr=False
     )
     """(lines, width at font size 1) of what was measured unwrapped: each content is asked for at many sizes."""
+    _longest: dict[tuple[Content, FaceName], float] = field(default_factory=dict, compare=False, repr=False)
 
     @property
     def settings(self) -> tuple[tuple[Words, ...], ...]:
@@ -147,6 +148,14 @@ class Readers:
         if whole[1] * size_mm <= room_mm:
             return whole[0], whole[1] * size_mm
         return self._measure(content, face, size_mm, room_mm)
+
+    def longest_word(self, content: Content, face: FaceName) -> float:
+        """Width, at font size 1, of the longest word of `content` in any language: narrower than that it cannot get."""
+        known = self._longest.get((content, face))
+        if known is None:
+            words = {word for setting in self.settings for one in setting for word in say(content, one).split(" ")}
+            known = self._longest[content, face] = max(width_mm(word, face, 1.0) for word in words)
+        return known
 
     def _measure(self, content: Content, face: FaceName, size_mm: float, room_mm: float) -> tuple[int, float]:
         count, width = 0, 0.0

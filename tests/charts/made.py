@@ -36,6 +36,16 @@ _WORDS = {
         "verdict.does_not_stop": "لا تتوقف",
     },
 }
+_ALT = {
+    "alt.columns": "Stopping distance grows from {first} at {low} to {last} at {high}: at least {times} times as far.",
+    "alt.columns_short": "Stopping distance: {first} at {low}, {last} at {high}.",
+    "alt.columns_one": "Stopping distance at {speed}: {total}.",
+    "alt.columns_never": "From {never} the vehicle does not stop.",
+    "alt.columns_none": "From {low} to {high} the vehicle does not stop.",
+    "alt.columns_many": "Stopping distance grows with speed, from {low} to {high}.",
+    "alt.columns_series": "{name}: {first} to {last}.",
+    "alt.columns_series_none": "{name}: {verdict}.",
+}
 _UNITS = {"cy": {"mph": "mya"}, "ar": {"km/h": "كم/س", "m": "م"}}
 
 
@@ -47,7 +57,7 @@ class MadeWords:
     direction: Direction = "ltr"
 
     def t(self, key: str, **values: str) -> str:
-        return _WORDS[self.tag][key].format(**values)
+        return {**_ALT, **_WORDS[self.tag]}[key].format(**values)
 
     def plain(self, key: str, **values: str) -> str:
         return self.t(key, **values)
