@@ -9,7 +9,7 @@ import re
 from collections.abc import Callable, Sequence
 from datetime import date, datetime
 from decimal import Decimal
-from math import isfinite
+from math import inf, isfinite
 from typing import Any
 
 from chartgen.edition.measures import Measure, NotAQuantityError
@@ -237,7 +237,8 @@ def _number(reading: Reading, where: str, about: Key, raw: object) -> float | No
             right += ": " + raw.replace(",", ".")
         reading.fault(where, "a number is needed here", right, given=raw)
         return None
-    value = float(raw)
+    # A whole number may be too long for a float, where a decimal becomes infinite.
+    value = inf if isinstance(raw, int) and raw.bit_length() > 300 else float(raw)
     if not isfinite(value):
         reading.fault(where, "this is not a number", _number_says(about), given=raw)
         return None
