@@ -5,7 +5,7 @@ from __future__ import annotations
 import copy
 import tomllib
 from collections.abc import Iterator
-from datetime import UTC, date, datetime, time
+from datetime import UTC, date, datetime
 from decimal import Decimal
 from pathlib import Path
 from typing import Any
@@ -19,8 +19,8 @@ from chartgen.report import fault_line
 
 EXAMPLE = Path(__file__).parent / "data" / "example"
 ODD: tuple[Any, ...] = (
-    0, -1, 10**30, 10**400, True, Decimal("nan"), Decimal("1e400"), "", "x", "{", "../x", "9" * 50, [], {}, [[]], [{}],
-    [""], [1, 2], {"x": 1}, {"p50": 1}, date(2026, 1, 1), datetime(2026, 1, 1, tzinfo=UTC), time(12, 0),
+    -1, 10**400, True, Decimal("nan"), Decimal("1e400"), "", "{", "../x", [], {}, [[]], [{}], [1, 2], {"p50": 1},
+    date(2026, 1, 1), datetime(2026, 1, 1, tzinfo=UTC),
 )  # fmt: skip
 
 
