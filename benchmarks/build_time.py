@@ -30,7 +30,7 @@ from typing import Any
 
 ROOT = Path(__file__).resolve().parents[1]
 LIBRARIES = (
-    *("pydantic", "pint", "numpy", "pandas", "babel.numbers", "jinja2", "matplotlib.backends.backend_svg", "segno"),
+    *("pint", "numpy", "pandas", "babel.numbers", "jinja2", "matplotlib.backends.backend_svg", "segno"),
     *("weasyprint", "pikepdf", "pypdfium2"),
 )
 MOST_OF_LEAST, MOST_OF_STRAIGHTFORWARD = 1.1, 0.35

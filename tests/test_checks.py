@@ -36,7 +36,7 @@ def modules() -> list[str]:
     return [".".join(p.relative_to(ROOT).with_suffix("").parts).removesuffix(".__init__") for p in paths]
 
 
-HEAVY = ["matplotlib", "pandas", "weasyprint", "pint", "pydantic", "babel", "pikepdf", "rich", "numpy", "jinja2"]
+HEAVY = ["matplotlib", "pandas", "weasyprint", "pint", "babel", "pikepdf", "rich", "numpy", "jinja2"]
 HEAVY += ["segno", "pypdfium2"]
 
 
