@@ -26,6 +26,7 @@ from chartgen.charts.columns_text import (
     legible,
     stroke,
 )
+from chartgen.charts.inks import LARGE_BOLD_MM
 from chartgen.charts.words import LEADING, Key
 
 
@@ -38,7 +39,9 @@ def _name_inside(post: Post, edge: Edge, number: Spot, task: Task) -> tuple[Spot
     base = Spot(
         content=content, x0=0, x1=0, y0=0, y1=0, align="start", size=0, face="text-bold", ink=INK_ON[part], role="name"
     )
-    sizes = [size for size in ladder(m.name, m.name_least) if legible(task, INK_ON[part], part, size, bold=True)]
+    # The size from which bold counts as large is tried too: on a middle tone nothing smaller may stand.
+    steps = {*ladder(m.name, m.name_least), *([LARGE_BOLD_MM] if m.name_least < LARGE_BOLD_MM < m.name else [])}
+    sizes = [size for size in sorted(steps, reverse=True) if legible(task, INK_ON[part], part, size, bold=True)]
     longest = task.readers.longest_word(content, "text-bold")
     for shrink in SHRINK[:6]:
         figure = number.size * shrink
@@ -158,7 +161,10 @@ def _names_lane(frame: Frame, task: Task, placed: Placed, homeless: Sequence[Par
             x = max(s.x1 for s in beside) + 0.35 * size
         else:
             target = min(max(middle, edge.high_y + m.hairline), edge.low_y - m.hairline)
-            placed.strokes.append(stroke(x - 0.4, middle, post.x1, target, m.hairline))
+            top, low = min(middle, target) - 0.3, max(middle, target) + 0.3
+            # Past the number of another part there is no leader: the name stands level with its part all the same.
+            if not any(s.y0 < low and s.y1 > top for s in beside):
+                placed.strokes.append(stroke(x - 0.4, middle, post.x1, target, m.hairline))
         placed.spots.append(Spot(
             content=Key(f"part.{part}"), x0=x, x1=x + wide + 0.01, y0=middle - height / 2, y1=middle + height / 2,
             align="start", size=size, face="text-bold", ink="type", role="name",

@@ -234,8 +234,8 @@ def test_totals_are_as_wide_as_their_columns_at_least_and_their_digit_height_is_
     assert total_digit_height(drawing) >= 25  # read from 3 m: distance / 120 (requirement P6)
     three = draw(rows(MPH, lag_s=0.4, deceleration=5))
     assert max(len(text) for text in texts(three, "total")) == 3
-    # Three figures in a column as wide as two do not reach 25 mm; beside numbers of the lag they are a little smaller.
-    assert 22.5 <= total_digit_height(three) < 25
+    # Three figures are wider than such a column; they reach back over the lower one before it.
+    assert total_digit_height(three) >= 25
 
 
 def test_where_columns_are_too_many_totals_are_left_out_and_told_never_laid_over_another() -> None:
