@@ -72,7 +72,7 @@ def test_an_unknown_edition_is_told_with_a_near_name(
     monkeypatch.chdir(tmp_path)
     assert cli.main(["figures", "tarnholm"]) == 2
     assert capsys.readouterr().err == (
-        'there is no edition "tarnholm"; did you mean "tarnholt"?\n'
+        'There is no edition "tarnholm"; did you mean "tarnholt"?\n'
         "Right: a folder that holds edition.toml, that file, or one of: quillane, sarvelle, tarnholt.\n"
     )
 
