@@ -107,6 +107,8 @@ class MethodPage:
     trace_title: str
     trace_text: str
     traces: tuple[Trace, ...]
+FALLING = "F(S) = F60 · exp((60 − S)/Sp)"
+"""Friction falling with speed, PIARC / ASTM E1960: a value of its own in a sentence, so that it runs left to right."""
 
 
 def method_page(site: Site, language: Language) -> MethodPage:
@@ -202,7 +204,8 @@ def _friction(language: Language, friction: Friction) -> Markup:
         low, high = language.number(friction.low, 2), language.number(friction.high, 2)
         return language.html("method.range", value=value, low=low, high=high)
     grip = language.number(friction.f60 or 0.0, 2)
-    text = language.html("method.friction_falls", grip=grip, sp=language.speed(friction.sp_kmh or 0.0, "km/h"))
+    sp = language.speed(friction.sp_kmh or 0.0, "km/h")
+    text = language.html("method.friction_falls", formula=FALLING, grip=grip, sp=sp)
     if friction.max_mu is not None:
         cap = language.html("method.friction_cap", max=language.number(friction.max_mu, 2))
         text = Markup("{} ({})").format(text, cap)
