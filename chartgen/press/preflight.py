@@ -104,22 +104,30 @@ def _number_problems(
 def _place_problems(
     reading: Reading, sheet: PrintPage, figures: Figures, by_tag: Mapping[str, Language]
 ) -> Iterator[tuple[str, str]]:
+    middles = _middles(reading)
     for figure in sheet.inked:
         due = numbers(written(figure, figures, by_tag[figure.lang])) if figure.boxes else []
         for page, box in figure.boxes:
-            there = [number for text in _texts_within(reading, page, box) for number in numbers(text)]
+            there = [number for text in _texts_within(middles.get(page, []), box) for number in numbers(text)]
             if not set(due) <= set(there):
                 place = f"page {page}, {box[0]:.0f} to {box[2]:.0f} mm across, {box[1]:.0f} to {box[3]:.0f} mm down"
                 what = f"{figure.quantity} of row {figure.row} ({', '.join(due)}) does not stand at its place: {place}"
                 yield "preflight.number-misplaced", f"{what}; there: {', '.join(there) or 'no number'}"
 
 
-def _texts_within(reading: Reading, page: int, box: Box) -> Iterable[str]:
-    left, top, right, bottom = box
+def _middles(reading: Reading) -> dict[int, list[tuple[float, float, str]]]:
+    """By page: the middle of each run of text that holds a digit, across and down in mm, and the text."""
+    found: dict[int, list[tuple[float, float, str]]] = {}
     for piece in reading.pieces:
-        across, down = (piece.left + piece.right) / 2, (piece.top + piece.bottom) / 2
-        if piece.page == page and left <= across <= right and top <= down <= bottom:
-            yield piece.text
+        if any(c.isdigit() for c in piece.text):
+            middle = ((piece.left + piece.right) / 2, (piece.top + piece.bottom) / 2, piece.text)
+            found.setdefault(piece.page, []).append(middle)
+    return found
+
+
+def _texts_within(middles: Iterable[tuple[float, float, str]], box: Box) -> Iterable[str]:
+    left, top, right, bottom = box
+    return [text for across, down, text in middles if left <= across <= right and top <= down <= bottom]
 
 
 def _sentence_problems(

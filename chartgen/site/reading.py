@@ -2,11 +2,19 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass, field
+from html import unescape
 from html.parser import HTMLParser
 from typing import Final
 
 _VOID: Final = frozenset({"meta", "link", "br", "hr", "img", "input", "path", "rect", "wbr"})
+_ATTRIBUTE: Final = r'\s+[a-zA-Z_:][\w:.-]*(?:="[^"<>]*")?'
+_TOKEN: Final = re.compile(rf"([^<]*)<(/?)([a-zA-Z][a-zA-Z0-9-]*)((?:{_ATTRIBUTE})*)\s*(/?)>")
+_PAIR: Final = re.compile(r'([a-zA-Z_:][\w:.-]*)(?:="([^"]*)")?')
+_DOCTYPE: Final = re.compile(r"\s*<!doctype html>", re.IGNORECASE)
+_RAW: Final = re.compile(r"<(?:script|style|textarea|iframe|noscript|xmp|plaintext|!--|!\[)", re.IGNORECASE)
+_DIGIT: Final = re.compile(r"\d")
 _URLS: Final = ("href", "src", "srcset", "action", "data", "poster", "xlink:href")
 
 
@@ -64,10 +72,54 @@ class ReadPage:
 def read_page(data: bytes) -> ReadPage:
     """The page as a reader's program sees it. Raises UnicodeDecodeError where it is not UTF-8."""
     reader = _Reader()
-    reader.feed(data.decode("utf-8"))
-    reader.close()
+    text = data.decode("utf-8")
+    if not _read_plain(reader, text):
+        reader.feed(text)
+        reader.close()
     reader.page.text = " ".join("".join(reader.words).split(" "))
     return reader.page
+
+
+def _read_plain(reader: _Reader, text: str) -> bool:
+    """Read a page that is plainly marked up: tags with quoted attributes and text between them, nothing else.
+
+    That is how our pages are written, and it reads them in half the time. Where anything else stands in it, False is
+    returned before anything was read, and the page is left to the standard library's forgiving reader.
+    """
+    found = _plain_tokens(text)
+    if found is None:
+        return False
+    tokens, rest = found
+    for before, end, tag, attributes, closed in tokens:
+        if before:
+            reader.handle_data(unescape(before) if "&" in before else before)
+        if end:
+            reader.handle_endtag(tag)
+            continue
+        pairs: list[tuple[str, str | None]] = [
+            (name.lower(), unescape(value) if "&" in value else value) for name, value in _PAIR.findall(attributes)
+        ]
+        (reader.handle_startendtag if closed else reader.handle_starttag)(tag, pairs)
+    if rest:
+        reader.handle_data(rest)
+    return True
+
+
+def _plain_tokens(text: str) -> tuple[list[tuple[str, bool, str, str, bool]], str] | None:
+    """(text before, whether an end tag, name, attributes, whether closed at once) of every tag, and the blanks at the
+    end; None where anything in the page is not such a token."""
+    doctype = _DOCTYPE.match(text)
+    if _RAW.search(text) or text.count("<") != text.count(">"):
+        return None
+    at = doctype.end() if doctype else 0
+    found = []
+    for match in _TOKEN.finditer(text, at):
+        if match.start() != at:
+            return None
+        at = match.end()
+        before, end, tag, attributes, closed = match.groups()
+        found.append((before, bool(end), tag.lower(), attributes, bool(closed)))
+    return (found, text[at:]) if not text[at:].strip() else None
 
 
 class _Reader(HTMLParser):
@@ -132,8 +184,8 @@ class _Reader(HTMLParser):
 
     def handle_data(self, data: str) -> None:
         if self.chart is not None:
-            if not any("free" in values.get("class", "").split() for _, values in self.open):
-                self.chart.numbers += [data] if any(c.isdigit() for c in data) else []
+            if _DIGIT.search(data) and not any("free" in values.get("class", "").split() for _, values in self.open):
+                self.chart.numbers.append(data)
             return
         self.words.append(data)
         if self.table is None:

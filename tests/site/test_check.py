@@ -8,6 +8,7 @@ from functools import cache
 import pytest
 
 from chartgen.edition.model import Case, Vehicle
+from chartgen.site import reading
 from chartgen.site.check import check_numbers, check_pages, read_number, records_of
 from chartgen.site.reading import read_page
 from tests.conftest import driver, edition, surface
@@ -134,3 +135,15 @@ def test_missing_page_and_foreign_data() -> None:
 def test_numbers_are_read_as_the_locale_writes_them(text: str, tag: str, value: float | None) -> None:
     """Separators: CLDR, the same source from which they are written."""
     assert read_number(text, tag) == value
+
+
+def test_a_page_is_read_alike_by_both_readers(monkeypatch: pytest.MonkeyPatch) -> None:
+    """The quick reader gives what the standard library's gives, and leaves to it what is not plainly marked up."""
+    pages = [data for path, data in small().files.items() if path.endswith(".html")]
+    quick = [read_page(data) for data in pages]
+    assert all(reading._plain_tokens(data.decode()) is not None for data in pages)
+    odd = b"<!doctype html><p>5 < 6<!-- 7 --><b>8</b><p class=never>9"
+    assert reading._plain_tokens(odd.decode()) is None
+    monkeypatch.setattr(reading, "_read_plain", lambda *_: False)
+    assert quick == [read_page(data) for data in pages]
+    assert "8" in read_page(odd).text
