@@ -1,99 +1,126 @@
 """Cab cards: one roster row becomes a card in each of its languages, four cards to a sheet, backs behind their fronts.
 
 The front answers at a glance: how far loaded, how far empty, how many seconds behind the one in front. The back holds
-the parts, the other surfaces and what it all rests on. Numerals first, near-black on white, no
-colour that carries meaning.
+the parts and the other surfaces. Both say what they rest on. Numerals first, near-black on white, no colour that
+carries meaning.
 """
 
 from __future__ import annotations
 
 import re
 import unicodedata
-from collections.abc import Sequence
-from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
 
 from markupsafe import Markup
 
-from chartgen.edition.catalogue import GAP_RULES
 from chartgen.edition.model import Cards, Edition, RosterRow
+from chartgen.errors import EditionFaults, Fault
 from chartgen.figures.record import Figures
-from chartgen.figures.table import select
 from chartgen.language.load import Language
+from chartgen.sheets import card_foot
 from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account
-from chartgen.sheets.assumed import Assumed, assumed
-from chartgen.sheets.card_table import Block, front_block, parts_block, surfaces_block
-from chartgen.sheets.control import Field, caution, control_fields, notices
-from chartgen.sheets.fitting import packed
+from chartgen.sheets.card_foot import Foot
+from chartgen.sheets.card_table import (
+    Block,
+    Series,
+    Table,
+    as_high,
+    front_table,
+    parts_table,
+    set_table,
+    surfaces_table,
+)
+from chartgen.sheets.card_words import Card, back_foot, front_foot
 from chartgen.sheets.imposition import Grid, grid
 from chartgen.sheets.sheet import Sheet
 from chartgen.sheets.template import fill
 
-if TYPE_CHECKING:
-    import pandas as pd
-
 PATH = "sheets/cab-cards{}.pdf"
-_SEVERAL = 2
-SMALL_MM = 2.2
-"""Running text and document control: 6.2 pt, held in the hand."""
 JOINT = " · "
-_LEAST_NAME = 2
-_JOINT = Markup(JOINT)  # noqa: S704 - our own constant
+_SEVERAL = 2
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Side:
-    """One side of one card, ready for the template; `left` and `top` of the card on its page."""
+    """One side of one card, ready for the template; `left` and `top` of the card on its page. `heading`: vehicle id,
+    vehicle, surface; `heading_mm`: sizes of the first two together and of the third."""
 
     left: float
     top: float
     language: Language
     heading: tuple[str, str, str]
+    heading_mm: tuple[float, float]
     blocks: tuple[Block, ...]
-    lines: tuple[tuple[str, tuple[Markup, ...]], ...]
-    """Paragraphs as (class, lines)."""
-    fields: tuple[Field, ...]
+    foot: Foot
+    paragraphs: tuple[tuple[bool, tuple[Markup, ...]], ...]
+    """(strong, lines)."""
+    small_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Page:
+    """A front or a back of a sheet. `imprint`: a line for whoever prints it, (language, text, left), once a column."""
+
+    sides: tuple[Side, ...]
+    imprint: tuple[tuple[Language, str, float], ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Draft:
+    """One side of one card before the sizes are settled."""
+
+    card: Card
+    tables: tuple[Table, ...]
+    foot: Foot
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Task:
+    """One document: the cards of a depot."""
+
     edition: Edition
     cards: Cards
-    figures: Figures
-    account: Account
-    row: RosterRow
-    language: Language
     grid: Grid
-    index: int
-    """Place of the card on its sheet, from 0."""
-    sheet: int
-    """Number of the sheet, from 0; its front is page 2 * sheet + 1, its back the next."""
+    deck: tuple[Card, ...]
 
     @property
-    def unladen(self) -> str | None:
-        found = (v.id for v in self.edition.vehicles if v.unladen_of == self.row.vehicle)
-        return next(found, None)
+    def inner_mm(self) -> float:
+        return self.cards.size.width_mm - 2 * plan.MARGIN_MM
 
-    def rows(self, vehicle: str, surface: str) -> pd.DataFrame:
-        """The table's rows of one vehicle on one surface, at the speeds the card shows."""
-        found = select(self.figures, driver=self.cards.driver, vehicle=vehicle, surface=surface, grade=self.cards.grade)
-        return found.iloc[list(plan.chosen(len(found)))]
+    @property
+    def foot_mm(self) -> float:
+        """Where the small print ends, from the card's top."""
+        return self.cards.size.height_mm - plan.MARGIN_MM
 
 
 def cards(edition: Edition, figures: Figures, languages: Sequence[Language]) -> tuple[Sheet, ...]:
     """The edition's cab cards, one document a depot: fronts and backs in turn, to be turned over the long edge.
 
-    A roster row with two languages gives two cards. Nothing where the edition asks for no cards.
+    A roster row with two languages gives two cards. Nothing where the edition asks for no cards. Raises EditionFaults
+    where the figures would be too small to read in a cab.
     """
-    if edition.cards is None:
+    ordered = edition.cards
+    imposed = grid(ordered.size, ordered.sheet) if ordered else None
+    if ordered is None or imposed is None:
         return ()
+    by_tag = {language.tag: language for language in languages}
     depots: dict[str, list[RosterRow]] = {}
-    for row in edition.cards.roster:
+    for row in ordered.roster:
         depots.setdefault(row.depot, []).append(row)
     paths = _paths(tuple(depots))
-    made = (_document(edition, figures, languages, rows, paths[depot]) for depot, rows in depots.items())
-    return tuple(sheet for sheet in made if sheet is not None)
+    sheets = []
+    known: dict[tuple[str, str, int], Series] = {}
+    for depot, rows in depots.items():
+        deck = tuple(
+            Card(edition=edition, cards=ordered, figures=figures, row=row, language=by_tag[tag], known=known)
+            for row in rows
+            for tag in row.languages
+        )
+        task = _Task(edition=edition, cards=ordered, grid=imposed, deck=deck)
+        sheets.append(_document(task, figures, languages, paths[depot]))
+    return tuple(sheets)
 
 
 def _paths(depots: Sequence[str]) -> dict[str, str]:
@@ -110,38 +137,24 @@ def _paths(depots: Sequence[str]) -> dict[str, str]:
     return found
 
 
-def _document(
-    edition: Edition, figures: Figures, languages: Sequence[Language], roster: Sequence[RosterRow], path: str
-) -> Sheet | None:
-    ordered = edition.cards
-    imposed = grid(ordered.size, ordered.sheet) if ordered else None
-    if ordered is None or imposed is None:
-        return None
-    by_tag = {language.tag: language for language in languages}
-    wanted = [(row, by_tag[tag]) for row in roster for tag in row.languages]
-    account = Account(figures)
-    pages: list[list[Side]] = [[] for _ in range(2 * -(-len(wanted) // imposed.places))]
-    for number, (row, language) in enumerate(wanted):
-        sheet, index = divmod(number, imposed.places)
-        task = _Task(
-            edition=edition, cards=ordered, figures=figures, account=account, row=row, language=language,
-            grid=imposed, index=index, sheet=sheet,
-        )  # fmt: skip
-        pages[2 * sheet].append(_front(task))
-        pages[2 * sheet + 1].append(_back(task))
-    first = languages[0]
-    title = JOINT.join(filter(None, (first.t("sheet.cards"), roster[0].depot, first.text(edition.title))))
+def _document(task: _Task, figures: Figures, languages: Sequence[Language], path: str) -> Sheet:
+    account, first = Account(figures), languages[0]
+    fronts = _set(task, _fronts(task, account), 0, account)
+    rows, short = _back_room(task, figures)
+    backs = _set(task, _backs(_with_rows(task, rows), account, short=short), 1, account)
+    pages = [page for pair in zip(fronts, backs, strict=True) for page in pair]
+    title = JOINT.join(filter(None, (first.t("sheet.cards"), task.deck[0].row.depot, first.text(task.edition.title))))
     html = fill(
-        "cards.html", edition=edition, title=title, first=first, pages=pages, grid=imposed, small=SMALL_MM,
-        size=ordered.size, margin=plan.MARGIN_MM,
+        "cards.html", edition=task.edition, title=title, first=first, grid=task.grid, size=task.cards.size, plan=plan,
+        foot=card_foot, pages=[_page(task, languages, sides, number) for number, sides in enumerate(pages)],
     )  # fmt: skip
     return Sheet(
         path=path,
         title=title,
         lang=first.tag,
         html=html,
-        width_mm=imposed.sheet.width_mm,
-        height_mm=imposed.sheet.height_mm,
+        width_mm=task.grid.sheet.width_mm,
+        height_mm=task.grid.sheet.height_mm,
         pages=len(pages),
         inked=account.inked,
         facts=tuple(account.facts),
@@ -149,128 +162,133 @@ def _document(
     )
 
 
-def _front(task: _Task) -> Side:
-    language, account = task.language, task.account
-    surface = task.cards.surfaces[0]
-    left, top = task.grid.front(task.index)
-    place = (2 * task.sheet + 1, left, top)
-    laden = task.rows(task.row.vehicle, surface)
-    unladen = task.rows(task.unladen, surface) if task.unladen else None
-    block = front_block(language, task.edition, laden, unladen, account, place, task.cards.size.width_mm)
-    gap = language.t("card.gap_rule", seconds=language.seconds(float(laden["printed_gap_s"].iloc[0])))
-    account.enter(int(laden["row"].iloc[0]), "printed_gap_s", language.tag)
-    rule = account.fact(language.text(GAP_RULES[task.cards.gap].name))
-    lines = [
-        ("strong", _one((language.t("card.read_parked"), language.t("card.not_windscreen")))),
-        ("", _one((f"{language.t('card.gap')}: {gap}", f"{rule}."), joint=" ")),
-        ("", _one((language.t("card.line"), language.t("card.between")), joint=" ")),
-        ("", (Markup.escape(caution(language, account)),)),
-    ]
-    rows = [int(row) for rows in (laden, unladen) if rows is not None for row in rows["row"]]
-    warned = notices(language, task.figures, rows, account)
-    if unladen is not None and bool((unladen["stopping_distance_m"].to_numpy() > laden["stopping_distance_m"]).any()):
-        lines.insert(1, ("strong", (Markup.escape(language.t("card.unladen_more")),)))
-    lines[1:1] = [("strong", (one,)) for one in warned]
-    return _side(task, left, top, surface, (block,), lines, page=1)
+def _page(task: _Task, languages: Sequence[Language], sides: Sequence[Side], number: int) -> Page:
+    """The printer's line stands in one language over each column of cards."""
+    key = "card.back" if number % 2 else "card.front"
+    imprint = tuple(
+        (language, f"{language.t(key)}{JOINT}{language.t('sheet.two_sided')}", task.grid.front(column)[0])
+        for column, language in enumerate(languages[: task.grid.columns])
+    )
+    return Page(sides=tuple(sides), imprint=imprint)
 
 
-def _back(task: _Task) -> Side:
-    language, account = task.language, task.account
-    first, others = task.cards.surfaces[0], task.cards.surfaces[1:]
-    left, top = task.grid.back(task.index)
-    place = (2 * task.sheet + 2, left, top)
-    vehicles = [task.row.vehicle, *([task.unladen] if task.unladen else [])]
+def _fronts(task: _Task, account: Account) -> list[_Draft]:
+    return _level(
+        task,
+        lambda card: (
+            front_table(card.language, task.edition, card.shown(task.cards.surfaces[0]), task.cards.size.width_mm),
+        ),
+        lambda card: front_foot(card, account),
+    )
+
+
+def _backs(task: _Task, account: Account, *, short: bool) -> list[_Draft]:
+    first, *others = task.cards.surfaces
     width = task.cards.size.width_mm
-    series = [task.rows(vehicle, first) for vehicle in vehicles]
-    blocks = [parts_block(language, task.edition, series, account, place, width)]
-    shown: list[pd.DataFrame] = []
-    if others:
-        pairs = [(surface, vehicle) for surface in others[:2] for vehicle in vehicles]
-        shown = [task.rows(vehicle, surface) for surface, vehicle in pairs]
-        blocks.append(
-            surfaces_block(language, task.edition, shown, account, place, width, below_mm=blocks[0].bottom_mm)
-        )
-    lines: list[tuple[str, tuple[Markup, ...]]] = [("", _resting(task, series, others[:2]))]
-    rows = [int(row) for rows in (*series, *shown) for row in rows["row"]]
-    lines += [("strong", (one,)) for one in notices(language, task.figures, rows, account)]
-    lines.append(("", (Markup.escape(caution(language, account)),)))
-    return _side(task, left, top, first, tuple(blocks), lines, page=2)
+
+    def tables(card: Card) -> tuple[Table, ...]:
+        parts = parts_table(card.language, task.edition, card.shown(first), width)
+        if not others:
+            return (parts,)
+        series = [one for surface in others for one in card.shown(surface)]
+        return parts, surfaces_table(card.language, task.edition, series, width)
+
+    return _level(task, tables, lambda card: back_foot(card, account, short=short))
 
 
-def _resting(task: _Task, series: Sequence[pd.DataFrame], others: Sequence[str]) -> tuple[Markup, ...]:
-    """What the card rests on, in whole lines: the loaded vehicle on the first surface in full; then, behind the name of
-    what is different, what else holds for the empty one and on the other surfaces."""
-    language, room = task.language, task.cards.size.width_mm - 2 * plan.MARGIN_MM
-    full = assumed(language, task.edition, series[:1], task.account)
-    parts = [(one.text, one.markup) for one in full]
-    differ = [(language.t("word.unladen"), rows) for rows in series[1:]]
-    for surface in others:
-        name = task.account.fact(language.text(task.edition.surface(surface).name))
-        differ.append((name, task.rows(task.row.vehicle, surface)))
-    for name, rows in differ:
-        changed = _changed(task, rows, {text for text, _ in parts}, name)
-        if changed:
-            head, *rest = changed
-            parts.append((f"{name} – {head.text}", Markup("{} – {}").format(name, head.markup)))
-            parts += [(one.text, one.markup) for one in rest]
-    laid = packed([text for text, _ in parts], "text", SMALL_MM, room, JOINT)
-    return tuple(_JOINT.join(parts[i][1] for i in line) for line in laid)
+def _level(
+    task: _Task, tables: Callable[[Card], tuple[Table, ...]], foot: Callable[[Card], Foot]
+) -> list[_Draft]:
+    """Drafts of one side of all cards, the heads of their tables equally high."""
+    planned = zip(*(as_high(column) for column in zip(*(tables(card) for card in task.deck), strict=True)), strict=True)
+    return [_Draft(card=card, tables=own, foot=foot(card)) for card, own in zip(task.deck, planned, strict=True)]
 
 
-def _changed(task: _Task, rows: pd.DataFrame, known: set[str], name: str) -> list[Assumed]:
-    """The fragments of other rows that are not among the `known`; what only repeats their name or load is left out.
+def _tops(draft: _Draft, side: int, row_mm: float) -> list[float]:
+    """Top of each table, then the foot of the last, in mm from the card's top."""
+    tops = [plan.BACK_TOP_MM if side else plan.FRONT_TOP_MM]
+    for table in draft.tables:
+        tops.append(tops[-1] + table.head_mm + row_mm * len(table.wanted[0].rows) + plan.BACK_GAP_MM)
+    tops[-1] -= plan.BACK_GAP_MM
+    return tops
 
-    Each is entered as it is printed: entering the whole line would account for numbers that do not stand there.
+
+def _setting(task: _Task, drafts: Sequence[_Draft], side: int) -> plan.Setting | None:
+    """Small print and rows of one side of all cards; None where there is no room for both."""
+    above = _tops(drafts[0], side, 0.0)[-1]
+    rows = sum(len(table.wanted[0].rows) for table in drafts[0].tables)
+    feet: dict[str, list[Foot]] = {}
+    for draft in drafts:
+        feet.setdefault(draft.card.language.tag, []).append(draft.foot)
+    heights = {tag: card_foot.tallest(own, task.inner_mm) for tag, own in feet.items()}
+    free = task.foot_mm - plan.FOOT_GAP_MM - above
+    return plan.settled(heights, free, rows, plan.LEAST_DIGIT_MM if side else plan.GLANCE_DIGIT_MM)
+
+
+def _back_room(task: _Task, figures: Figures) -> tuple[int, bool]:
+    """(speeds at most, whether the caution is the short one) of the backs: as the fronts where there is room.
+
+    Measured with an account of its own: only what is printed may be entered.
     """
-    language = task.language
-    repeated = {language.t("assume.surface", name=name), language.t("assume.load", state=name)}
-    found = [
-        one
-        for one in assumed(language, task.edition, [rows], Account(task.figures))
-        if one.text not in known | repeated
-    ]
-    for one in found:
-        task.account.fact(one.text)
-    return found
+    tries = [(plan.MOST_ROWS, False), *((rows, True) for rows in range(plan.MOST_ROWS, plan.FEWEST_ROWS - 1, -1))]
+    for rows, short in tries:
+        tried = _with_rows(task, rows)
+        if _setting(tried, _backs(tried, Account(figures), short=short), 1):
+            return rows, short
+    return tries[-1]
 
 
-def _one(sentences: Sequence[str], joint: str = " ") -> tuple[Markup, ...]:
-    return (Markup.escape(joint.join(sentences)),)
+def _with_rows(task: _Task, most: int) -> _Task:
+    return replace(task, deck=tuple(replace(card, most_rows=most) for card in task.deck))
+
+
+def _set(task: _Task, drafts: Sequence[_Draft], side: int, account: Account) -> list[list[Side]]:
+    """The sides on their pages, four (or as many as a sheet holds) to each."""
+    setting = _setting(task, drafts, side)
+    if setting is None:
+        raise EditionFaults((_fault(task, "its small print leaves no room for them"),))
+    pages: list[list[Side]] = [[] for _ in range(-(-len(drafts) // task.grid.places))]
+    for number, draft in enumerate(drafts):
+        sheet, index = divmod(number, task.grid.places)
+        left, top = task.grid.back(index) if side else task.grid.front(index)
+        made = _side(task, draft, side, setting, account, (2 * sheet + side + 1, left, top))
+        smallest = min(block.digit_mm for block in made.blocks)
+        if smallest < plan.LEAST_DIGIT_MM - 1e-6:
+            raise EditionFaults((_fault(task, f"they would be {smallest:.1f} mm high"),))
+        pages[sheet].append(made)
+    return pages
 
 
 def _side(
-    task: _Task, left: float, top: float, surface: str, blocks: tuple[Block, ...],
-    lines: Sequence[tuple[str, tuple[Markup, ...]]], *, page: int,
-) -> Side:  # fmt: skip
-    language, edition = task.language, task.edition
-    name = _vehicle_name(task)
+    task: _Task, draft: _Draft, side: int, setting: plan.Setting, account: Account, place: tuple[int, float, float]
+) -> Side:
+    card, language = draft.card, draft.card.language
+    blocks = tuple(
+        set_table(
+            table, language, task.edition, account, place, task.cards.size.width_mm, top_mm=top, row_mm=setting.row_mm
+        )
+        for table, top in zip(draft.tables, _tops(draft, side, setting.row_mm)[:-1], strict=True)
+    )
     # The back names its surfaces over their figures.
-    shown = language.text(edition.surface(surface).name) if page == 1 else ""
-    task.account.fact(task.row.vehicle_id)
-    task.account.fact(name)
-    task.account.fact(shown)
-    fields = control_fields(edition, (language,), task.account, copy_no=task.row.copy_no, page=page, pages=2)
-    extra = [
-        Field(key, ((language.tag, language.direction, language.t(f"card.{key}")),), (Markup.escape(value),))
-        for key, value in (("depot", task.row.depot), ("holder", task.row.holder))
-        if value
-    ]
-    for value in (task.row.depot, task.row.holder):
-        task.account.fact(value)
-    heading = (task.row.vehicle_id, name, shown)
+    surface = "" if side else language.text(task.edition.surface(task.cards.surfaces[0]).name)
+    heading = (account.fact(card.row.vehicle_id), account.fact(card.name), account.fact(surface))
+    small = setting.small_mm[language.tag]
     return Side(
-        left=left, top=top, language=language, heading=heading, blocks=blocks, lines=tuple(lines),
-        fields=(*extra, *fields),
+        left=place[1], top=place[2], language=language, heading=heading, blocks=blocks, foot=draft.foot,
+        heading_mm=(
+            plan.shrunk(" ".join(heading[:2]), "text-bold", plan.NAME_MM, task.inner_mm),
+            plan.shrunk(surface, "text-bold", plan.SURFACE_MM, task.inner_mm),
+        ),
+        paragraphs=tuple(
+            (paragraph.strong, paragraph.lines(small, task.inner_mm)) for paragraph in draft.foot.paragraphs
+        ),
+        small_mm=small,
     )  # fmt: skip
 
 
-def _vehicle_name(task: _Task) -> str:
-    """The vehicle's name without its load where both loads stand on the card: what the two names begin with alike."""
-    names = [task.language.text(task.edition.vehicle(task.row.vehicle).name)]
-    if task.unladen:
-        names.append(task.language.text(task.edition.vehicle(task.unladen).name))
-    alike = names[0]
-    while not all(name.startswith(alike) for name in names):
-        alike = alike[:-1]
-    alike = alike.rstrip(" ,;:–-(،")
-    return alike if len(alike) > _LEAST_NAME else names[0]
+def _fault(task: _Task, problem: str) -> Fault:
+    given = f"{len(task.cards.surfaces)} surfaces, {len(task.edition.speeds)} speeds"
+    return Fault(
+        task.edition.file, "cards.surfaces", f"the digits on a card have no room beside all this: {problem}",
+        f"fewer surfaces, so that the digits are {plan.LEAST_DIGIT_MM:g} mm high", given,
+    )  # fmt: skip
