@@ -11,16 +11,18 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
-import pandas as pd
 
 from chartgen.charts.drawing import FaceName
 from chartgen.charts.fonts import digit_ratio, extent
 from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account, decimals_of
 from chartgen.sheets.card_foot import line_count
+from chartgen.sheets.card_rows import Series, longest
 from chartgen.sheets.fitting import text_width
 
 if TYPE_CHECKING:
+    import pandas as pd
+
     from chartgen.edition.model import Edition
     from chartgen.language.load import Language
     from chartgen.sheets.sheet import Box
@@ -35,40 +37,11 @@ _BEYOND_MM = 4.0
 _BAR_MM = 1.5
 """Foot of a row on the front that belongs to its bar."""
 _WORDS_MM = (4.4, 3.8, 3.2, 2.8, 2.4, 2.12)
-_EQUAL = 1e-9
 _FOUR_DIGITS_MM = 12.0
 _TAIL, _TAIL_MM = 0.05, 1.2
 """A sign that hangs deeper than this part of the font size has a tail; the height kept for it on the front."""
 _BACK_SPEED_MM = 5.6
 """Font size that digits on the back seldom pass."""
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Series:
-    """Rows of the table in speed order: one vehicle on one surface."""
-
-    vehicle: str
-    surface: str
-    rows: pd.DataFrame
-
-    @property
-    def reach(self) -> np.ndarray:
-        """Exact stopping distances in m; one that never stops is longer than all."""
-        return np.where(self.rows["stops"].to_numpy(dtype=bool), self.rows["stopping_distance_m"].to_numpy(), math.inf)
-
-    @property
-    def printed(self) -> np.ndarray:
-        """Printed stopping distances, likewise."""
-        return self.rows["printed_stopping"].fillna(math.inf).to_numpy()
-
-
-def never_less(unladen: Series, laden: Series) -> Series:
-    """The unladen vehicle's rows, but the laden one's wherever the unladen would be given less: an empty vehicle may
-    need more room than a loaded one, and a card must never allow it less."""
-    # A part in 10⁹ either way is the same distance worked out twice.
-    less = (unladen.reach < laden.reach * (1 - _EQUAL)) | (unladen.printed < laden.printed)
-    kept = pd.concat([unladen.rows[~less], laden.rows[less]]) if less.any() else unladen.rows
-    return replace(unladen, rows=kept.sort_values("speed_mps", kind="stable"))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -242,13 +215,6 @@ def set_table(
             for one, c in zip(table.wanted, table.laid, strict=True)
         ),
     )  # fmt: skip
-
-
-def longest(series: Series) -> int | None:
-    """Index of the longest distance that is one; None where it never stops. A bar that long fills the width."""
-    finite = np.where(np.isfinite(series.printed), series.printed, -1.0)
-    best = int(finite.argmax())
-    return best if finite[best] > 0 else None
 
 
 def _table(

@@ -15,7 +15,7 @@ from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account
 from chartgen.sheets.assumed import Assumed, assumed
 from chartgen.sheets.card_foot import Foot, Paragraph, sentences
-from chartgen.sheets.card_table import Series, longest, never_less
+from chartgen.sheets.card_rows import Series, longest, never_less
 from chartgen.sheets.control import Field, caution, control_fields, notices
 
 if TYPE_CHECKING:

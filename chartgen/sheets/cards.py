@@ -22,9 +22,9 @@ from chartgen.sheets import card_foot
 from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account
 from chartgen.sheets.card_foot import Foot
+from chartgen.sheets.card_rows import Series
 from chartgen.sheets.card_table import (
     Block,
-    Series,
     Table,
     as_high,
     front_table,
@@ -138,10 +138,10 @@ def _paths(depots: Sequence[str]) -> dict[str, str]:
 
 
 def _document(task: _Task, figures: Figures, languages: Sequence[Language], path: str) -> Sheet:
-    account, first = Account(figures), languages[0]
-    fronts = _set(task, _fronts(task, account), 0, account)
-    rows, short = _back_room(task, figures)
-    backs = _set(task, _backs(_with_rows(task, rows), account, short=short), 1, account)
+    front, first = Account(figures), languages[0]
+    fronts = _set(task, _fronts(task, front), 0, front)
+    drafts, back = _fitting_backs(task, figures)
+    backs = _set(task, drafts, 1, back)
     pages = [page for pair in zip(fronts, backs, strict=True) for page in pair]
     title = JOINT.join(filter(None, (first.t("sheet.cards"), task.deck[0].row.depot, first.text(task.edition.title))))
     html = fill(
@@ -156,9 +156,9 @@ def _document(task: _Task, figures: Figures, languages: Sequence[Language], path
         width_mm=task.grid.sheet.width_mm,
         height_mm=task.grid.sheet.height_mm,
         pages=len(pages),
-        inked=account.inked,
-        facts=tuple(account.facts),
-        sentences=tuple(account.sentences),
+        inked=(*front.inked, *back.inked),
+        facts=(*front.facts, *back.facts),
+        sentences=tuple(front.sentences | back.sentences),
     )
 
 
@@ -225,21 +225,22 @@ def _setting(task: _Task, drafts: Sequence[_Draft], side: int) -> plan.Setting |
     return plan.settled(heights, free, rows, plan.LEAST_DIGIT_MM if side else plan.GLANCE_DIGIT_MM)
 
 
-def _back_room(task: _Task, figures: Figures) -> tuple[int, bool]:
-    """(speeds at most, whether the caution is the short one) of the backs: as the fronts where there is room.
-
-    Measured with an account of its own: only what is printed may be entered.
-    """
-    tries = [(plan.MOST_ROWS, False), *((rows, True) for rows in range(plan.MOST_ROWS, plan.FEWEST_ROWS - 1, -1))]
-    for rows, short in tries:
-        tried = _with_rows(task, rows)
-        if _setting(tried, _backs(tried, Account(figures), short=short), 1):
-            return rows, short
-    return tries[-1]
+def _fitting_backs(task: _Task, figures: Figures) -> tuple[list[_Draft], Account]:
+    """The backs with what they enter: as many speeds as the fronts and the whole caution where there is room, else the
+    short caution, else fewer speeds."""
+    drafts, account = _backs_of(task, figures, plan.MOST_ROWS, short=False)
+    for rows in range(plan.MOST_ROWS, plan.FEWEST_ROWS - 1, -1):
+        if _setting(task, drafts, 1):
+            break
+        drafts, account = _backs_of(task, figures, rows, short=True)
+    return drafts, account
 
 
-def _with_rows(task: _Task, most: int) -> _Task:
-    return replace(task, deck=tuple(replace(card, most_rows=most) for card in task.deck))
+def _backs_of(task: _Task, figures: Figures, most_rows: int, *, short: bool) -> tuple[list[_Draft], Account]:
+    # An account a try: only what is printed may be entered.
+    account = Account(figures)
+    tried = replace(task, deck=tuple(replace(card, most_rows=most_rows) for card in task.deck))
+    return _backs(tried, account, short=short), account
 
 
 def _set(task: _Task, drafts: Sequence[_Draft], side: int, account: Account) -> list[list[Side]]:
