@@ -22,13 +22,14 @@ import weasyprint
 
 from chartgen.charts.inks import palette
 from chartgen.edition.load import load_edition
-from chartgen.edition.model import Edition
+from chartgen.edition.model import Cards, Edition, RosterRow
+from chartgen.figures.assume import assumptions
 from chartgen.figures.export import to_csv, to_json
 from chartgen.figures.record import Figures
 from chartgen.figures.table import figures, select
 from chartgen.language.headline import headline_plain
 from chartgen.language.load import Language, languages
-from chartgen.language.sentences import caution_sentences
+from chartgen.language.sentences import assumption_line_plain, caution_sentences
 
 mpl.use("svg")
 from matplotlib import font_manager
@@ -48,13 +49,28 @@ SHEET = jinja2.Template("""<!doctype html>
 <html lang="{{ languages[0].tag }}"><meta charset="utf-8"><title>{{ title }}</title>
 <style>{{ faces }}@page{size:{{ width }}mm {{ height }}mm;margin:10mm}
 body{font:{{ size }}pt "{{ latin }}","{{ arabic }}"}h1{font-size:3em;margin:0}svg{width:100%;height:auto}
-td{padding:1mm 3mm}.two{display:flex}.two>div{width:50%}.card{width:105mm;height:140mm;float:left}</style>
+td{padding:1mm 3mm}.two{display:flex}.two>div{width:50%}dl div{display:inline-block;margin-right:2em}</style>
 {% for headline in headlines %}<h1>{{ headline }}</h1>{% endfor %}{{ chart }}
-{% for rows in tables %}<div class="{{ kind }}">
+{% for rows in tables %}
 <table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>{% endfor %}</tr>{% endfor %}</table>
-</div>{% endfor %}
-<div class="two">{% for language in languages %}<div dir="{{ language.direction }}">
-{% for sentence in caution(language) %}<p>{{ sentence }}</p>{% endfor %}</div>{% endfor %}</div></html>""")
+{% endfor %}<div class="two">{% for small in smalls %}<div dir="{{ small.language.direction }}">
+{% for sentence in small.sentences %}<p>{{ sentence }}</p>{% endfor %}</div>{% endfor %}</div>
+<dl>{% for name, value in smalls[0].control %}<div><dt>{{ name }}</dt><dd>{{ value }}</dd></div>{% endfor %}</dl>
+</html>""")
+
+CARDS = jinja2.Template("""<!doctype html>
+<html lang="{{ languages[0].tag }}"><meta charset="utf-8"><title>{{ title }}</title>
+<style>{{ faces }}@page{size:{{ width }}mm {{ height }}mm;margin:0}
+body{font:4.2pt "{{ latin }}","{{ arabic }}";margin:0}
+.card{width:95mm;height:138mm;padding:5mm;float:left}.front td{font-size:10pt}td{padding:0 2mm}p,dl,dd{margin:0}
+dl div{display:inline-block;margin-right:2em}dt,dd{display:inline}</style>
+{% for face in sides %}<div class="card {{ face.side }}" lang="{{ face.language.tag }}"><h2>{{ face.title }}</h2>
+{% for rows in face.tables %}
+<table>{% for row in rows %}<tr>{% for cell in row %}<td>{{ cell }}</td>{% endfor %}</tr>{% endfor %}</table>
+{% endfor %}{% for sentence in face.sentences %}<p>{{ sentence }}</p>{% endfor %}
+<dl>{% for name, value in face.control %}<div><dt>{{ name }}</dt> <dd>{{ value }}</dd></div>{% endfor %}</dl>
+</div>{% endfor %}</html>""")
+CONTROL = ("title", "reference", "issue", "issued", "review_by", "owner", "approver", "copy", "status", "licence")
 
 
 @dataclass(frozen=True)
@@ -145,8 +161,22 @@ def pages(job: Job, folder: Path) -> None:
     (folder / "figures.json").write_text(to_json(job.figures), encoding="utf-8")
 
 
-def document(path: Path, faces: str, **values: object) -> None:
-    html = SHEET.render(faces=faces, latin=LATIN, arabic=ARABIC, caution=caution_sentences, **values)
+def small(job: Job, language: Language, rows: list[pd.DataFrame], copy: str = "") -> dict[str, object]:
+    """Assumptions, caution and document control: what stands on every sheet."""
+    edition = job.edition
+    assumed = [assumption_line_plain(language, edition, assumptions(edition, part)) for part in rows]
+    title, status = language.text(edition.title), language.t(f"control.status.{edition.status}")
+    values = (title, edition.reference, edition.issue, str(edition.issued), str(edition.review_by), edition.owner)
+    control = zip(CONTROL, (*values, edition.approver, copy, status, edition.licence), strict=True)
+    return {
+        "language": language,
+        "sentences": [*assumed, *caution_sentences(language)],
+        "control": [(language.t(f"control.{name}"), value) for name, value in control],
+    }
+
+
+def document(template: jinja2.Template, path: Path, faces: str, **values: object) -> None:
+    html = template.render(faces=faces, latin=LATIN, arabic=ARABIC, **values)
     weasyprint.HTML(string=html).write_pdf(path, pdf_variant="pdf/ua-1")
 
 
@@ -164,30 +194,54 @@ def posters(job: Job, folder: Path, faces: str) -> None:
             drawn = chart(job, series, speakers, paper.width_mm - 20, (paper.height_mm - 20) * 0.55)
             drawn = drawn[drawn.index("<svg") :].replace("<svg", f"<svg role='img' aria-label='{poster.id}'", 1)
             document(
-                folder / f"{poster.id}-{speakers[0].tag}.pdf", faces, title=poster.id, languages=speakers, chart=drawn,
-                headlines=[headline_plain(language, edition, job.figures, poster) for language in speakers], kind="",
-                tables=[cells(job, speakers[0], rows) for rows in series], size=paper.width_mm / 25,
+                SHEET, folder / f"{poster.id}-{speakers[0].tag}.pdf", faces, title=poster.id, languages=speakers,
+                headlines=[headline_plain(language, edition, job.figures, poster) for language in speakers],
+                tables=[cells(job, speakers[0], rows) for rows in series], chart=drawn, size=paper.width_mm / 30,
+                smalls=[small(job, language, series) for language in speakers],
                 width=paper.width_mm, height=paper.height_mm,
             )  # fmt: skip
 
 
 def cards(job: Job, folder: Path, faces: str) -> None:
-    plan = job.edition.cards
+    """A document a depot, four cards a page, a front and a back a card, a card a language."""
+    plan, tags = job.edition.cards, {language.tag: language for language in job.languages}
     if plan is None:
         return
-    tags = {language.tag: language for language in job.languages}
-    tables = []
-    for row in plan.roster:
-        for tag in row.languages:
-            rows: list[list[str]] = [[row.vehicle_id, row.depot, row.holder, row.copy_no]]
-            for surface in plan.surfaces:
-                shown = select(job.figures, driver=plan.driver, vehicle=row.vehicle, surface=surface, grade=plan.grade)
-                rows += cells(job, tags[tag], shown)
-            tables.append(rows)
-    document(
-        folder / "cards.pdf", faces, title="cards", languages=job.languages, chart="", headlines=[], tables=tables,
-        kind="card", size=7, width=plan.sheet.width_mm, height=plan.sheet.height_mm,
-    )  # fmt: skip
+    for depot in dict.fromkeys(row.depot for row in plan.roster):
+        sides = []
+        for row in (row for row in plan.roster if row.depot == depot):
+            empty = next((v.id for v in job.edition.vehicles if v.unladen_of == row.vehicle), None)
+            for tag in row.languages:
+                sides += card(job, plan, tags[tag], row, [row.vehicle, *([empty] if empty else [])])
+        fours = [sides[i : i + 8] for i in range(0, len(sides), 8)]
+        ordered = [side for four in fours for side in (*four[::2], *four[1::2])]
+        document(
+            CARDS, folder / f"cards-{depot}.pdf", faces, title=depot, languages=job.languages, sides=ordered,
+            width=plan.sheet.width_mm, height=plan.sheet.height_mm,
+        )  # fmt: skip
+
+
+def card(job: Job, plan: Cards, language: Language, row: RosterRow, vehicles: list[str]) -> list[dict[str, object]]:
+    """Front and back: totals and the gap in front; parts and the other surfaces behind."""
+
+    def rows(vehicle: str, surface: str) -> pd.DataFrame:
+        return select(job.figures, driver=plan.driver, vehicle=vehicle, surface=surface, grade=plan.grade)
+
+    def totals(surface: str, *more: pd.Series) -> list[list[str]]:
+        columns = [rows(vehicle, surface)["printed_stopping"] for vehicle in vehicles] + list(more)
+        speeds = rows(vehicles[0], surface)["printed_speed"]
+        return [[language.number(x) for x in line] for line in zip(speeds, *columns, strict=True)]
+
+    first, *others = plan.surfaces
+    laden = [rows(row.vehicle, surface) for surface in plan.surfaces]
+    title = f"{row.vehicle_id} {language.text(job.edition.vehicle(row.vehicle).name)} {row.depot} {row.holder}"
+    parts = [cells(job, language, rows(vehicle, first)) for vehicle in vehicles]
+    front = small(job, language, [rows(vehicle, first) for vehicle in vehicles], row.copy_no)
+    back = small(job, language, laden, row.copy_no)
+    return [
+        {"side": "front", "title": title, "tables": [totals(first, laden[0]["printed_gap_s"])], **front},
+        {"side": "back", "title": title, "tables": [*parts, *(totals(surface) for surface in others)], **back},
+    ]
 
 
 def main(out: Path, names: list[str]) -> None:

@@ -205,7 +205,7 @@ def _friction(language: Language, friction: Friction) -> Markup:
         return language.html("method.range", value=value, low=low, high=high)
     grip = language.number(friction.f60 or 0.0, 2)
     sp = language.speed(friction.sp_kmh or 0.0, "km/h")
-    text = language.html("method.friction_falls", formula=FALLING, grip=grip, sp=sp)
+    text = language.html("method.friction_falls", formula=FALLING, grip=f"F60 = {grip}", sp=f"Sp = {sp}")
     if friction.max_mu is not None:
         cap = language.html("method.friction_cap", max=language.number(friction.max_mu, 2))
         text = Markup("{} ({})").format(text, cap)
