@@ -61,8 +61,8 @@ td{padding:1mm 3mm}.two{display:flex}.two>div{width:50%}dl div{display:inline-bl
 CARDS = jinja2.Template("""<!doctype html>
 <html lang="{{ languages[0].tag }}"><meta charset="utf-8"><title>{{ title }}</title>
 <style>{{ faces }}@page{size:{{ width }}mm {{ height }}mm;margin:0}
-body{font:4.2pt "{{ latin }}","{{ arabic }}";margin:0}
-.card{width:95mm;height:138mm;padding:5mm;float:left}.front td{font-size:10pt}td{padding:0 2mm}p,dl,dd{margin:0}
+body{font:6pt "{{ latin }}","{{ arabic }}";margin:0}
+.card{width:94.9mm;height:138mm;padding:5mm;float:left}.front td{font-size:12pt}td{padding:0 2mm}p,dl,dd{margin:0}
 dl div{display:inline-block;margin-right:2em}dt,dd{display:inline}</style>
 {% for face in sides %}<div class="card {{ face.side }}" lang="{{ face.language.tag }}"><h2>{{ face.title }}</h2>
 {% for rows in face.tables %}
