@@ -49,6 +49,7 @@ def _ring(ring: str) -> Iterator[str]:
     yield "z"
 
 
+@lru_cache(maxsize=65536)
 def _written(hundredths: int) -> str:
     """Without trailing or leading zeros: 74.5, .75, -.5, 8."""
     text = f"{abs(hundredths) / _SCALE:.2f}".rstrip("0").rstrip(".")
