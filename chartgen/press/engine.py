@@ -60,6 +60,7 @@ def load() -> ModuleType:
             problem = f"The text layout library Pango cannot be loaded ({error})."
             raise MachineFault(problem, f"Run: {PANGO_LINE}") from error
     gc.freeze()
+    gc.set_threshold(_COLLECT_EVERY, *gc.get_threshold()[1:])
     return module
 
 
@@ -110,15 +111,13 @@ def session() -> Iterator[list[str]]:
     load()
     logger = logging.getLogger("weasyprint")
     collector = _Collector()
-    propagate, thresholds = logger.propagate, gc.get_threshold()
+    propagate = logger.propagate
     logger.addHandler(collector)
     logger.propagate = False
-    gc.set_threshold(_COLLECT_EVERY, *thresholds[1:])
     try:
         with _own_fontconfig():
             yield collector.messages
     finally:
-        gc.set_threshold(*thresholds)
         logger.propagate = propagate
         logger.removeHandler(collector)
 
