@@ -208,7 +208,7 @@ def test_digits_and_small_print_keep_their_sizes(made: Made) -> None:
     """Totals at least 8 mm, other figures at least 3.7 mm (in-cab size), small print at least 6 pt."""
     html = made[3].html
     sizes: dict[str, set[float]] = {}
-    for kind, size in re.findall(r'class="in (front|back)" style="top:[\d.]+mm;font-size:([\d.]+)mm"', html):
+    for kind, size in re.findall(r'class="at in (front|back)" style="top:[\d.]+mm;font-size:([\d.]+)mm"', html):
         sizes.setdefault(kind, set()).add(float(size) * digit_ratio("text-bold"))
     assert min(sizes["front"]) >= 8.0
     assert min(sizes["back"]) >= 3.7
