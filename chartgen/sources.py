@@ -60,6 +60,22 @@ BIBLIOGRAPHY: dict[str, Work] = {
     "astm-e1960": Work("ASTM E1960 and PIARC, International Friction Index: F(S) = F60 exp((60 - S)/Sp)", STATUTE, False),
     "cars-1930": Work("M. Ezekiel, Methods of Correlation Analysis, Wiley 1930; open data set 'cars' of speeds and stopping distances", MEASURED, True),
     "astm-e1960-sp": Work("ASTM E1960, speed constant from texture: Sp = 14.2 + 89.7 MPD", STATUTE, False),
+    "green-2000": Work("M. Green, How long does it take to stop?, Transportation Human Factors 2(3), 2000", MEASURED, True),
+    "fambro-1998": Work("D. B. Fambro and others, Driver perception-brake response in stopping sight distance situations, Transportation Research Record 1628, 1998", MEASURED, True),
+    "lr-131": Work("Road Research Laboratory (United Kingdom), report LR 131, 1968, suggested minimum braking force coefficients", MEASURED, True),
+    "norma-3.1-ic-1999": Work("Norma 3.1-IC Trazado (Spain), Orden of 27 December 1999, stopping distance", DESIGN, False),
+    "pa-175": Work("67 Pennsylvania Code chapter 175, table I, brake performance from 20 mile/h (values as in 49 CFR 393.52(d); test figures)", STATUTE, True),
+    "va-46.2-1067": Work("Code of Virginia § 46.2-1067, stopping distances from 20 mile/h (test figures)", STATUTE, True),
+    "cpsc-1512": Work("16 CFR 1512, requirements for bicycles (test figures)", STATUTE, False),
+    "directive-96-53": Work("Council Directive 96/53/EC, annex I, 1.1, greatest lengths of vehicles", STATUTE, True),
+    "bkatv": Work("Bußgeldkatalog-Verordnung (Germany), no. 12 of the schedule and table 2: distances in tenths of half the speedometer's figure in metres", STATUTE, True),
+    "poland-19-3a": Work("Prawo o ruchu drogowym (Poland), article 19(3a), distance on motorways and expressways", STATUTE, False),
+    "vic-three-seconds": Work("State of Victoria (Australia), pages for learner drivers, following distance", RULE, True),
+    "va-46.2-1032": Work("Code of Virginia § 46.2-1032, multiple-beam headlights", STATUTE, True),
+    "nj-39-3-57": Work("New Jersey Statutes 39:3-57, single-beam headlamps", STATUTE, True),
+    "france-r313-2": Work("Code de la route (France), article R313-2, main beam", STATUTE, False),
+    "france-r313-3": Work("Code de la route (France), article R313-3, dipped beam", STATUTE, True),
+    "cdl-manual-2.11": Work("AAMVA, model Commercial Driver License Manual (2005 revision and later), section 2.11, driving at night", STATUTE, False),
 }
 
 

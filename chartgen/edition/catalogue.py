@@ -1,230 +1,276 @@
-"""What an edition may pick by key: reaction times, surfaces and following-gap rules, each with its source.
+"""What an edition may pick by key: reaction times, surfaces, vehicles, following-gap rules and headlight reaches.
 
-A value nobody has opened the source of says so (`from_memory`); it is printed with that remark. None is labelled
-correct: the publisher chooses.
+The presets are data, `presets/<shelf>.toml`; a shelf is read when somebody first looks into it and then kept. A value
+nobody has opened the source of says so (`from_memory`); it is printed with that remark. None is labelled correct: the
+publisher chooses. Where a source gives a range of friction, the value is its lower end: the longer distance.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+import tomllib
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
-from math import exp
+from functools import cached_property
+from math import exp, log, sqrt
+from pathlib import Path
 from types import MappingProxyType
+from typing import Any, Generic, TypeVar, cast
 
-from chartgen.edition.model import Friction, Reaction, Source, Text
+from chartgen.edition.model import Friction, Kind, Reaction, Source, Text, Trailer
+from chartgen.sources import BIBLIOGRAPHY, CHOSEN
 
-# exp(mu + z85 sigma), z85 = 1.036433...: computed here so that the preset needs no import.
-_SURPRISE_MU, _SURPRISE_SIGMA = 0.17, 0.44
-_SURPRISE_P85 = exp(_SURPRISE_MU + 1.0364333894937898 * _SURPRISE_SIGMA)
+FOLDER = Path(__file__).with_name("presets")
+UNITS = {"reaction": "s", "surface": "", "vehicle": "m/s²", "gap": "s", "headlight": "m"}
+"""The shelves, with the unit of each one's value and range."""
 
-FOOT_M = 0.3048
-MPH_MPS = 0.44704
+Entry = Mapping[str, Any]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class DriverPreset:
+class Preset:
+    """What every preset has. `value` with `low`..`high`: the quantity it is for, and the range that the source gives; a
+    source that states one figure has it at both ends, as no spread is made up."""
+
     key: str
     name: Text
-    reaction: Reaction
     source: Source
+    work: str | None
+    """Key in `sources.BIBLIOGRAPHY`; None: chosen by us."""
+    place: str
+    """Table, section or article in the work; empty: chosen by us."""
+    year: int | None
+    value: float | None
+    low: float | None
+    high: float | None
+    doubtful: tuple[str, ...]
+    """Languages in which the name is to be looked at first by somebody who grew up with it."""
+
+    @property
+    def unit(self) -> str:
+        """Of `value`, `low` and `high`."""
+        return UNITS[self.key.partition("/")[0]]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class SurfacePreset:
-    key: str
-    name: Text
+class DriverPreset(Preset):
+    """A reaction time; its range in s."""
+
+    reaction: Reaction
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SurfacePreset(Preset):
+    """A surface; its range is that of the friction, at 60 km/h where it falls with speed."""
+
     friction: Friction
     state: str
-    source: Source
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class GapRule:
+class VehiclePreset(Preset):
+    """A vehicle; its range is that of the deceleration in m/s². Fields as in `model.Vehicle`."""
+
+    kind: Kind
+    load: str | None
+    max_deceleration_mps2: float | None
+    brake_lag_s: float
+    build_up_s: float
+    brake_efficiency: float
+    length_m: float | None
+    mass_kg: float | None
+    trailer: Trailer | None
+    test_figure: bool
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class GapRule(Preset):
     """Following gap in seconds: `fixed_s`, or `per_length_s_per_m` times the vehicle's length (one of them is None);
     `extra_s` more above `extra_above_mps`; the sum times `wet_factor` or `ice_factor` (snow counts as ice: longer)."""
 
-    key: str
-    name: Text
     fixed_s: float | None
     per_length_s_per_m: float | None
     extra_s: float
     extra_above_mps: float
     wet_factor: float
     ice_factor: float
-    source: Source
+
+    @property
+    def unit(self) -> str:
+        return "s" if self.fixed_s is not None else "s/m"
 
 
-def _driver(key: str, reaction: Reaction, source: Source, **names: str) -> DriverPreset:
-    return DriverPreset(key=f"reaction/{key}", name=_names(**names), reaction=reaction, source=source)
+@dataclass(frozen=True, slots=True, kw_only=True)
+class HeadlightReach(Preset):
+    """How far ahead the headlights show what is on the road; its range in m."""
+
+    reach_m: float
 
 
-def _names(**names: str) -> Text:
-    return MappingProxyType({tag.replace("_", "-"): text for tag, text in names.items()})
+_P = TypeVar("_P", bound=Preset)
 
 
-DRIVERS: Mapping[str, DriverPreset] = MappingProxyType(
-    {
-        preset.key: preset
-        for preset in (
-            _driver(
-                "alert",
-                Reaction(time_s=0.67),
-                Source(
-                    text="The Highway Code (Great Britain), rule 126: its thinking distances in metres are 0.67 s of "
-                    "travel (those in feet 0.68 s); held by its critics to fit only a highly alert driver",
-                    kind="rule of thumb",
-                ),
-                en_GB="Highly alert", en_US="Highly alert", cy="Effro iawn", fr="Très attentif", ar="شديد الانتباه",
-                es_US="Muy alerta",
-            ),
-            _driver(
-                "teaching",
-                Reaction(time_s=1.0),
-                Source(text="Driving-school teaching in France and Germany: one second", kind="rule of thumb"),
-                en_GB="One second, as taught", en_US="One second, as taught", cy="Un eiliad, fel y dysgir",
-                fr="Une seconde, comme on l’enseigne", ar="ثانية واحدة كما تُدرَّس", es_US="Un segundo, como se enseña",
-            ),
-            _driver(
-                "brake-lights",
-                Reaction(time_s=1.25),
-                Source(
-                    text="Green (2000), Transportation Human Factors 2(3): mean for an unexpected but common signal, "
-                    "such as brake lights",
-                    kind="measured",
-                ),
-                en_GB="Unexpected but common", en_US="Unexpected but common", cy="Annisgwyl ond cyffredin",
-                fr="Imprévu mais courant", ar="غير متوقع لكنه شائع", es_US="Inesperado pero común",
-            ),
-            _driver(
-                "mean-surprise",
-                Reaction(time_s=1.5),
-                Source(
-                    text="Green (2000), Transportation Human Factors 2(3): mean for a surprise; about half of drivers "
-                    "need longer",
-                    kind="measured",
-                ),
-                en_GB="Surprised, mean", en_US="Surprised, mean", cy="Wedi’i synnu, cymedr", fr="Surpris, moyenne",
-                ar="متفاجئ، المتوسط", es_US="Sorprendido, promedio",
-            ),
-            _driver(
-                "surprise",
-                Reaction(time_s=_SURPRISE_P85, percentile="p85", mu=_SURPRISE_MU, sigma=_SURPRISE_SIGMA),
-                Source(
-                    text="Koppa, Human Factors, in Traffic Flow Theory (FHWA), chapter 3: lognormal brake reaction "
-                    "time to a surprise, location 0.17, scale 0.44 of ln(t/s)",
-                    kind="measured",
-                    from_memory=True,
-                ),
-                en_GB="Surprised", en_US="Surprised", cy="Wedi’i synnu", fr="Surpris", ar="متفاجئ",
-                es_US="Sorprendido",
-            ),
-            _driver(
-                "road-design",
-                Reaction(time_s=2.0),
-                Source(
-                    text="CD 109, Highway link design (National Highways): stopping sight distance allows 2 s",
-                    kind="design value",
-                ),
-                en_GB="Road design, two seconds", en_US="Road design, two seconds", cy="Dylunio ffyrdd, dwy eiliad",
-                fr="Conception routière, deux secondes", ar="تصميم الطرق، ثانيتان",
-                es_US="Diseño vial, dos segundos",
-            ),
-            _driver(
-                "sight-design",
-                Reaction(time_s=2.5),
-                Source(
-                    text="AASHTO, A Policy on Geometric Design of Highways and Streets: 2.5 s, about the 90th "
-                    "percentile of drivers",
-                    kind="design value",
-                ),
-                en_GB="Sight design, 2.5 seconds", en_US="Sight design, 2.5 seconds",
-                cy="Dylunio gwelededd, 2.5 eiliad", fr="Distance de visibilité, 2,5 secondes",
-                ar="تصميم الرؤية، 2.5 ثانية", es_US="Diseño por visibilidad, 2.5 segundos",
-            ),
-        )
+class Shelf(Mapping[str, _P], Generic[_P]):
+    """The presets of one kind by key, e.g. ``reaction/surprise``. Its file is read at the first look into it."""
+
+    def __init__(self, name: str, make: Callable[[Entry, dict[str, Any]], _P]) -> None:
+        self.name = name
+        self._make = make
+
+    @cached_property
+    def _presets(self) -> dict[str, _P]:
+        entries = tomllib.loads((FOLDER / f"{self.name}.toml").read_text(encoding="utf-8"))
+        return {key: self._make(entry, _common(key, entry)) for key, entry in self._keyed(entries)}
+
+    def _keyed(self, entries: Mapping[str, Entry]) -> Iterator[tuple[str, Entry]]:
+        return ((f"{self.name}/{id}", entry) for id, entry in entries.items())
+
+    def __getitem__(self, key: str) -> _P:
+        return self._presets[key]
+
+    def __iter__(self) -> Iterator[str]:
+        return iter(self._presets)
+
+    def __len__(self) -> int:
+        return len(self._presets)
+
+
+def _common(key: str, entry: Entry) -> dict[str, Any]:
+    low, high = entry.get("range", (None, None))
+    return {
+        "key": key,
+        "name": MappingProxyType(entry["name"]),
+        "source": _source(entry),
+        "work": entry.get("work"),
+        "place": entry.get("place", ""),
+        "year": entry.get("year"),
+        "low": low,
+        "high": high,
+        "doubtful": tuple(entry.get("doubtful", ())),
     }
-)  # fmt: skip
 
-SURFACES: Mapping[str, SurfacePreset] = MappingProxyType(
-    {
-        preset.key: preset
-        for preset in (
-            SurfacePreset(
-                key="surface/wet-minimum",
-                name=_names(en_GB="Wet road, suggested minimum", en_US="Wet road, suggested minimum",
-                        cy="Ffordd wlyb, isafswm a awgrymir", fr="Chaussée mouillée, minimum suggéré",
-                        ar="طريق مبلل، الحد الأدنى المقترح", es_US="Pavimento mojado, mínimo sugerido"),
-                # Through 0.4 at 30 mile/h and 0.3 at 80 mile/h; both constants rounded to the side of less friction.
-                friction=Friction(f60=0.383, sp_kmh=279.0),
-                state="wet",
-                source=Source(
-                    text="Road Research Laboratory, report LR 131 (1968): suggested minimum braking force coefficient "
-                    "0.4 at 30 mile/h and 0.3 at 80 mile/h; the curve through both is fitted here",
-                    kind="measured",
-                ),
-            ),
-        )
-    }
-)  # fmt: skip
 
-GAP_RULES: Mapping[str, GapRule] = MappingProxyType(
-    {
-        rule.key: rule
-        for rule in (
-            GapRule(
-                key="gap/per-length",
-                name=_names(en_GB="One second for each 10 ft of vehicle, one more above 40 mph",
-                        en_US="One second for each 10 ft of vehicle, one more above 40 mph",
-                        cy="Un eiliad am bob 10 tr o gerbyd, ac un arall dros 40 mya",
-                        fr="Une seconde par 10 ft de véhicule, une de plus au-dessus de 40 mph",
-                        ar="ثانية لكل 10 أقدام من طول المركبة، وثانية إضافية فوق 40 ميلاً في الساعة",
-                        es_US="Un segundo por cada 10 pies de vehículo y uno más a más de 40 mph"),
-                fixed_s=None,
-                per_length_s_per_m=1 / (10 * FOOT_M),
-                extra_s=1.0,
-                extra_above_mps=40 * MPH_MPS,
-                wet_factor=1.0,
-                ice_factor=1.0,
-                source=Source(
-                    text="Commercial driver’s license manual (United States), section on space ahead",
-                    kind="rule of thumb",
-                ),
-            ),
-            GapRule(
-                key="gap/two-seconds",
-                name=_names(en_GB="Two seconds; four on a wet road, twenty on ice or snow",
-                        en_US="Two seconds; four on a wet road, twenty on ice or snow",
-                        cy="Dwy eiliad; pedair ar ffordd wlyb, ugain ar rew neu eira",
-                        fr="Deux secondes ; quatre sur chaussée mouillée, vingt sur glace ou neige",
-                        ar="ثانيتان؛ أربع على طريق مبلل، وعشرون على الجليد أو الثلج",
-                        es_US="Dos segundos; cuatro sobre mojado, veinte sobre hielo o nieve"),
-                fixed_s=2.0,
-                per_length_s_per_m=None,
-                extra_s=0.0,
-                extra_above_mps=0.0,
-                wet_factor=2.0,
-                ice_factor=10.0,
-                source=Source(
-                    text="The Highway Code (Great Britain), rule 126: at least two seconds, at least doubled on wet "
-                    "roads and up to ten times greater on icy roads; ten is used",
-                    kind="rule of thumb",
-                ),
-            ),
-            GapRule(
-                key="gap/two-seconds-law",
-                name=_names(en_GB="Two seconds, by law", en_US="Two seconds, by law", cy="Dwy eiliad, yn ôl y gyfraith",
-                        fr="Deux secondes, selon la loi", ar="ثانيتان بحكم القانون", es_US="Dos segundos, por ley"),
-                fixed_s=2.0,
-                per_length_s_per_m=None,
-                extra_s=0.0,
-                extra_above_mps=0.0,
-                wet_factor=1.0,
-                ice_factor=1.0,
-                source=Source(
-                    text="Code de la route (France), article R412-12: the distance covered in at least two seconds",
-                    kind="statute",
-                ),
-            ),
-        )
-    }
-)  # fmt: skip
+def _source(entry: Entry) -> Source:
+    """The work's own words, its place and year where they do not name them, and what the entry adds."""
+    note = entry.get("note", "")
+    if "work" not in entry:
+        return Source(text=note, kind=CHOSEN)
+    work = BIBLIOGRAPHY[entry["work"]]
+    text = work.text
+    if entry.get("place", "") not in text:
+        text += f", {entry['place']}"
+    if str(entry.get("year", "")) not in text:
+        text += f" ({entry['year']})"
+    return Source(
+        text=f"{text}: {note}" if note else text,
+        kind=entry.get("kind", work.kind),
+        from_memory=entry.get("from_memory", not work.opened),
+    )
+
+
+def _ranged(common: dict[str, Any], value: float | None) -> dict[str, Any]:
+    """`common` with the value, which is at both ends of its range where the source states one figure."""
+    return common | {"value": value} | ({} if common["low"] is not None else {"low": value, "high": value})
+
+
+# ---- reaction times ----------------------------------------------------------------------------------------------
+
+
+def _driver(entry: Entry, common: dict[str, Any]) -> DriverPreset:
+    reaction = _lognormal(entry) if "percentile" in entry else Reaction(**_some(entry, "time_s", "perception_s"))
+    if reaction.mu is not None and reaction.sigma is not None and common["low"] is None:
+        # The range of a spread: what half and what nineteen of twenty drivers need at most.
+        common |= {"low": exp(reaction.mu), "high": exp(reaction.mu + reaction.sigma * _z("p95"))}
+    return DriverPreset(reaction=reaction, **_ranged(common, reaction.time_s))
+
+
+def _lognormal(entry: Entry) -> Reaction:
+    """ln t is normal: from its mean and deviation, from those of t itself, or from two percentiles, as published."""
+    stated = {key.removesuffix("_s"): entry[key] for key in entry if key[0] == "p" and key[1:3].isdigit()}
+    if "mu" in entry:
+        mu, sigma = entry["mu"], entry["sigma"]
+    elif "mean_s" in entry:
+        sigma = sqrt(log(1 + (entry["sd_s"] / entry["mean_s"]) ** 2))
+        mu = log(entry["mean_s"]) - sigma**2 / 2
+    else:
+        (low, t_low), (high, t_high) = sorted(stated.items())
+        sigma = log(t_high / t_low) / (_z(high) - _z(low))
+        mu = log(t_low) - sigma * _z(low)
+    wanted = entry["percentile"]
+    # A published percentile stays itself to the last digit.
+    time_s = stated.get(wanted, exp(mu + sigma * _z(wanted)))
+    return Reaction(time_s=time_s, percentile=wanted, mu=mu, sigma=sigma)
+
+
+def _z(percentile: str) -> float:
+    from statistics import NormalDist  # noqa: PLC0415 - only for whoever looks into the shelf
+
+    return NormalDist().inv_cdf(int(percentile[1:]) / 100)
+
+
+# ---- the other shelves -------------------------------------------------------------------------------------------
+
+
+def _some(entry: Entry, *keys: str) -> dict[str, Any]:
+    return {key: entry[key] for key in keys if key in entry}
+
+
+def _surface(entry: Entry, common: dict[str, Any]) -> SurfacePreset:
+    values = _some(entry, "mu", "f60", "sp_kmh", "max_mu", "texture_mm", "sn0", "png_h_per_mile")
+    for key in ("table", "valid_kmh"):
+        if key in entry:
+            values[key] = tuple(tuple(pair) if isinstance(pair, list) else float(pair) for pair in entry[key])
+    if common["low"] is not None:
+        values |= {"low": common["low"], "high": common["high"]}
+    friction = Friction(**values)
+    at_60 = entry.get("mu", entry.get("f60", entry.get("at_60")))
+    return SurfacePreset(friction=friction, state=entry["state"], **_ranged(common, at_60))
+
+
+def _vehicle(entry: Entry, common: dict[str, Any]) -> VehiclePreset:
+    limit = entry.get("max_deceleration_mps2")
+    return VehiclePreset(
+        kind=cast("Kind", entry["kind_of_vehicle"]),
+        load=entry.get("load"),
+        max_deceleration_mps2=limit,
+        brake_lag_s=entry.get("brake_lag_s", 0.0),
+        build_up_s=entry.get("build_up_s", 0.0),
+        brake_efficiency=entry.get("brake_efficiency", 1.0),
+        length_m=entry.get("length_m"),
+        mass_kg=entry.get("mass_kg"),
+        trailer=Trailer(**entry["trailer"]) if "trailer" in entry else None,
+        test_figure=entry.get("test_figure", False),
+        **_ranged(common, limit),
+    )
+
+
+def _gap(entry: Entry, common: dict[str, Any]) -> GapRule:
+    per_length = entry.get("per_length_s_per_m")
+    if "seconds_per_10_ft" in entry:
+        per_length = entry["seconds_per_10_ft"] / (10 * 0.3048)
+    return GapRule(
+        fixed_s=entry.get("fixed_s"),
+        per_length_s_per_m=per_length,
+        extra_s=entry.get("extra_s", 0.0),
+        extra_above_mps=entry.get("extra_above_mph", 0.0) * 0.44704,
+        wet_factor=entry.get("wet_factor", 1.0),
+        ice_factor=entry.get("ice_factor", 1.0),
+        **_ranged(common, entry.get("fixed_s", per_length)),
+    )
+
+
+def _headlight(entry: Entry, common: dict[str, Any]) -> HeadlightReach:
+    reach_m = entry["reach_m"] if "reach_m" in entry else entry["reach_ft"] * 0.3048
+    if "range_ft" in entry:
+        low, high = entry["range_ft"]
+        common |= {"low": low * 0.3048, "high": high * 0.3048}
+    return HeadlightReach(reach_m=reach_m, **_ranged(common, reach_m))
+
+
+DRIVERS: Mapping[str, DriverPreset] = Shelf("reaction", _driver)
+SURFACES: Mapping[str, SurfacePreset] = Shelf("surface", _surface)
+VEHICLES: Mapping[str, VehiclePreset] = Shelf("vehicle", _vehicle)
+GAP_RULES: Mapping[str, GapRule] = Shelf("gap", _gap)
+HEADLIGHTS: Mapping[str, HeadlightReach] = Shelf("headlight", _headlight)
+SHELVES: Mapping[str, Mapping[str, Preset]] = MappingProxyType(
+    {"reaction": DRIVERS, "surface": SURFACES, "vehicle": VEHICLES, "gap": GAP_RULES, "headlight": HEADLIGHTS}
+)
