@@ -157,7 +157,7 @@ def _source(entry: Entry) -> Source:
     work = BIBLIOGRAPHY[entry["work"]]
     text = work.text
     if entry.get("place", "") not in text:
-        text += f", {entry['place']}"
+        text += f"; {entry['place']}"
     if str(entry.get("year", "")) not in text:
         text += f" ({entry['year']})"
     return Source(
