@@ -4,12 +4,17 @@ from __future__ import annotations
 
 import os
 import re
-from collections.abc import Callable, Sequence
+from collections.abc import Iterable, Sequence
+from math import nan
 from pathlib import Path
 from typing import Any, TypeVar, cast
 
 from chartgen.edition import cases as case_lists
+from chartgen.edition import drivers as driver_parts
 from chartgen.edition import parts, prints, scales
+from chartgen.edition import questions as asked
+from chartgen.edition import surfaces as surface_parts
+from chartgen.edition import vehicles as vehicle_parts
 from chartgen.edition.find import edition_file, read_text, read_toml
 from chartgen.edition.model import Edition
 from chartgen.edition.reading import TAG_PATTERN, Reading, Row, listed, near
@@ -48,9 +53,9 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     figures: Row = root.get("figures", Row("figures"))
     method = figures.get("method", "first-principles")
     rounding = scales.rounding(reading, figures, distance_unit, also_unit)
-    drivers = _each(root, "driver", lambda row: parts.driver(reading, row))
-    surfaces = _each(root, "surface", lambda row: parts.surface(reading, row, method))
-    vehicles = _each(root, "vehicle", lambda row: parts.vehicle(reading, row, method, root["vehicle"]))
+    drivers = [driver_parts.driver(reading, row) for row in root.get("driver", [])]
+    surfaces = [surface_parts.surface(reading, row, method) for row in root.get("surface", [])]
+    vehicles = [vehicle_parts.vehicle(reading, row, method, root["vehicle"]) for row in root.get("vehicle", [])]
     for number, row in enumerate(root.get("poster", []), 1):
         if "id" not in row.broken:
             row.setdefault("id", f"poster-{number}")
@@ -70,13 +75,16 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         ids=ids,
         cases=cases,
         rows=frozenset(r for c in cases for r in case_lists.combinations(c)) if cases and few_enough else None,
+        # The length of a vehicle that is at fault is not missed as well.
         lengths={
-            row["id"]: row["length"].value if "length" in row else None
-            for row in root.get("vehicle", [])
+            row["id"]: nan if vehicle is None else vehicle.whole_length_m
+            for row, vehicle in zip(root.get("vehicle", []), vehicles, strict=True)
             if "id" in row
         },
     )
-    posters = _each(root, "poster", lambda row: prints.poster(reading, row, made))
+    questions = asked.questions(reading, root.get("questions", Row("questions")), made, method)
+    spread = asked.spread(reading, figures.get("spread"), method, drivers, surfaces, made)
+    posters = _there(prints.poster(reading, row, made) for row in root.get("poster", []))
     cards = prints.cards(reading, root["cards"], folder, made) if "cards" in root else None
     if reading.faults or speed_unit is None or distance_unit is None:
         return None
@@ -105,9 +113,9 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         speeds_mps=tuple(s.value for s in speeds),
         method=method,
         rounding=rounding,
-        drivers=drivers,
-        surfaces=surfaces,
-        vehicles=vehicles,
+        drivers=_there(drivers),
+        surfaces=_there(surfaces),
+        vehicles=_there(vehicles),
         cases=cases,
         posters=posters,
         cards=cards,
@@ -115,6 +123,9 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         palette=head.get("palette", "gorse"),
         warnings=tuple(reading.warnings),
         unmade=tuple(reading.unmade),
+        questions=questions,
+        spread=spread,
+        compare=figures.get("compare", True),
     )
 
 
@@ -123,9 +134,8 @@ def _ids(rows: Sequence[Row]) -> tuple[str, ...]:
     return tuple(dict.fromkeys(row["id"] for row in rows)) if all("id" in row for row in rows) else ()
 
 
-def _each(root: Row, kind: str, build: Callable[[Row], _T | None]) -> tuple[_T, ...]:
-    built = [build(row) for row in root.get(kind, [])]
-    return tuple(item for item in built if item is not None)
+def _there(items: Iterable[_T | None]) -> tuple[_T, ...]:
+    return tuple(item for item in items if item is not None)
 
 
 def _languages_first(reading: Reading, raw: dict[str, Any]) -> None:

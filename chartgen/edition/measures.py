@@ -62,12 +62,26 @@ SIZE = Measure(
     inside="millimetre",
     example="3 mm",
 )
+FALL = Measure(
+    name="a fall",
+    units={"m": "metre", "cm": "centimetre", "mm": "millimetre", "ft": "foot", "in": "inch"},
+    inside="metre",
+    example="0.60 m",
+)
+DEPTH = Measure(name="a depth", units={"mm": "millimetre", "in": "inch"}, inside="millimetre", example="0.8 mm")
+MASS = Measure(
+    name="a mass",
+    units={"kg": "kilogram", "t": "tonne", "lb": "pound"},
+    inside="kilogram",
+    example="1500 kg",
+)
 GRADE = Measure(name="a grade", units={"%": "percent"}, inside="one", example="-9 %")
 DECAY = Measure(name="a speed constant", units={"km/h": "kilometre/hour"}, inside="kilometre/hour", example="110 km/h")
 
 DEFINITIONS = (
     "metre = [length] = m",
     "second = [time] = s",
+    "kilogram = [mass] = kg",
     "millimetre = metre / 1000 = mm",
     "centimetre = metre / 100 = cm",
     "kilometre = 1000 * metre = km",
@@ -75,6 +89,8 @@ DEFINITIONS = (
     "inch = 0.0254 * metre",
     "foot = 0.3048 * metre = ft",
     "mile = 5280 * foot = mi",
+    "tonne = 1000 * kilogram",
+    "pound = 0.45359237 * kilogram",
     "standard_gravity = 9.80665 * metre / second ** 2",
     "percent = 0.01 = _",
     "one = []",

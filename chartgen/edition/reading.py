@@ -79,7 +79,7 @@ def as_written(value: object) -> str:
     elif isinstance(value, (date, time)):
         shown = value.isoformat()
     elif isinstance(value, Mapping):
-        shown = "{ " + ", ".join(f"{k} = {as_written(v)}" for k, v in value.items()) + " }"
+        shown = "{ " + ", ".join(f"{k} = {as_written(v)}" for k, v in value.items()) + " }" if value else "{}"
     elif isinstance(value, list):
         shown = "[" + ", ".join(as_written(v) for v in value[:8]) + (", …" if len(value) > 8 else "") + "]"
     else:
@@ -94,9 +94,9 @@ def near(word: str, names: Iterable[str]) -> str | None:
     return by_lower[close[0]] if close else None
 
 
-def listed(names: Iterable[str]) -> str:
-    """ "a, b or c"; of a long list the first twelve."""
+def listed(names: Iterable[str], most: int = 12) -> str:
+    """ "a, b or c"; of a list longer than `most` the first ones."""
     words = list(names)
-    if len(words) > 12:
-        return ", ".join(words[:12]) + f" … ({len(words)} in all)"
+    if len(words) > most:
+        return ", ".join(words[:most]) + f" … ({len(words)} in all)"
     return " or ".join(filter(None, [", ".join(words[:-1]), *words[-1:]]))

@@ -11,10 +11,11 @@ import re
 from collections.abc import Callable
 from typing import Any
 
+from chartgen.edition.key import Bounds, Key
 from chartgen.edition.measures import Measure
 from chartgen.edition.paper import SIZES_MM
 from chartgen.edition.reading import ID_PATTERN, TAG_PATTERN
-from chartgen.edition.spec import TABLES, Bounds, Key
+from chartgen.edition.spec import TABLES
 
 _Schema = dict[str, Any]
 _NUMBER = r"[+-]?[0-9]+(\.[0-9]+)?"
@@ -97,6 +98,20 @@ def _number(bounds: Bounds | None) -> _Schema:
     return {"type": "number", "exclusiveMinimum" if bounds.above else "minimum": bounds.least, "maximum": bounds.most}
 
 
+def _pairs(about: Key) -> _Schema:
+    pair = {
+        "type": "array",
+        "prefixItems": [_quantity(about.measure), _number(about.bounds)],
+        "minItems": 2,
+        "maxItems": 2,
+    }
+    return _list(pair, about)
+
+
+def _choice(about: Key) -> _Schema:
+    return {"enum": [choice for choice in about.choices if choice not in about.later]}
+
+
 def _whole(pattern: str) -> str:
     return f"^({pattern})$"
 
@@ -106,10 +121,13 @@ _FORMS: dict[str, Callable[[Key], _Schema]] = {
     "id": lambda _: {"type": "string", "pattern": _whole(ID_PATTERN)},
     "uses": lambda about: {"oneOf": [{"type": "string"}, _list({"type": "string"}, about)]},
     "tags": lambda about: _list({"type": "string", "pattern": _whole(TAG_PATTERN)}, about),
-    "choice": lambda about: {"enum": [choice for choice in about.choices if choice not in about.later]},
+    "choice": _choice,
+    "choices": lambda about: {"oneOf": [_choice(about), _list(_choice(about), about)]},
     "quantity": lambda about: _quantity(about.measure),
     "quantities": lambda about: _list(_quantity(about.measure), about),
     "number": lambda about: _number(about.bounds),
+    "whole": lambda about: {**_number(about.bounds), "type": "integer"},
+    "pairs": _pairs,
     "numbers": lambda about: _list(_number(about.bounds), about),
     "flag": lambda _: {"type": "boolean"},
     # TOML's own date; editors that check against a schema hold it as text.

@@ -6,68 +6,13 @@ handbook. Plain data; nothing is read here.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import dataclass, field
-from typing import Literal
-
 from chartgen.edition import measures as q
+from chartgen.edition.key import Bounds, Key
+from chartgen.edition.spec_parts import DRIVER, FRICTION, REACTION, SURFACE, TRAILER, VEHICLE
 
-Form = Literal[
-    "text", "texts", "id", "use", "uses", "choice", "quantity", "quantities", "number", "numbers", "flag", "date",
-    "tags", "size", "table", "tables",
-]  # fmt: skip
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Bounds:
-    """Accepted from `least` to `most` (in the measure's inside unit; `least` itself too unless `above`); outside
-    `usual` a warning. The sentences are for people, in the unit they write."""
-
-    least: float
-    most: float
-    says: str
-    above: bool = False
-    usual: tuple[float, float] | None = None
-    usual_says: str = ""
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Key:
-    """`table` beside a form other than table(s): the value may be such a table instead."""
-
-    says: str
-    form: Form
-    needed: bool = False
-    choices: tuple[str, ...] = ()
-    later: tuple[str, ...] = ()
-    """Values that are known but not made yet."""
-    measure: q.Measure | None = None
-    bounds: Bounds | None = None
-    table: str = ""
-    count: tuple[int, int] = (1, 200)
-    """How many entries a list may have."""
-    not_yet: str = ""
-    """Set: the whole key is known but not made yet; the reason."""
-    list_not_yet: str = ""
-    """Set: as a list the value is known but not made yet; the reason."""
-    meant: Mapping[str, str] = field(default_factory=dict)
-    """Other words for the choices, as people may write them."""
-
-
-REACTION_BOUNDS = Bounds(least=0.2, most=10, says="0.2 s to 10 s", usual=(0.3, 4), usual_says="0.3 s to 4 s")
-FRICTION_BOUNDS = Bounds(
-    least=0, above=True, most=1.5, says="above 0, up to 1.5", usual=(0, 1.2), usual_says="up to 1.2"
-)
 LAYOUTS_LATER = ("trail", "fan", "leftover")
-KINDS = ("car", "van", "bus", "lorry", "articulated", "motorcycle", "bicycle")
-OTHER_KINDS = {
-    "truck": "lorry", "hgv": "lorry", "rigid": "lorry", "tractor-trailer": "articulated", "artic": "articulated",
-    "semi": "articulated", "coach": "bus", "motorbike": "motorcycle", "bike": "bicycle", "cycle": "bicycle",
-}  # fmt: skip
-NEEDS_LIMIT = ("bus", "lorry", "articulated")
 METHODS = ("first-principles", "sight-metric", "sight-us", "slide-metric", "slide-us")
 PALETTES = ("gorse", "lichen", "bracken")
-PERCENTILES = ("p50", "p85", "p95")
 
 
 EDITION: dict[str, Key] = {
@@ -127,6 +72,25 @@ FIGURES: dict[str, Key] = {
     "adopt": Key(
         says="A published table, adopted as it stands.", form="text", not_yet="a published table cannot be adopted yet"
     ),
+    "spread": Key(
+        says="Percentiles of the stopping distance over reaction time and friction.", form="table", table="spread"
+    ),
+    "compare": Key(
+        says="Whether the figures are set beside published tables of the same units and meaning; true if left out.",
+        form="flag",
+    ),
+}
+SPREAD: dict[str, Key] = {
+    "samples": Key(
+        says="Size of the sample, a power of two; 4096 if left out.",
+        form="whole",
+        bounds=Bounds(least=256, most=65_536, says="a power of two from 256 to 65536"),
+    ),
+    "seed": Key(
+        says="Seed of the sample; 1 if left out.",
+        form="whole",
+        bounds=Bounds(least=0, most=2**31, says="0 to 2147483648"),
+    ),
 }
 RULES: dict[str, Key] = {
     part: Key(says=f"Rule for the {part} distance.", form="choice", choices=("up", "nearest"))
@@ -139,100 +103,6 @@ ROUNDING: dict[str, Key] = {
         says="up (never short) or nearest; or by part.", form="choice", choices=("up", "nearest"), table="rules"
     ),
     "total": Key(says="How the total is made.", form="choice", choices=("sum-of-parts", "on-its-own", "controlled")),
-}
-PERCENTILE_KEYS: dict[str, Key] = {
-    p: Key(
-        says=f"{p[1:]} % of drivers react in at most this time.",
-        form="quantity",
-        measure=q.TIME,
-        bounds=REACTION_BOUNDS,
-    )
-    for p in PERCENTILES
-}
-DRIVER: dict[str, Key] = {
-    "id": Key(says="Name used in this file and in web addresses.", form="id", needed=True),
-    "use": Key(says="A preset of the catalogue; keys beside it override it.", form="use"),
-    "name": Key(says="Name, by language.", form="texts"),
-    "reaction_time": Key(
-        says="Perception included: one time, or a lognormal from two percentiles.",
-        form="quantity",
-        measure=q.TIME,
-        bounds=REACTION_BOUNDS,
-        table="percentiles",
-    ),
-    "percentile": Key(says="Which percentile is printed; p85 if left out.", form="choice", choices=PERCENTILES),
-    "source": Key(says="Where the value comes from.", form="text"),
-}
-FRICTION: dict[str, Key] = {
-    "f60": Key(says="Friction at 60 km/h.", form="number", bounds=FRICTION_BOUNDS, needed=True),
-    "sp": Key(
-        says="Speed constant: how fast friction falls.",
-        form="quantity",
-        measure=q.DECAY,
-        bounds=Bounds(least=10, most=1000, says="10 km/h to 1000 km/h"),
-        needed=True,
-    ),
-    "max": Key(says="Cap at low speeds.", form="number", bounds=FRICTION_BOUNDS),
-    "table": Key(says="Friction by speed.", form="text", not_yet="friction from a table of speeds is not made yet"),
-}
-SURFACE: dict[str, Key] = {
-    "id": Key(says="Name used in this file and in web addresses.", form="id", needed=True),
-    "use": Key(says="A preset of the catalogue; keys beside it override it.", form="use"),
-    "name": Key(says="Name, by language.", form="texts"),
-    "state": Key(says="For the checks between surfaces.", form="choice", choices=("dry", "wet", "snow", "ice")),
-    "friction": Key(
-        says="A constant, or { f60, sp } falling with speed.",
-        form="number",
-        bounds=FRICTION_BOUNDS,
-        table="friction",
-        list_not_yet="friction from a list of speeds is not made yet",
-    ),
-    "friction_range": Key(
-        says="Lowest and highest value of a constant.", form="numbers", bounds=FRICTION_BOUNDS, count=(2, 2)
-    ),
-    "source": Key(says="Where the value comes from.", form="text"),
-}
-VEHICLE: dict[str, Key] = {
-    "id": Key(says="Name used in this file and in web addresses.", form="id", needed=True),
-    "use": Key(
-        says="A preset of the catalogue.", form="use", not_yet="the catalogue has no vehicles; write the values here"
-    ),
-    "kind": Key(says="What it is.", form="choice", choices=KINDS, meant=OTHER_KINDS),
-    "name": Key(says="Name, by language.", form="texts"),
-    "load": Key(says="Laden or unladen.", form="choice", choices=("laden", "unladen")),
-    "unladen_of": Key(says="Id of the laden vehicle this one is the unladen state of.", form="use"),
-    "max_deceleration": Key(
-        says="The vehicle's own limit on the level.",
-        form="quantity",
-        measure=q.DECELERATION,
-        bounds=Bounds(
-            least=0.5, most=15, says="0.5 m/s^2 to 15 m/s^2", usual=(2, 10), usual_says="2 m/s^2 to 10 m/s^2"
-        ),
-    ),
-    "brake_lag": Key(
-        says="Time from the pedal until anything slows.",
-        form="quantity",
-        measure=q.TIME,
-        bounds=Bounds(least=0, most=3, says="0 s to 3 s"),
-    ),
-    "build_up": Key(
-        says="Time in which the deceleration then rises to its full value.",
-        form="quantity",
-        measure=q.TIME,
-        bounds=Bounds(least=0, most=3, says="0 s to 3 s", usual=(0, 1), usual_says="up to 1 s"),
-    ),
-    "brake_efficiency": Key(
-        says="Share of the friction that the brakes use.",
-        form="number",
-        bounds=Bounds(least=0, above=True, most=1, says="above 0, up to 1", usual=(0.4, 1), usual_says="0.4 to 1"),
-    ),
-    "length": Key(
-        says="Overall length.",
-        form="quantity",
-        measure=q.LENGTH,
-        bounds=Bounds(least=1, most=60, says="1 m to 60 m", usual=(1, 30), usual_says="up to 30 m"),
-    ),
-    "source": Key(says="Where the values come from.", form="text"),
 }
 GRADE_BOUNDS = Bounds(least=-0.30, most=0.30, says="-30 % to 30 %", usual=(-0.12, 0.12), usual_says="-12 % to 12 %")
 CASE: dict[str, Key] = {
@@ -283,6 +153,23 @@ CARDS: dict[str, Key] = {
     "grade": Key(says="Grade.", form="quantity", measure=q.GRADE, bounds=GRADE_BOUNDS),
     "gap": Key(says="Following-gap rule of the catalogue.", form="use"),
 }
+QUESTIONS: dict[str, Key] = {
+    "residual_from": Key(
+        says="One of the speeds: where the vehicle that began at it has stopped, how fast are faster ones still going?",
+        form="quantity",
+        measure=q.SPEED,
+    ),
+    "sight": Key(
+        says="Greatest speed that stops within this distance.",
+        form="quantity",
+        measure=q.LENGTH,
+        bounds=Bounds(least=1, most=2000, says="1 m to 2000 m"),
+    ),
+    "headlight": Key(says="Greatest speed that stops within this headlight reach of the catalogue.", form="use"),
+    "gap": Key(says="Following-gap rules of the catalogue, in seconds and in distance.", form="uses", count=(1, 12)),
+    "driver": Key(says="Id: what every other driver's reaction time adds to the distance of this one.", form="use"),
+    "surface": Key(says="Id: what every other surface adds to the distance on this one.", form="use"),
+}
 PRESS: dict[str, Key] = {
     "bleed": Key(
         says="Bleed of the press edition.",
@@ -306,13 +193,14 @@ ROOT: dict[str, Key] = {
     "case": Key(
         says="Which go together: the product of the lists; with none, everything.", form="tables", table="case"
     ),
+    "questions": Key(says="What is asked beside the distances.", form="table", table="questions"),
     "poster": Key(says="Posters.", form="tables", table="poster"),
     "cards": Key(says="Cab cards.", form="table", table="cards"),
     "press": Key(says="For the print shop.", form="table", table="press"),
 }
 TABLES: dict[str, dict[str, Key]] = {
     "": ROOT, "edition": EDITION, "languages": LANGUAGES, "units": UNITS, "speeds": SPEEDS, "figures": FIGURES,
-    "rounding": ROUNDING, "rules": RULES, "driver": DRIVER, "percentiles": PERCENTILE_KEYS, "surface": SURFACE,
-    "friction": FRICTION, "vehicle": VEHICLE, "case": CASE, "poster": POSTER, "show": SHOW, "cards": CARDS,
-    "press": PRESS,
+    "rounding": ROUNDING, "rules": RULES, "spread": SPREAD, "driver": DRIVER, "reaction": REACTION, "surface": SURFACE,
+    "friction": FRICTION, "vehicle": VEHICLE, "trailer": TRAILER, "case": CASE, "questions": QUESTIONS,
+    "poster": POSTER, "show": SHOW, "cards": CARDS, "press": PRESS,
 }  # fmt: skip

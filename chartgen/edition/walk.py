@@ -7,19 +7,28 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 from datetime import date, datetime
 from decimal import Decimal
 from math import inf, isfinite
 from typing import Any
 
+from chartgen.edition.key import Bounds, Key
 from chartgen.edition.measures import Measure, NotAQuantityError
 from chartgen.edition.model import Paper, Text
 from chartgen.edition.paper import paper
 from chartgen.edition.quantity import Quantity, parse
 from chartgen.edition.reading import ID_PATTERN, TAG_PATTERN, Reading, Row, as_written, listed, near
-from chartgen.edition.spec import TABLES, Bounds, Key
+from chartgen.edition.spec import TABLES
 
 LONGEST_TEXT = 600
+PAIRS = '[["30 km/h", 0.62], ["100 km/h", 0.45]]'
+"""How a table of two columns is written."""
+_A_TEXT = '"…"'
+_WRITTEN = {
+    "date": "2026-11-02", "tags": '["en-GB", "cy"]', "uses": '["…", "…"]', "pairs": PAIRS, "flag": "true or false",
+}  # fmt: skip
+"""Examples of the forms that are written in one way."""
 
 
 def read_table(reading: Reading, raw: object, path: str, name: str) -> Row | None:
@@ -31,7 +40,10 @@ def read_table(reading: Reading, raw: object, path: str, name: str) -> Row | Non
     row = Row(path)
     meant = {key: near(key, [k for k in keys if k not in raw]) for key in raw if key not in keys}
     for key, guess in meant.items():
-        reading.fault(row.at(key), "this key is not known", listed(keys), given=raw[key], near=guess)
+        reading.fault(row.at(key), "this key is not known", listed(keys, most=30), given=raw[key], near=guess)
+        if guess is not None:
+            # What is meant is there, in another spelling: not missing.
+            row.broken.add(guess)
     excused = any(keys[key].not_yet for key in raw if key in keys)
     for key, about in keys.items():
         if key in raw:
@@ -62,8 +74,8 @@ def _read_key(reading: Reading, row: Row, key: str, about: Key, raw: object) -> 
 
 
 def _read_value(reading: Reading, where: str, about: Key, raw: object) -> Any:
-    if about.list_not_yet and isinstance(raw, list):
-        reading.fault(where, f"not yet: {about.list_not_yet}", example("", about, reading), given=raw)
+    if about.as_list and isinstance(raw, list):
+        reading.fault(where, "a list stands in a table of its own here", about.as_list, given=raw)
         return None
     if about.form == "table" or (about.table and about.form != "tables" and isinstance(raw, dict)):
         return read_table(reading, raw, where, about.table)
@@ -81,20 +93,14 @@ def example(key: str, about: Key, reading: Reading) -> str:
         case "quantity" | "quantities" if about.measure:
             shown = f'"{about.measure.example}"'
             return f"{key} = {shown}" if about.form == "quantity" else f"{key} = [{shown}, …]"
-        case "date":
-            return f"{key} = 2026-11-02"
-        case "tags":
-            return f'{key} = ["en-GB", "cy"]'
-        case "uses":
-            return f'{key} = ["…", "…"]'
         case "table":
             return f"a section [{key}]"
         case "tables":
             return f"one section [[{key}]] or more"
-        case "number":
+        case "number" | "whole":
             return _number_says(about)
         case _:
-            return f'{key} = "…"'
+            return f"{key} = {_WRITTEN.get(about.form, _A_TEXT)}"
 
 
 # ---- one function a form -----------------------------------------------------------------------------------------
@@ -181,7 +187,8 @@ def _counted(reading: Reading, where: str, about: Key, items: Sequence[object], 
     if least <= len(items) <= most:
         return True
     wanted = str(least) if least == most else f"{least} to {most}"
-    reading.fault(where, f"the list has {len(items)} entries", f"{wanted} entries", given=raw)
+    entries = "1 entry" if len(items) == 1 else f"{len(items)} entries"
+    reading.fault(where, f"the list has {entries}", f"{wanted} entries", given=raw)
     return False
 
 
@@ -195,6 +202,20 @@ def _choice(reading: Reading, where: str, about: Key, raw: object) -> str | None
     guess = about.meant.get(raw.lower()) or near(raw, about.choices) if isinstance(raw, str) else None
     reading.fault(where, "this is not one of the choices", listed(about.choices), given=raw, near=guess)
     return None
+
+
+def _choices(reading: Reading, where: str, about: Key, raw: object) -> tuple[str, ...] | None:
+    items = [raw] if isinstance(raw, str) else raw
+    if not isinstance(items, list):
+        reading.fault(where, "a list is needed here", f'["{about.choices[0]}", …]', given=raw)
+        return None
+    if not _counted(reading, where, about, items, raw):
+        return None
+    read = [_choice(reading, f"{where}[{i}]", about, item) for i, item in enumerate(items, 1)]
+    for number, item in enumerate(items, 1):
+        if item in items[: number - 1]:
+            reading.fault(f"{where}[{number}]", "this stands in the list twice", "each one once", given=item)
+    return tuple(item for item in read if item is not None)
 
 
 def _quantity(reading: Reading, where: str, about: Key, raw: object) -> Quantity | None:
@@ -245,6 +266,13 @@ def _number(reading: Reading, where: str, about: Key, raw: object) -> float | No
     return value if within(reading, where, about.bounds, value, raw) else None
 
 
+def _whole(reading: Reading, where: str, about: Key, raw: object) -> int | None:
+    if isinstance(raw, bool) or not isinstance(raw, int):
+        reading.fault(where, "a whole number is needed here", about.bounds.says if about.bounds else "4096", given=raw)
+        return None
+    return raw if within(reading, where, about.bounds, raw, raw) else None
+
+
 def _number_says(about: Key) -> str:
     return f"a number {about.bounds.says}" if about.bounds else "a number"
 
@@ -259,10 +287,35 @@ def _numbers(reading: Reading, where: str, about: Key, raw: object) -> tuple[flo
     return tuple(item for item in read if item is not None)
 
 
+def _pairs(reading: Reading, where: str, about: Key, raw: object) -> tuple[tuple[Quantity, float], ...] | None:
+    if not isinstance(raw, list):
+        reading.fault(where, "pairs of speed and friction are needed here", PAIRS, given=raw)
+        return None
+    if not _counted(reading, where, about, raw, raw):
+        return None
+    read: list[tuple[Quantity, float]] = []
+    for i, item in enumerate(raw, 1):
+        at = f"{where}[{i}]"
+        if not isinstance(item, list) or len(item) != 2:
+            cells = f"a cell is missing: the row has {len(item)}" if isinstance(item, list) and len(item) < 2 else (
+                "this is not one pair of speed and friction"
+            )  # fmt: skip
+            reading.fault(at, cells, 'two cells: ["30 km/h", 0.62]', given=item)
+            continue
+        speed = _quantity(reading, f"{at}[1]", replace(about, bounds=None), item[0])
+        friction = _number(reading, f"{at}[2]", about, item[1])
+        if speed is not None and friction is not None:
+            read.append((speed, friction))
+    return tuple(read)
+
+
 def within(reading: Reading, where: str, bounds: Bounds | None, value: float, raw: object) -> bool:
     """Hold `value` against what is accepted (a fault) and what is usual (a warning)."""
     if bounds is None:
         return True
+    if bounds.end_says and value == bounds.least:
+        reading.fault(where, bounds.end_says, bounds.says, given=raw)
+        return False
     if value < bounds.least or value > bounds.most or (bounds.above and value <= bounds.least):
         reading.fault(where, "this is out of range", bounds.says, given=raw)
         return False
@@ -327,5 +380,5 @@ def _tables(reading: Reading, where: str, about: Key, raw: object) -> list[Row] 
 _FORMS: dict[str, Callable[[Reading, str, Key, object], Any]] = {
     "text": _text, "texts": _texts, "id": _id, "use": _use, "uses": _uses, "choice": _choice, "quantity": _quantity,
     "quantities": _quantities, "number": _number, "numbers": _numbers, "flag": _flag, "date": _date, "tags": _tags,
-    "size": _size, "tables": _tables,
+    "size": _size, "tables": _tables, "pairs": _pairs, "choices": _choices, "whole": _whole,
 }  # fmt: skip

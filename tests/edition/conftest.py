@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
+from types import MappingProxyType
+from typing import Any
 
 import pytest
 
@@ -73,16 +75,19 @@ headline = { en-GB = "At {speed:70 mph}, {stopping:70 mph}.", cy = "Ar {speed:70
 
 @pytest.fixture
 def write(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Callable[..., str]:
-    """Write the sound edition with some of its text changed, into the folder `vale` of the current folder."""
+    """Write the sound edition with some of its text changed, and files beside it, into the folder `vale` of the
+    current folder."""
     monkeypatch.chdir(tmp_path)
     (tmp_path / "vale").mkdir()
 
-    def write(*changes: tuple[str, str], more: str = "") -> str:
+    def write(*changes: tuple[str, str], more: str = "", files: Mapping[str, str] = MappingProxyType({})) -> str:
         text = SOUND
         for old, new in changes:
             assert text.count(old) >= 1, f"{old!r} is not in the sound edition"
             text = text.replace(old, new, 1)
         (tmp_path / "vale" / "edition.toml").write_text(text + more, encoding="utf-8")
+        for name, content in files.items():
+            (tmp_path / "vale" / name).write_bytes(content.encode())
         return "vale"
 
     return write
@@ -92,8 +97,8 @@ def write(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Callable[..., str]
 def edition(write: Callable[..., str]) -> Callable[..., Edition]:
     """The sound edition, changed, loaded."""
 
-    def edition(*changes: tuple[str, str], more: str = "") -> Edition:
-        return load_edition(write(*changes, more=more))
+    def edition(*changes: tuple[str, str], **beside: Any) -> Edition:
+        return load_edition(write(*changes, **beside))
 
     return edition
 
@@ -102,8 +107,8 @@ def edition(write: Callable[..., str]) -> Callable[..., Edition]:
 def messages(write: Callable[..., str]) -> Callable[..., list[str]]:
     """The whole messages that the changed edition gives."""
 
-    def messages(*changes: tuple[str, str], more: str = "") -> list[str]:
-        folder = write(*changes, more=more)
+    def messages(*changes: tuple[str, str], **beside: Any) -> list[str]:
+        folder = write(*changes, **beside)
         with pytest.raises(EditionFaults) as caught:
             load_edition(folder)
         assert caught.value.exit_code == 2

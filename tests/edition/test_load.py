@@ -56,13 +56,7 @@ def test_what_the_example_asks_for_beyond_this_version_is_named() -> None:
     made = load_edition(EXAMPLE)
     reason = "the press edition (inks, bleed, marks, profile) is not made yet"
     assert made.unmade == tuple(f"press.{key}: {reason}" for key in ("bleed", "marks", "inks", "profile"))
-    assert made.warnings == (
-        (
-            "surface[1].friction_range: the range is printed among the assumptions; the spread of distances that "
-            "follows from it is not made yet."
-        ),
-        'cards.gap: no following-gap rule is chosen; "gap/two-seconds" is used.',
-    )
+    assert made.warnings == ('cards.gap: no following-gap rule is chosen; "gap/two-seconds" is used.',)
 
 
 # ---- which file ----------------------------------------------------------------------------------------------------

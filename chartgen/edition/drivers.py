@@ -1,0 +1,164 @@
+"""Drivers: from a table that passed the walk to a record with its reaction time, with the checks within it."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from math import exp, log, sqrt
+from statistics import NormalDist
+from typing import Literal
+
+from chartgen.edition.catalogue import DRIVERS
+from chartgen.edition.model import Driver, Reaction
+from chartgen.edition.parts import needed, picked, plain, preset_name, source
+from chartgen.edition.quantity import Quantity
+from chartgen.edition.reading import Reading, Row
+from chartgen.edition.spec_parts import PERCENTILES, REACTION_BOUNDS
+from chartgen.edition.walk import within
+from chartgen.motion.limits import GRAVITY_MPS2
+
+_Percentile = Literal["p50", "p85", "p95"]
+_TWO_PERCENTILES = 'reaction_time = { p50 = "1.1 s", p85 = "1.6 s" }'
+
+
+def driver(reading: Reading, row: Row) -> Driver | None:
+    """One [[driver]]; None where it does not hold together (the faults are noted)."""
+    preset = picked(reading, row, DRIVERS)
+    if preset is None and "use" not in row:
+        needed(reading, row, "driver", "name", "reaction_time")
+    reaction = _reaction(reading, row, preset.reaction if preset else None)
+    if reaction is not None:
+        reaction = _kept_apart(reading, row, reaction)
+    if row.broken or reaction is None:
+        return None
+    own_time = "reaction_time" in row or "perception" in row or preset is None
+    # The preset's source vouches for the preset's value only.
+    where = source(row) if own_time or "source" in row or preset is None else preset.source
+    name = row["name"] if "name" in row or preset is None else preset_name(reading, row, preset.name)
+    return Driver(id=row["id"], name=name, reaction=reaction, source=where, preset=preset.key if preset else None)
+
+
+def _reaction(reading: Reading, row: Row, preset: Reaction | None) -> Reaction | None:
+    given = row.get("reaction_time")
+    wanted: _Percentile | None = row.get("percentile")
+    if isinstance(given, Row):
+        if given.broken:
+            return None
+        if "drop" in given:
+            _no_percentiles(reading, row, wanted)
+            return _dropped(reading, given)
+        found = _lognormal(reading, given)
+        if found is None:
+            return None
+        mu, sigma = found
+    elif given is None and preset is not None and preset.mu is not None and preset.sigma is not None:
+        mu, sigma = preset.mu, preset.sigma
+        if wanted in (None, preset.percentile):
+            # As the preset has it, to the last digit of its source.
+            return preset
+    else:
+        if "reaction_time" not in row.broken:
+            _no_percentiles(reading, row, wanted)
+        return Reaction(time_s=given.value) if isinstance(given, Quantity) else preset
+    percentile = wanted or "p85"
+    if percentile == "p50":
+        reading.warn(row.at("percentile"), "the median is printed: half of drivers need longer than the figures allow.")
+    time_s = _percentile_time(given, percentile, mu, sigma)
+    key = row.at("reaction_time")
+    if not within(reading, key, REACTION_BOUNDS, time_s, f"{percentile} of {time_s:.3g} s"):
+        return None
+    return Reaction(time_s=time_s, percentile=percentile, mu=mu, sigma=sigma)
+
+
+def _no_percentiles(reading: Reading, row: Row, wanted: str | None) -> None:
+    if wanted is not None:
+        row.broken.add("percentile")
+        allowed = f"{_TWO_PERCENTILES}, or leave percentile out"
+        reading.fault(row.at("percentile"), "one fixed reaction time has no percentiles", allowed, given=wanted)
+
+
+def _percentile_time(given: object, percentile: str, mu: float, sigma: float) -> float:
+    """The percentile as it was stated, else the lognormal's: a stated 1.6 s stays 1.6 s to the last digit."""
+    if isinstance(given, Row) and percentile in given:
+        return float(given[percentile].value)
+    return exp(mu + sigma * _z(percentile))
+
+
+def _z(percentile: str) -> float:
+    return NormalDist().inv_cdf(int(percentile[1:]) / 100)
+
+
+def _lognormal(reading: Reading, given: Row) -> tuple[float, float] | None:
+    """mu and sigma of ln(t/s) through two stated percentiles: ln t = mu + sigma z."""
+    stated = [p for p in PERCENTILES if p in given]
+    if len(stated) != 2:
+        allowed = '{ p50 = "1.1 s", p85 = "1.6 s" }'
+        reading.fault(given.path, "exactly two percentiles describe the spread", allowed, given=plain(given))
+        return None
+    low, high = stated
+    t_low, t_high = given[low].value, given[high].value
+    if not t_low < t_high:
+        allowed = f"a time for {high} that is longer than the one for {low}"
+        reading.fault(given.path, f"{low} is not shorter than {high}", allowed, given=plain(given))
+        return None
+    sigma = (log(t_high) - log(t_low)) / (_z(high) - _z(low))
+    return log(t_low) - sigma * _z(low), sigma
+
+
+# ---- a group's own measurement, and the two shares of a time ------------------------------------------------------
+
+
+def _dropped(reading: Reading, given: Row) -> Reaction | None:
+    """The time in which a dropped rule falls so far."""
+    if len(given) > 1:
+        allowed = '{ drop = "0.60 m" } or { p50 = "1.1 s", p85 = "1.6 s" }'
+        reading.fault(given.path, "a dropped rule and percentiles are two ways to say it", allowed, given=plain(given))
+        return None
+    drop: Quantity = given["drop"]
+    if drop.number <= 0:
+        reading.fault(given.at("drop"), "a fall must be above 0", 'such as "0.60 m"', given=drop.text)
+        return None
+    time_s = sqrt(2.0 * drop.value / GRAVITY_MPS2)
+    if not REACTION_BOUNDS.least <= time_s <= REACTION_BOUNDS.most:
+        least, most = (GRAVITY_MPS2 * t**2 / 2.0 for t in (REACTION_BOUNDS.least, REACTION_BOUNDS.most))
+        allowed = f"{REACTION_BOUNDS.says}: a fall of {least:.3f} m to {most:.0f} m"
+        problem = f"a rule falls so far in {time_s:.3g} s, which is out of range"
+        reading.fault(given.at("drop"), problem, allowed, given=drop.text)
+        return None
+    reading.warn(
+        given.at("drop"),
+        f"{time_s:.3g} s is the time of a hand that waits for the rule; a driver who is surprised, and whose foot must "
+        "reach the brake, needs longer.",
+    )
+    return Reaction(time_s=time_s, drop_m=drop.value)
+
+
+def _kept_apart(reading: Reading, row: Row, reaction: Reaction) -> Reaction | None:
+    """The reaction time with its share of perception; None where they do not go together."""
+    perception: Quantity | None = row.get("perception")
+    if perception is None:
+        return reaction
+    where = row.at("perception")
+    if reaction.mu is not None:
+        reading.fault(
+            where,
+            "perception and reaction are kept apart only for a fixed time",
+            'reaction_time = "2.5 s", or leave perception out',
+            given=perception.text,
+        )
+    elif reaction.drop_m is not None:
+        reading.fault(
+            where,
+            "a dropped rule measures the whole time; it does not keep the two apart",
+            "leave perception out",
+            given=perception.text,
+        )
+    elif not perception.value < reaction.time_s:
+        reading.fault(
+            where,
+            f"perception is part of the reaction time of {reaction.time_s:g} s and must be shorter",
+            f"above 0 s, below {reaction.time_s:g} s",
+            given=perception.text,
+        )
+    else:
+        return replace(reaction, perception_s=perception.value)
+    return None
