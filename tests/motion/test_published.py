@@ -1,4 +1,5 @@
-"""The mechanics against published distances; tests/published holds each table with its provenance."""
+"""The mechanics against published distances, with a rounding of their own: the claims of tests/published use the
+program's, so that one fault in it could hide there. And fifty measured stops."""
 
 from __future__ import annotations
 
@@ -36,32 +37,6 @@ def test_highway_code_rule_126(reaction_time: float, deceleration: float) -> Non
     for row, thinking, braking in zip(rows, out.reaction_distance_m, out.braking_distance_m, strict=True):
         parts = nearest(float(thinking)), nearest(float(braking))
         assert (*parts, sum(parts)) == (int(row["thinking_m"]), int(row["braking_m"]), int(row["total_m"]))
-
-
-def test_commercial_licence_manual_at_55_mph() -> None:
-    # AAMVA model Commercial Driver License Manual, sections 2.6.1 and 5.4.2, 55 mph on dry pavement.
-    rows = {row["component"]: row for row in published("us_cdl_manual_55mph.csv")}
-    speed = 55 * MPH
-
-    def feet(metres: object) -> float:
-        return float(np.asarray(metres)) / FOOT
-
-    # The times that the manual states, rounded up, give its perception and reaction distances.
-    for component, seconds in (("perception", 1.75), ("reaction", 0.75)):
-        assert rows[component]["stated_time_s"].startswith(str(seconds))
-        out = stop(speed, reaction_time_s=seconds, max_deceleration_mps2=5.0)
-        assert math.ceil(feet(out.reaction_distance_m)) == int(rows[component]["distance_ft"])
-    # The lag of 32 ft is 0.4 s to the nearest foot; the half second of the manual's text would be 40 ft.
-    for seconds, expected in ((0.4, int(rows["air_brake_lag"]["distance_ft"])), (0.5, 40)):
-        out = stop(speed, reaction_time_s=1.0, brake_lag_s=seconds, max_deceleration_mps2=5.0)
-        assert nearest(feet(out.lag_distance_m)) == expected
-    # The braking distance is FITTED, not checked: 15.06 ft/s² is the deceleration that 216 ft at 55 mph comes to.
-    out = stop(speed, reaction_time_s=1.0, max_deceleration_mps2=15.06 * FOOT)
-    assert nearest(feet(out.braking_distance_m)) == int(rows["braking"]["distance_ft"])
-    # Totals: 142 + 61 + 216 = 419, and with the lag 451, printed as "at least 450".
-    total = sum(int(rows[c]["distance_ft"]) for c in ("perception", "reaction", "braking"))
-    assert total == int(rows["total_hydraulic"]["distance_ft"])
-    assert total + int(rows["air_brake_lag"]["distance_ft"]) >= int(rows["total_air_brakes"]["distance_ft"])
 
 
 def test_ezekiels_cars() -> None:
