@@ -73,9 +73,9 @@ def _gaps(reading: Reading, row: Row, made: Made) -> tuple[str, ...]:
                 where, "the catalogue has no such rule", listed(GAP_RULES), given=gap, near=near(gap, GAP_RULES)
             )
         elif GAP_RULES[gap].per_length_s_per_m is not None:
-            for vehicle in (v for v, length in made.lengths.items() if length is None):
-                problem = f'the rule goes by length, and the vehicle "{vehicle}" states none'
-                reading.fault(where, problem, 'length = "16.5 m"', given=gap)
+            used = None if made.rows is None else {combination[1] for combination in made.rows}
+            for vehicle in (v for v, length in made.lengths.items() if length is None and (used is None or v in used)):
+                reading.warn(where, f'{gap} goes by length, and the vehicle "{vehicle}" states none: it gets no gap.')
     return gaps
 
 

@@ -179,6 +179,12 @@ def test_every_question_may_be_asked(edition: Changed) -> None:
     assert made.warnings == ("questions.driver: there is no other driver that could be compared with it.",)
 
 
+def test_a_vehicle_without_a_length_gets_no_gap_by_length(edition: Changed) -> None:
+    assert edition(more='\n[questions]\ngap = "gap/per-length"\n').warnings == (
+        'questions.gap[1]: gap/per-length goes by length, and the vehicle "car" states none: it gets no gap.',
+    )
+
+
 def test_without_questions_none_is_asked(edition: Changed) -> None:
     made = edition()
     assert (made.questions, made.spread, made.compare) == (Questions(), None, True)
