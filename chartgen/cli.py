@@ -30,6 +30,7 @@ if TYPE_CHECKING:
 
 NOT_YET = ("compare", "changes", "proof", "words")
 STARTERS = {"charity": "tarnholt", "fleet": "quillane", "authority": "sarvelle"}
+SHELVES = ("reaction", "surface", "vehicle", "gap", "headlight")
 WARN_BEFORE = timedelta(days=60)
 
 
@@ -115,6 +116,9 @@ def _parser() -> argparse.ArgumentParser:
     figures = add("figures", _figures, "show an edition's table of figures")
     figures.add_argument("edition", metavar="EDITION")
     figures.add_argument("--format", choices=("text", "json", "csv"), default="text", help="text if left out")
+    catalogue = add("catalogue", _catalogue, "list the presets an edition may pick by key, with their sources")
+    catalogue.add_argument("kind", nargs="?", choices=SHELVES, metavar="KIND", help=f"one of {', '.join(SHELVES)}; all")
+    catalogue.add_argument("--format", choices=("text", "json", "csv"), default="text", help="text if left out")
     begin = add("begin", _begin, "start an edition of your own from one of the starters")
     begin.add_argument("starter", choices=tuple(STARTERS), help="whom it is for: charity, fleet or authority")
     begin.add_argument("folder", type=Path, metavar="FOLDER", help="where to put it; must not be there yet")
@@ -129,7 +133,7 @@ def _workers(text: str) -> int:
 
 def _known(argv: Sequence[str]) -> Sequence[str]:
     """`argv`, unless its command is none: then a fault with the name that was most likely meant."""
-    names = ("press", "figures", "preflight", "begin")
+    names = ("press", "figures", "preflight", "catalogue", "begin")
     if not argv:
         raise CommandFault("chartgen: no command was given", ", ".join(names))
     if argv[0] in NOT_YET:
@@ -190,6 +194,18 @@ def _figures(arguments: argparse.Namespace) -> int:
         text = export.to_json(figures) if arguments.format == "json" else export.to_csv(figures)
         _warn(edition, (*edition.warnings, *(notice.text for notice in figures.notices)))
     sys.stdout.write(text if text.endswith("\n") else f"{text}\n")
+    return 0
+
+
+def _catalogue(arguments: argparse.Namespace) -> int:
+    from chartgen.edition import listing
+
+    kinds = [arguments.kind] if arguments.kind else SHELVES
+    if arguments.format == "text":
+        width = shutil.get_terminal_size().columns if sys.stdout.isatty() else 100
+        sys.stdout.write(listing.to_text(kinds, width))
+    else:
+        sys.stdout.write(listing.to_json(kinds) if arguments.format == "json" else listing.to_csv(kinds))
     return 0
 
 

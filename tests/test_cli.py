@@ -23,7 +23,7 @@ from chartgen.errors import ChartgenError, CommandFault, EditionFaults, Fault, F
 
 ROOT = Path(__file__).parents[1]
 NO_NUMBER = "is not a number from 1 to 64.\nRight: see chartgen press --help.\n"
-COMMANDS = "Right: press, figures, preflight, begin.\n"
+COMMANDS = "Right: press, figures, preflight, catalogue, begin.\n"
 
 
 def chartgen(*arguments: str, cwd: Path = ROOT, **environment: str) -> subprocess.CompletedProcess[str]:
