@@ -24,7 +24,7 @@ def sentences(error: ChartgenError) -> tuple[str, ...]:
             return (_end(str(error)),)
 
 
-_COUNTED = re.compile(r"(driver|surface|vehicle|case|poster)\[([0-9]+)\]")
+_COUNTED = re.compile(r"(driver|surface|vehicle|case|poster|limit)\[([0-9]+)\]")
 """Sections that stand in a file more than once: key paths count them from 1, and the message says so in words."""
 
 

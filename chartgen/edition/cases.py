@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 
+from chartgen.edition.methods import FIRST_PRINCIPLES, THUMB, called
 from chartgen.edition.model import Case
 from chartgen.edition.reading import Reading, Row, listed, near
 
@@ -42,6 +43,19 @@ def _case(reading: Reading, row: Row, ids: Mapping[str, tuple[str, ...]]) -> Cas
     if row.broken:
         return None
     return Case(drivers=row["driver"], vehicles=row["vehicle"], surfaces=row["surface"], grades=tuple(grades) or (0.0,))
+
+
+def level(reading: Reading, root: Row, method: str) -> None:
+    """Fault each slope where the method is a rule of thumb, which knows only the level."""
+    for row in root.get("case", []) if method in THUMB else ():
+        for number, grade in enumerate(row.get("grade", ()), 1):
+            if grade.value != 0.0:
+                reading.fault(
+                    f"{row.at('grade')}[{number}]",
+                    f"{called(method)} holds on the level only",
+                    f'"0 %", or method = "{FIRST_PRINCIPLES}"',
+                    given=grade.text,
+                )
 
 
 def known(reading: Reading, where: str, kind: str, given: str, ids: Sequence[str]) -> bool:

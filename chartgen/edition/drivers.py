@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from math import exp, log, sqrt
+from math import exp, log, nan, sqrt
 from statistics import NormalDist
 from typing import Literal
 
 from chartgen.edition.catalogue import DRIVERS
-from chartgen.edition.model import Driver, Reaction
-from chartgen.edition.parts import needed, picked, plain, preset_name, source
+from chartgen.edition.methods import IMPLIED_REACTION_S, needs_time
+from chartgen.edition.model import Driver, Reaction, Source
+from chartgen.edition.parts import cannot_use, needed, picked, plain, preset_name, source
 from chartgen.edition.quantity import Quantity
 from chartgen.edition.reading import Reading, Row
 from chartgen.edition.spec_parts import PERCENTILES, REACTION_BOUNDS
@@ -20,8 +21,13 @@ _Percentile = Literal["p50", "p85", "p95"]
 _TWO_PERCENTILES = 'reaction_time = { p50 = "1.1 s", p85 = "1.6 s" }'
 
 
-def driver(reading: Reading, row: Row) -> Driver | None:
+def driver(reading: Reading, row: Row, method: str) -> Driver | None:
     """One [[driver]]; None where it does not hold together (the faults are noted)."""
+    if not needs_time(method):
+        for key in (k for k in ("use", "reaction_time", "perception", "percentile") if k in row):
+            cannot_use(reading, row, key, method)
+        if "use" not in row and not {"reaction_time", "perception", "percentile"} & set(row):
+            return _within_the_method(reading, row, method)
     preset = picked(reading, row, DRIVERS)
     if preset is None and "use" not in row:
         needed(reading, row, "driver", "name", "reaction_time")
@@ -35,6 +41,18 @@ def driver(reading: Reading, row: Row) -> Driver | None:
     where = source(row) if own_time or "source" in row or preset is None else preset.source
     name = row["name"] if "name" in row or preset is None else preset_name(reading, row, preset.name)
     return Driver(id=row["id"], name=name, reaction=reaction, source=where, preset=preset.key if preset else None)
+
+
+def _within_the_method(reading: Reading, row: Row, method: str) -> Driver | None:
+    """A driver whose reaction time is part of a rule of thumb, or is not told apart by a table that is adopted."""
+    needed(reading, row, "driver", "name")
+    if row.broken:
+        return None
+    time_s = IMPLIED_REACTION_S.get(method, nan)
+    where = source(row)
+    if "source" not in row and method in IMPLIED_REACTION_S:
+        where = Source(text=f"within the rule of thumb {method}: its first term, as a time", kind="rule of thumb")
+    return Driver(id=row["id"], name=row["name"], reaction=Reaction(time_s=time_s), source=where)
 
 
 def _reaction(reading: Reading, row: Row, preset: Reaction | None) -> Reaction | None:

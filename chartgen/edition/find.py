@@ -50,17 +50,18 @@ def _in(folder: Path) -> dict[str, Path]:
     return {file.parent.name: file for file in sorted(folder.glob(f"*/{FILE_NAME}"))}
 
 
-def read_text(file: Path, shown: str) -> str:
-    """The text of a file of an edition: UTF-8, at most 1 MB; a byte-order mark is dropped."""
+def read_text(file: Path, shown: str, most_bytes: int = MOST_BYTES) -> str:
+    """The text of a file of an edition: UTF-8, at most `most_bytes`; a byte-order mark is dropped."""
     try:
         with file.open("rb") as stream:
-            data = stream.read(MOST_BYTES + 1)
+            data = stream.read(most_bytes + 1)
     except OSError as fault:
         raise MachineFault(
             f'"{shown}" cannot be read: {fault.strerror}', "check the file and its permissions"
         ) from fault
-    if len(data) > MOST_BYTES:
-        raise EditionFaults((Fault(shown, "", "the file is larger than 1 MB", "at most 1,000,000 bytes"),))
+    if len(data) > most_bytes:
+        problem = f"the file is larger than {most_bytes // 1_000_000} MB"
+        raise EditionFaults((Fault(shown, "", problem, f"at most {most_bytes:,} bytes"),))
     try:
         return data.decode("utf-8-sig")
     except UnicodeDecodeError as fault:

@@ -15,8 +15,12 @@ from chartgen.edition import parts, prints, scales
 from chartgen.edition import questions as asked
 from chartgen.edition import surfaces as surface_parts
 from chartgen.edition import vehicles as vehicle_parts
+from chartgen.edition.adopt import adopted
 from chartgen.edition.find import edition_file, read_text, read_toml
-from chartgen.edition.model import Edition
+from chartgen.edition.limits import limits as speed_limits
+from chartgen.edition.methods import ADOPTED, FIRST_PRINCIPLES
+from chartgen.edition.model import Edition, Method
+from chartgen.edition.previous import previous
 from chartgen.edition.reading import TAG_PATTERN, Reading, Row, listed, near
 from chartgen.edition.walk import read_table
 from chartgen.edition.wording import own_words
@@ -51,9 +55,10 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     speed_unit, distance_unit, also_unit = scales.units(reading, root)
     speeds = scales.speeds(reading, root, speed_unit)
     figures: Row = root.get("figures", Row("figures"))
-    method = figures.get("method", "first-principles")
+    adopts = "adopt" in figures or "adopt" in figures.broken
+    method: Method = ADOPTED if adopts else figures.get("method", FIRST_PRINCIPLES)
     rounding = scales.rounding(reading, figures, distance_unit, also_unit)
-    drivers = [driver_parts.driver(reading, row) for row in root.get("driver", [])]
+    drivers = [driver_parts.driver(reading, row, method) for row in root.get("driver", [])]
     surfaces = [surface_parts.surface(reading, row, method) for row in root.get("surface", [])]
     vehicles = [vehicle_parts.vehicle(reading, row, method, root["vehicle"]) for row in root.get("vehicle", [])]
     for number, row in enumerate(root.get("poster", []), 1):
@@ -63,6 +68,7 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         parts.unique(reading, root.get(kind, []))
     ids = {kind: _ids(root.get(kind, [])) for kind in ("driver", "vehicle", "surface")}
     cases = case_lists.cases(reading, root, ids)
+    case_lists.level(reading, root, method)
     few_enough = case_lists.few_enough(reading, cases, max(len(speeds), 1))
     words = own_words(reading, folder)
     press: Row = root.get("press", Row("press"))
@@ -84,6 +90,11 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     )
     questions = asked.questions(reading, root.get("questions", Row("questions")), made, method)
     spread = asked.spread(reading, figures.get("spread"), method, drivers, surfaces, made)
+    table = adopted(reading, figures, folder, made)
+    if table is not None:
+        scales.rounding_is_used(reading, figures, table.distance_unit, distance_unit, also_unit)
+    before = previous(reading, head, folder, speed_unit, distance_unit)
+    limits = speed_limits(reading, root.get("limit", []), speed_unit, head.get("issued"))
     posters = _there(prints.poster(reading, row, made) for row in root.get("poster", []))
     cards = prints.cards(reading, root["cards"], folder, made) if "cards" in root else None
     if reading.faults or speed_unit is None or distance_unit is None:
@@ -125,6 +136,9 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         unmade=tuple(reading.unmade),
         questions=questions,
         spread=spread,
+        limits=limits,
+        adopted=table,
+        previous=before,
         compare=figures.get("compare", True),
     )
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from typing import TypeVar
 
+from chartgen.edition.methods import ADOPTED, FIRST_PRINCIPLES, called
 from chartgen.edition.model import Source, Text
 from chartgen.edition.quantity import Quantity
 from chartgen.edition.reading import Reading, Row, listed, near
@@ -13,7 +14,6 @@ from chartgen.edition.walk import example
 
 OWN_ASSUMPTION = Source(text="", kind="publisher")
 """No source stated: printed as the publisher's own assumption."""
-FIRST_PRINCIPLES = "first-principles"
 _P = TypeVar("_P")
 
 
@@ -62,15 +62,20 @@ def source(row: Row) -> Source:
     return Source(text=row["source"]) if "source" in row else OWN_ASSUMPTION
 
 
-def cannot_use(reading: Reading, row: Row, key: str, method: str, value: object = None) -> None:
-    """An input that the method cannot use is a fault: it is never ignored."""
+def cannot_use(reading: Reading, row: Row, key: str, method: str) -> None:
+    """An input that the method cannot use is a fault: it is never ignored. Beside a table that is adopted it may say
+    what its source assumes, and then it is only a warning."""
+    if method == ADOPTED:
+        reading.warn(
+            row.at(key), f"{called(method)} stays as it stands: this is printed beside it, and changes no figure."
+        )
+        return
     row.broken.add(key)
-    given = row.get(key) if value is None else value
     reading.fault(
         row.at(key),
-        f"the method {method} cannot use this",
+        f"{called(method)} cannot use this",
         f'leave it out, or method = "{FIRST_PRINCIPLES}"',
-        given=plain(given),
+        given=plain(row.get(key)),
     )
 
 

@@ -6,8 +6,9 @@ from collections.abc import Sequence
 
 from chartgen.edition.cases import known
 from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
+from chartgen.edition.methods import FIRST_PRINCIPLES, called
 from chartgen.edition.model import Driver, Questions, Spread, Surface
-from chartgen.edition.parts import FIRST_PRINCIPLES
+from chartgen.edition.parts import plain
 from chartgen.edition.prints import Made
 from chartgen.edition.quantity import Quantity
 from chartgen.edition.reading import Reading, Row, listed, near
@@ -23,9 +24,9 @@ def questions(reading: Reading, row: Row, made: Made, method: str) -> Questions:
             value = row[key]
             reading.fault(
                 row.at(key),
-                f"the method {method} gives no motion from which this could be answered",
+                f"{called(method)} gives no motion from which this could be answered",
                 f'leave it out, or method = "{FIRST_PRINCIPLES}"',
-                given=value.text if isinstance(value, Quantity) else value,
+                given=plain(value),
             )
     sight: Quantity | None = row.get("sight")
     headlight: str | None = row.get("headlight")
@@ -116,7 +117,7 @@ def spread(
     if method != FIRST_PRINCIPLES:
         reading.fault(
             row.path,
-            f"the method {method} gives one distance and no spread of it",
+            f"{called(method)} gives one distance and no spread of it",
             f'leave the section out, or method = "{FIRST_PRINCIPLES}"',
         )
     elif not row.broken and None not in drivers and None not in surfaces and made.rows is not None:

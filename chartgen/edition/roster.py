@@ -2,16 +2,12 @@
 
 from __future__ import annotations
 
-import csv
-import io
-import re
 from collections.abc import Mapping
 from pathlib import Path
 
-from chartgen.edition.find import read_text
+from chartgen.edition.beside import csv_lines, text_beside
 from chartgen.edition.model import RosterRow
 from chartgen.edition.reading import Reading, listed, near
-from chartgen.errors import EditionFaults
 
 COLUMNS = ("vehicle_id", "vehicle", "languages", "depot", "holder", "copy_no")
 NEEDED = ("vehicle_id", "vehicle", "languages", "copy_no")
@@ -23,22 +19,12 @@ def read_roster(reading: Reading, folder: Path, name: str, vehicles: Mapping[str
 
     RFC 4180, UTF-8, commas; `languages` holds one tag or several with spaces between. Faults carry line numbers.
     """
-    if not re.fullmatch(r"[A-Za-z0-9][A-Za-z0-9_.-]*\.csv", name):
-        reading.fault("cards.roster", "this is not the name of a file beside edition.toml", '"roster.csv"', given=name)
+    found = text_beside(reading, folder, "cards.roster", name, "roster.csv")
+    if found is None:
         return ()
-    file = folder / name
-    if not file.is_file():
-        reading.fault("cards.roster", "there is no such file beside edition.toml", f"a file {name}", given=name)
-        return ()
-    shown = str(Path(reading.file).parent / name)
-    try:
-        text = read_text(file, shown)
-        lines = list(_lines(text))
-    except EditionFaults as fault:
-        reading.faults.extend(fault.faults)
-        return ()
-    except csv.Error as fault:
-        reading.fault("", f"this is not CSV: {fault}", "one row a card, commas between", file=shown)
+    text, shown = found
+    lines = csv_lines(reading, text, shown)
+    if lines is None:
         return ()
     if not _header(reading, shown, lines[0][1] if lines else []):
         return ()
@@ -51,17 +37,8 @@ def read_roster(reading: Reading, folder: Path, name: str, vehicles: Mapping[str
     return tuple(good)
 
 
-def _lines(text: str) -> list[tuple[int, list[str]]]:
-    """Rows that hold anything, each with the number of its last line."""
-    reader = csv.reader(io.StringIO(text, newline=""), strict=True)
-    return [(reader.line_num, [cell.strip() for cell in cells]) for cells in reader if any(c.strip() for c in cells)]
-
-
 def _header(reading: Reading, shown: str, columns: list[str]) -> bool:
     before = len(reading.faults)
-    if len(columns) == 1 and ";" in columns[0]:
-        reading.fault("line 1", "the columns are separated by semicolons", "commas between the columns", file=shown)
-        return False
     for number, column in enumerate(columns):
         if column not in COLUMNS:
             reading.fault(

@@ -8,6 +8,7 @@ from typing import cast
 
 from chartgen.edition.measures import SPEED
 from chartgen.edition.model import PARTS, DistanceUnit, Rounding, SpeedUnit
+from chartgen.edition.parts import plain
 from chartgen.edition.quantity import Quantity, factor
 from chartgen.edition.reading import Reading, Row
 from chartgen.edition.spec import DISTANCE_NAMES, SPEED_NAMES
@@ -143,6 +144,21 @@ def rounding(reading: Reading, figures: Row, unit: str | None, also: str | None)
     else:
         also_step = _step(reading, row, "also_step", also)
     return Rounding(step=_step(reading, row, "step", unit), also_step=also_step, rules=rules, total=total)
+
+
+def rounding_is_used(reading: Reading, figures: Row, given: DistanceUnit, unit: str | None, also: str | None) -> None:
+    """Fault each rounding key that an adopted table leaves without effect: only where its unit `given` is not the
+    printed one are its numbers converted, and then rounded."""
+    row: Row = figures.get("rounding", Row("figures.rounding"))
+    converted = {"step": unit != given, "also_step": also is not None and also != given}
+    for key in row:
+        if not converted.get(key, any(converted.values())):
+            reading.fault(
+                row.at(key),
+                "a table that is adopted stays as it stands; it is rounded only where its distances are converted",
+                "leave it out",
+                given=plain(row[key]),
+            )
 
 
 def _step(reading: Reading, row: Row, key: str, unit: str | None) -> float:

@@ -8,10 +8,10 @@ from __future__ import annotations
 
 from chartgen.edition import measures as q
 from chartgen.edition.key import Bounds, Key
-from chartgen.edition.spec_parts import DRIVER, FRICTION, REACTION, SURFACE, TRAILER, VEHICLE
+from chartgen.edition.methods import METHODS
+from chartgen.edition.spec_parts import DRIVER, FRICTION, KINDS, OTHER_KINDS, REACTION, SURFACE, TRAILER, VEHICLE
 
 LAYOUTS_LATER = ("trail", "fan", "leftover")
-METHODS = ("first-principles", "sight-metric", "sight-us", "slide-metric", "slide-us")
 PALETTES = ("gorse", "lichen", "bracken")
 
 
@@ -33,6 +33,7 @@ EDITION: dict[str, Key] = {
     "owner": Key(says="Who looks after the document.", form="text"),
     "approver": Key(says="Who approved it.", form="text"),
     "licence": Key(says="Under which licence others may use it.", form="text"),
+    "previous": Key(says="Figures (JSON) of the issue before, in the edition's folder.", form="text"),
     "palette": Key(says="Set of inks.", form="choice", choices=PALETTES),
 }
 LANGUAGES: dict[str, Key] = {
@@ -69,9 +70,8 @@ _STEP = Bounds(least=0, above=True, most=100, says="above 0, up to 100")
 FIGURES: dict[str, Key] = {
     "method": Key(says="How distances are worked out.", form="choice", choices=METHODS),
     "rounding": Key(says="How figures are rounded.", form="table", table="rounding"),
-    "adopt": Key(
-        says="A published table, adopted as it stands.", form="text", not_yet="a published table cannot be adopted yet"
-    ),
+    "adopt": Key(says="A published table, adopted as it stands: CSV in the edition's folder.", form="text"),
+    "adopt_source": Key(says="Where the adopted table comes from; needed with it.", form="text"),
     "spread": Key(
         says="Percentiles of the stopping distance over reaction time and friction.", form="table", table="spread"
     ),
@@ -153,6 +153,13 @@ CARDS: dict[str, Key] = {
     "grade": Key(says="Grade.", form="quantity", measure=q.GRADE, bounds=GRADE_BOUNDS),
     "gap": Key(says="Following-gap rule of the catalogue.", form="use"),
 }
+LIMIT: dict[str, Key] = {
+    "name": Key(says="Where or for whom it holds, by language.", form="texts", needed=True),
+    "speed": Key(says="The limit, in the edition's unit.", form="quantity", measure=q.SPEED, needed=True),
+    "as_at": Key(says="Day on which it was looked up.", form="date", needed=True),
+    "source": Key(says="Where it is laid down.", form="text", needed=True),
+    "kinds": Key(says="Vehicles it is for; all if left out.", form="choices", choices=KINDS, meant=OTHER_KINDS),
+}
 QUESTIONS: dict[str, Key] = {
     "residual_from": Key(
         says="One of the speeds: where the vehicle that began at it has stopped, how fast are faster ones still going?",
@@ -193,6 +200,7 @@ ROOT: dict[str, Key] = {
     "case": Key(
         says="Which go together: the product of the lists; with none, everything.", form="tables", table="case"
     ),
+    "limit": Key(says="Speed limits in force.", form="tables", table="limit"),
     "questions": Key(says="What is asked beside the distances.", form="table", table="questions"),
     "poster": Key(says="Posters.", form="tables", table="poster"),
     "cards": Key(says="Cab cards.", form="table", table="cards"),
@@ -202,5 +210,6 @@ TABLES: dict[str, dict[str, Key]] = {
     "": ROOT, "edition": EDITION, "languages": LANGUAGES, "units": UNITS, "speeds": SPEEDS, "figures": FIGURES,
     "rounding": ROUNDING, "rules": RULES, "spread": SPREAD, "driver": DRIVER, "reaction": REACTION, "surface": SURFACE,
     "friction": FRICTION, "vehicle": VEHICLE, "trailer": TRAILER, "case": CASE, "questions": QUESTIONS,
+    "limit": LIMIT,
     "poster": POSTER, "show": SHOW, "cards": CARDS, "press": PRESS,
 }  # fmt: skip

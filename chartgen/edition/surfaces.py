@@ -9,8 +9,9 @@ from typing import Any, Literal, cast
 from chartgen.edition.catalogue import SURFACES
 from chartgen.edition.curves import at_60, greatest, penn_state, reference_kmh, speed_constant
 from chartgen.edition.measures import SPEED
+from chartgen.edition.methods import ADOPTED, THUMB, needs_friction
 from chartgen.edition.model import Friction, Surface
-from chartgen.edition.parts import needed, picked, plain, preset_name, source
+from chartgen.edition.parts import cannot_use, needed, picked, plain, preset_name, source
 from chartgen.edition.quantity import Quantity, factor
 from chartgen.edition.reading import Reading, Row
 from chartgen.edition.scales import FASTEST_MPS
@@ -25,13 +26,10 @@ _KEYS = ("friction", "friction_range", "valid")
 def surface(reading: Reading, row: Row, method: str) -> Surface | None:
     """One [[surface]]; None where it does not hold together."""
     preset = picked(reading, row, SURFACES)
-    sight = method.startswith("sight-")
     if preset is None and "use" not in row:
-        needed(reading, row, "surface", "name", *(() if sight else ("friction",)))
+        needed(reading, row, "surface", "name", *(("friction",) if needs_friction(method) else ()))
     friction = _friction(reading, row) if "friction" in row else (preset.friction if preset else Friction())
-    if sight:
-        for key in (k for k in _KEYS if k in row):
-            reading.warn(row.at(key), f"the method {method} does not use friction; the value has no effect.")
+    _unused(reading, row, method)
     if friction is not None and "friction" not in row.broken:
         friction = _limits(reading, row, friction)
     if row.broken or friction is None:
@@ -47,6 +45,15 @@ def surface(reading: Reading, row: Row, method: str) -> Surface | None:
         state=row.get("state") or (cast("_State", preset.state) if preset else _state_of(row["id"])),
         preset=preset.key if preset else None,
     )
+
+
+def _unused(reading: Reading, row: Row, method: str) -> None:
+    if method in THUMB or method == ADOPTED:
+        for key in (k for k in ("use", *_KEYS) if k in row):
+            cannot_use(reading, row, key, method)
+    elif not needs_friction(method):
+        for key in (k for k in _KEYS if k in row):
+            reading.warn(row.at(key), f"the method {method} does not use friction; the value has no effect.")
 
 
 def _state_of(surface_id: str) -> _State | None:

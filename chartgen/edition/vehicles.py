@@ -6,8 +6,9 @@ from collections.abc import Sequence
 from typing import Any, cast
 
 from chartgen.edition.catalogue import VEHICLES, VehiclePreset
+from chartgen.edition.methods import ADOPTED, FIRST_PRINCIPLES, THUMB
 from chartgen.edition.model import Trailer, Vehicle
-from chartgen.edition.parts import FIRST_PRINCIPLES, cannot_use, needed, picked, preset_name, source
+from chartgen.edition.parts import cannot_use, needed, picked, preset_name, source
 from chartgen.edition.quantity import Quantity
 from chartgen.edition.reading import Reading, Row, listed, near
 from chartgen.edition.spec_parts import NEEDS_LIMIT
@@ -102,7 +103,9 @@ def _method_inputs(
     if method != FIRST_PRINCIPLES and _is_drag(row):
         cannot_use(reading, row, "trailer", method)
     of_preset = [key for key in _INSIDE if key in unused and key not in row and brakes[key] != _UNSET[key]]
-    if of_preset and preset is not None:
+    if of_preset and preset is not None and method == ADOPTED:
+        cannot_use(reading, row, "use", method)
+    elif of_preset and preset is not None:
         row.broken.add("use")
         reading.fault(
             row.at("use"),
@@ -116,6 +119,8 @@ def _unused(method: str) -> set[str]:
     """Keys of how it brakes that the method cannot use."""
     if method == FIRST_PRINCIPLES:
         return set()
+    if method in THUMB or method == ADOPTED:
+        return set(_INSIDE)
     unused = {"brake_lag", "build_up"}
     unused |= {"max_deceleration"} if method.startswith("slide-") else set()
     unused |= {"brake_efficiency"} if method.startswith("sight-") else set()
