@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import json
 from collections.abc import Mapping
-from math import isfinite
 from pathlib import Path
 from typing import Any
 
@@ -16,6 +15,8 @@ MOST_BYTES = 50_000_000
 """5,000 rows with their traces take about 10 MB."""
 MOST_FAULTS = 10
 """Rows that are named one by one."""
+MOST = 1e9
+"""No number of a figure is as large; infinity and what is no number at all are not less either."""
 _RIGHT = "the figures (JSON) of the issue before, as they were made"
 
 
@@ -109,4 +110,4 @@ def _odd(row: object) -> str | None:
 
 
 def _is_number(value: object) -> bool:
-    return isinstance(value, (int, float)) and not isinstance(value, bool) and isfinite(value)
+    return isinstance(value, (int, float)) and not isinstance(value, bool) and abs(value) < MOST

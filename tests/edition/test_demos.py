@@ -122,7 +122,10 @@ def test_the_schema_is_one() -> None:
     jsonschema.Draft202012Validator.check_schema(schema())
 
 
-@pytest.mark.parametrize("folder", [*(ROOT / "site_config" / name for name in DEMOS), EXAMPLE], ids=lambda f: f.name)
+EXAMPLES = [EXAMPLE, *(EXAMPLE.with_name(name) for name in ("asked", "adopted"))]
+
+
+@pytest.mark.parametrize("folder", [*(ROOT / "site_config" / name for name in DEMOS), *EXAMPLES], ids=lambda f: f.name)
 def test_demos_and_example_are_valid_by_the_schema(folder: Path) -> None:
     raw = tomllib.loads((folder / "edition.toml").read_text(encoding="utf-8"))
     jsonschema.validate(plain(raw), json.loads(schema_text()), jsonschema.Draft202012Validator)
@@ -145,6 +148,28 @@ def test_the_schema_finds_what_an_editor_can_find(spoil: Any) -> None:
     spoil(raw)
     with pytest.raises(jsonschema.ValidationError):
         jsonschema.validate(raw, schema(), jsonschema.Draft202012Validator)
+
+
+def test_every_key_is_tried_in_some_example() -> None:
+    """What `test_sturdy` spoils in every place is the whole of the description."""
+    tried = {key for folder in EXAMPLES for key in every_key(raw_edition(folder))}
+    assert {key for table in TABLES.values() for key, about in table.items() if not about.not_yet} <= tried | BY_STEPS
+
+
+BY_STEPS = {"from", "to", "by", "speed", "distance"}
+"""Keys that stand in the place of others, which the examples have; see `test_load`."""
+
+
+def raw_edition(folder: Path) -> dict[str, Any]:
+    return tomllib.loads((folder / "edition.toml").read_text(encoding="utf-8"))
+
+
+def every_key(value: Any) -> Iterator[str]:
+    for key, item in value.items() if isinstance(value, dict) else ():
+        yield key
+        yield from every_key(item)
+    for item in value if isinstance(value, list) else ():
+        yield from every_key(item)
 
 
 def test_every_key_of_the_example_is_described() -> None:
