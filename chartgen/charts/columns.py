@@ -15,7 +15,7 @@ from typing import Literal
 import pandas as pd
 
 from chartgen.charts import canvas, columns_marks, measures
-from chartgen.charts.columns_data import Group, groups
+from chartgen.charts.columns_data import Group, groups, has_spread
 from chartgen.charts.columns_frame import Frame, Needs, frame
 from chartgen.charts.columns_names import names
 from chartgen.charts.columns_text import Placed, Plate, Spot, Task, numbers, ruler, speeds, totals
@@ -81,6 +81,8 @@ def plan(
     if len(series) > 1 and len(names_of_series) != len(series):
         raise ValueError("each of several series needs a name")
     m = measures.poster(width_mm, height_mm) if medium == "poster" else measures.web(width_mm, height_mm)
+    if has_spread(made):
+        m = replace(m, gutter=max(m.gutter, 2.0 * m.whisker), pair=max(m.pair, 2.0 * m.whisker))
     task = Task(
         groups=made,
         readers=Readers(languages, together),
@@ -89,6 +91,7 @@ def plan(
         drivers=tuple(Name(tuple(sorted(texts.items()))) for texts in names_of_series) if len(series) > 1 else (),
         speed_unit=speed_unit,
         distance_unit=distance_unit,
+        lanes=not has_spread(made),
     )
     settled = _settle(task, width_mm, height_mm)
     if any((settled.needs.start_lane, settled.needs.end_lane, settled.needs.before_groups, settled.needs.after_groups)):
@@ -121,7 +124,8 @@ def _worth_its_lanes(made: Plan, without: Plan) -> bool:
 
 def _settle(task: Task, width_mm: float, height_mm: float) -> Plan:
     """Stand the columns, place the words, grant the room they ask for, again until nothing more is asked."""
-    needs = Needs()
+    # A whisker behind the last column keeps clear of the ruler.
+    needs = Needs(end_lane=1.5 * task.measures.whisker) if has_spread(task.groups) else Needs()
     while True:
         still = frame(
             task.groups, task.readers, task.measures, needs,
@@ -229,7 +233,8 @@ def finish(plan: Plan, *, name: str, languages: tuple[Words, ...], palette: Pale
         name=name, width_mm=still.width, height_mm=still.height, direction=direction,
         marks_svg=draw(plan, palette, direction), labels=write(plan, languages, direction),
         total_digit_mm=plan.total_digit_mm, unlabelled=plan.unlabelled, course=still.course if jointed else 0.0,
-        scale_mm_per_m=still.scale, skyline=_skyline(plan, direction),
+        spread=any(post.bar.spread_m is not None for post in still.posts), scale_mm_per_m=still.scale,
+        skyline=_skyline(plan, direction),
     )  # fmt: skip
 
 

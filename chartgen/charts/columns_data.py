@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Hashable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any, Final, Literal
@@ -9,12 +10,14 @@ from typing import Any, Final, Literal
 import pandas as pd
 
 from chartgen.charts.words import Number
+from chartgen.figures.notices import OUTSIDE
 
 Part = Literal["reaction", "lag", "braking"]
 PARTS: Final[tuple[Part, ...]] = ("reaction", "lag", "braking")
 _FIELDS: Final = (
     "row", "speed", "printed_speed", "stops", "reaction_distance_m", "lag_distance_m", "braking_distance_m",
     "stopping_distance_m", "printed_reaction", "printed_lag", "printed_braking", "printed_stopping",
+    "reason", "stopping_p50_m", "stopping_p85_m", "stopping_p95_m",
 )  # fmt: skip
 MOST_SERIES: Final = 3
 """Scenarios side by side (requirement N8)."""
@@ -33,6 +36,8 @@ class Bar:
     lengths_m: tuple[float, ...]
     printed: tuple[float, ...]
     printed_total: float
+    spread_m: tuple[float, float, float] | None = None
+    """Within these distances 50, 85 and 95 of 100 stops end; None where nothing varies, or not all of them end."""
 
     @property
     def known_m(self) -> float:
@@ -68,7 +73,18 @@ def _bar(record: Mapping[Hashable, Any], *, with_lag: bool) -> Bar:
         lengths_m=tuple(lengths[i] for i in kept),
         printed=tuple(float(record[f"printed_{measured[i]}"]) for i in kept),
         printed_total=float(record["printed_stopping"]),
+        spread_m=_spread(record) if stops else None,
     )
+
+
+def _spread(record: Mapping[Hashable, Any]) -> tuple[float, float, float] | None:
+    low, middle, high = (float(record.get(f"stopping_p{percent}_m", math.nan)) for percent in (50, 85, 95))
+    return (low, middle, high) if math.isfinite(low + middle + high) else None
+
+
+def has_spread(groups: tuple[Group, ...]) -> bool:
+    """Whether any column has a whisker."""
+    return any(bar.spread_m is not None for bar in all_bars(groups))
 
 
 def groups(series: Sequence[pd.DataFrame]) -> tuple[Group, ...]:
@@ -81,7 +97,9 @@ def groups(series: Sequence[pd.DataFrame]) -> tuple[Group, ...]:
         raise ValueError(f"one to {MOST_SERIES} series, not {len(series)}")
     found: list[dict[float, Bar]] = []
     for frame in series:
-        records = frame[list(_FIELDS)].to_dict("records")
+        # A row without a figure for want of a measured friction is a gap: it must not look like one that never ends.
+        known = frame[[name for name in _FIELDS if name in frame]].to_dict("records")
+        records = [record for record in known if record.get("reason") != OUTSIDE]
         with_lag = any(record["lag_distance_m"] > 0 for record in records)
         bars = [_bar(record, with_lag=with_lag) for record in records]
         by_speed = {bar.speed: bar for bar in bars}

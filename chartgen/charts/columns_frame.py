@@ -14,6 +14,7 @@ from chartgen.charts.columns_data import (
     all_bars,
     distance_decimals,
     distances,
+    has_spread,
     speed_contents,
 )
 from chartgen.charts.columns_ruler import course_step, ruler_ticks
@@ -256,7 +257,8 @@ def _seated(
     if not widest:
         return attempt(m.total_least)[:3]
     pillar = min(m.total, row.column / widest)
-    greatest = min(m.total, 1.6 * row.column / widest)
+    # A whisker stands beside its column: there a total keeps to its pillar.
+    greatest = pillar if has_spread(groups) else min(m.total, 1.6 * row.column / widest)
     # A little larger is not worth leaving the pillar for.
     wishes = [greatest * (pillar * 1.1 / greatest) ** (i / 6) for i in range(7)] if greatest > 1.1 * pillar else []
     for size in (*wishes, pillar, (pillar + m.total_least) / 2, m.total_least):
@@ -286,6 +288,9 @@ def _scale(groups: tuple[Group, ...], base_y: float, total_size: float, air: flo
         wishes.append((base_y - top) / max(ending))
     if endless and max(endless) > 0:
         wishes.append(0.45 * (base_y - head) / max(endless))
+    spreads = [bar.spread_m[-1] for bar in all_bars(groups) if bar.spread_m is not None]
+    if spreads:
+        wishes.append((base_y - 1.0) / max(spreads))
     if not wishes or not max(wishes) > 0:
         raise ValueError("nothing to draw, or no room to draw it in")
     return min(wishes)

@@ -46,6 +46,7 @@ def pieces(
                 _lag(sheet, post, edge, here, m)
             else:
                 _braking(sheet, frame, post, edge, here, m)
+        _whisker(sheet, frame, post, m)
     for x0, y0, x1, y1 in lintels:
         sheet.add("braking", rectangle(x0, y0, x1, y1))
     sheet.add("type", *strokes)
@@ -54,6 +55,18 @@ def pieces(
         for x0, x1 in frame.spans:
             sheet.add("type", rectangle(x0, frame.base_y + 0.15, x1, frame.base_y + 0.15 + m.outline))
     return sheet.pieces()
+
+
+def _whisker(sheet: _Sheet, frame: Frame, post: Post, m: Measures) -> None:
+    """Beside its column: a line between the distances within which half and 95 of 100 stops end, a dot at 85."""
+    if post.bar.spread_m is None:
+        return
+    x, half, line = post.x1 + m.whisker, m.whisker / 2, m.hairline * 1.6
+    foot, dot, top = (frame.base_y - metres * frame.scale for metres in post.bar.spread_m)
+    sheet.add("type", rectangle(x - line / 2, top, x + line / 2, foot))
+    sheet.add("type", rectangle(x - half, top - line / 2, x + half, top + line / 2))
+    sheet.add("type", rectangle(x - half, foot - line / 2, x + half, foot + line / 2))
+    sheet.add("type", ((x, dot - half), (x + half, dot), (x, dot + half), (x - half, dot)))
 
 
 def _reaction(sheet: _Sheet, post: Post, edge: Edge, plates: list[Plate], m: Measures) -> None:

@@ -58,6 +58,8 @@ class Drawing:
     unlabelled: tuple[int, ...] = ()
     course: float = 0.0
     scale_mm_per_m: float = 0.0
+    spread: bool = False
+    """True where whiskers stand beside columns; what they mean has to be said."""
     skyline: tuple[tuple[float, float, float], ...] = ()
 
 

@@ -45,6 +45,8 @@ class Measures:
     hairline: float
     """Leaders, poles and ticks: at least 0.5 pt = 0.18 mm (facts of print)."""
     pad: float
+    whisker: float
+    """Width of a whisker's ends; it stands in the middle of twice that room."""
     broken: float
     """Height of the broken top of a column that does not end."""
 
@@ -61,7 +63,7 @@ def poster(width_mm: float, height_mm: float) -> Measures:
         gutter=4 * k, pair=1.2 * max(k, 0.7), gap=max(0.8 * k, 0.6), joint=max(0.5 * k, 0.5), outline=0.5,
         joint_clear=max(1.2 * k, 1.0),
         upright_pitch=3.8 * k, upright=max(0.35 * k, 0.25), hatch_pitch=3.4 * k, hatch=max(0.8 * k, 0.45),
-        tick=4 * k, hairline=max(0.35 * k, 0.25), pad=max(1.1 * k, 0.8), broken=16 * k,
+        tick=4 * k, hairline=max(0.35 * k, 0.25), pad=max(1.1 * k, 0.8), broken=16 * k, whisker=max(1.6 * k, 1.0),
     )  # fmt: skip
 
 
@@ -74,4 +76,5 @@ def web(width_mm: float, height_mm: float) -> Measures:
         speed=6 * k, unit=3.2, ruler=3.0, band=8.5 * k, gutter=2.4 * k, pair=0.9, gap=0.8, joint=0.5, outline=0.5,
         joint_clear=1.2,
         upright_pitch=2.2, upright=0.25, hatch_pitch=2.0, hatch=0.5, tick=2.0, hairline=0.25, pad=0.7, broken=8 * k,
+        whisker=1.1,
     )  # fmt: skip

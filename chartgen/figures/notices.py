@@ -1,7 +1,8 @@
 """What is odd about an edition's figures, and what the reader must be told. Codes are stable; tests assert them.
 
 `unusual-value` (found while reading the edition), `design-reaction-hybrid` and `gap-unknown` are for the publisher;
-`unladen-shorter`, `wet-shorter`, `does-not-stop` and `may-be-short` are for the reader as well.
+`spread-endless` too; `unladen-shorter`, `wet-shorter`, `does-not-stop`, `outside-friction-range`, `test-figure` and
+`may-be-short` are for the reader as well.
 """
 
 from __future__ import annotations
@@ -27,9 +28,13 @@ EMERGENCY_MPS2: Final = 4.5
 """Above this a deceleration is one of an emergency: the Green Book says that most drivers brake harder than 4.5 m/s²
 when they must stop for the unexpected, and designs with 3.4. From memory."""
 
+OUTSIDE: Final = "outside-friction-range"
+"""The reason of a row that is a gap: nobody has measured the friction at such a speed."""
+
 REASONS: Final[Mapping[str, str]] = {
     "too-little-friction": "the friction leaves less than 0.1 m/s² of braking on this slope",
     "never-at-rest": "the slope pulls at least as hard as the brakes can hold",
+    OUTSIDE: "it is faster than the source of its friction speaks of",
 }
 
 
@@ -44,6 +49,8 @@ def notices(table: pd.DataFrame, edition: Edition) -> tuple[Notice, ...]:
         found += _wet_shorter(at, edition, case, number)
     found += _hybrid(rows)
     found += _does_not_stop(rows, edition)
+    found += _test_figure(rows, edition)
+    found += _spread_endless(table, edition)
     found += _gap_unknown(rows, edition)
     found += _may_be_short(table, edition)
     once: dict[tuple[str, tuple[int, ...], str], Notice] = {}
@@ -145,7 +152,8 @@ def _hybrid(rows: list[_Row]) -> Iterator[Notice]:
 
 
 def _does_not_stop(rows: list[_Row], edition: Edition) -> Iterator[Notice]:
-    odd = [row for row in rows if not row.stops]
+    yield from _outside(rows, edition)
+    odd = [row for row in rows if not row.stops and row.reason != OUTSIDE]
     for (vehicle, surface, grade, reason), some in _by(odd, "vehicle", "surface", "grade", "reason").items():
         yield Notice(
             code="does-not-stop",
@@ -154,6 +162,46 @@ def _does_not_stop(rows: list[_Row], edition: Edition) -> Iterator[Notice]:
             reader=True,
             fields={"vehicle": vehicle, "surface": surface, "grade": repr(grade), "reason": reason},
             rows=_numbers(some),
+        )
+
+
+def _outside(rows: list[_Row], edition: Edition) -> Iterator[Notice]:
+    odd = [row for row in rows if row.reason == OUTSIDE]
+    for (surface,), some in _by(odd, "surface").items():
+        yield Notice(
+            code=OUTSIDE,
+            text=f"Surface “{surface}”: there is no figure for {_speeds(some, edition)}: {REASONS[OUTSIDE]}.",
+            reader=True,
+            fields={"surface": surface},
+            rows=_numbers(some),
+        )
+
+
+def _test_figure(rows: list[_Row], edition: Edition) -> Iterator[Notice]:
+    """A brake test's deceleration inside a total: it holds on a test track, with a driver who waits for the signal."""
+    on_test = {v.id for v in edition.vehicles if v.test_figure}
+    odd = [row for row in rows if row.vehicle in on_test or (edition.adopted and edition.adopted.test_figure)]
+    for (vehicle,), some in _by(odd, "vehicle").items():
+        yield Notice(
+            code="test-figure",
+            text=f"Vehicle “{vehicle}” brakes as a regulation's brake test asks; such a figure is not one of the road, "
+            "and stands here in a total.",
+            reader=True,
+            fields={"vehicle": vehicle},
+            rows=_numbers(some),
+        )
+
+
+def _spread_endless(table: pd.DataFrame, edition: Edition) -> Iterator[Notice]:
+    """Percentiles that lie among stops which never end are left out."""
+    if edition.spread is None:
+        return
+    lost = table["stops"] & table["stopping_p95_m"].isna() & ~table["spread_error_m"].isna()
+    if lost.any():
+        yield Notice(
+            code="spread-endless",
+            text="In some rows so many sampled stops never end that a percentile does not exist; it is left out.",
+            rows=tuple(int(row) for row in table.loc[lost, "row"]),
         )
 
 

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
+import pandas as pd
 import pytest
 
 from chartgen.charts import columns, raster
 from chartgen.charts.drawing import Drawing, Label
 from chartgen.charts.inks import Palette, palette
+from chartgen.charts.rungs import Rung, rungs
 from chartgen.errors import MachineFault
 from tests.charts import golden
 from tests.charts.made import AR, CY, EN, FR, rows
@@ -26,6 +29,14 @@ POSTER: dict[str, Any] = {
     "distance_unit": "m", "speed_unit": "mph",
 }  # fmt: skip
 WEB: dict[str, Any] = {**POSTER, "languages": (EN,), "width_mm": 180, "height_mm": 104, "medium": "web"}
+
+
+
+def spread(frame: pd.DataFrame) -> pd.DataFrame:
+    """The rows with whiskers, invented: from a fifth under the stopping distance to a quarter over it."""
+    shares = {"stopping_p50_m": 0.8, "stopping_p85_m": 1.0, "stopping_p95_m": 1.25}
+    return frame.assign(**{name: frame["stopping_distance_m"] * share for name, share in shares.items()})
+
 
 PICTURES: dict[str, dict[str, Any]] = {
     "columns": {**POSTER, "series": [rows(MPH)]},
@@ -44,7 +55,17 @@ PICTURES: dict[str, dict[str, Any]] = {
         **WEB, "series": [rows((30, 50, 70, 90, 110), lag_s=0.4, deceleration=[5, 5, 0.6, 0, 0], speed_unit="km/h")],
         "languages": (AR,), "direction": "rtl", "speed_unit": "km/h",
     },
+    "columns-spread": {**POSTER, "series": [spread(rows(MPH))]},
+    "columns-spread-web-rtl": {
+        **WEB, "series": [spread(rows((30, 50, 70, 90), speed_unit="km/h", reaction_s=t)) for t in (0.7, 1.5)],
+        "names_of_series": ({"ar": "سائق نموذجي"}, {"ar": "سائق متفاجئ"}),
+        "languages": (AR,), "direction": "rtl", "speed_unit": "km/h",
+    },
 }  # fmt: skip
+RUNGS: dict[str, dict[str, Any]] = {
+    "rungs": {"language": EN, "bars": ("from 40 mph", "from 50 mph", "from 60 mph")},
+    "rungs-rtl": {"language": AR, "bars": ("سيارة على طريق جاف", "سيارة على طريق مبلل", "حافلة على جليد في منحدر")},
+}
 
 
 def picture(name: str) -> tuple[Drawing, Palette, float]:
@@ -93,3 +114,14 @@ def test_a_missing_glyph_is_an_error() -> None:
     first, *others = drawing.labels
     with pytest.raises(MachineFault, match=r"U\+505C"):
         raster.png(replace(drawing, labels=(replace(first, text="停"), *others)), inks, dpi)
+
+
+@pytest.mark.parametrize("name", RUNGS)
+def test_rungs(name: str) -> None:
+    language, inks = RUNGS[name]["language"], palette("gorse")
+    pairs = zip(RUNGS[name]["bars"], (9, 21, 34), strict=True)
+    bars = [Rung(name=text, length=length, figure=f"{length:g}") for text, length in pairs]
+    verdict = language.t("verdict.does_not_stop")
+    never = Rung(name=bars[0].name, length=math.nan, figure=verdict, words=True)
+    drawing = rungs([*bars, never], name=name, language=language, palette=inks, width_mm=180)
+    assert golden.compare(name, raster.png(drawing, inks, 80.0)) is None
