@@ -84,3 +84,21 @@ def test_licence_manual_at_55_mph(published: Path) -> None:
     assert theirs["total_air_brakes"] == 450.0
     # 2.5 s in one piece are 201.7 ft, printed 202: the manual's 203 is a sum of two rounded parts.
     assert one("both", "air")["printed_reaction"] == 202.0
+
+
+@pytest.mark.parametrize("condition", ["surprise", "expected"])
+def test_two_percentiles_of_a_reaction_time_give_the_third(condition: str, published: Path, tmp_path: Path) -> None:
+    """Koppa, Traffic Flow Theory, chapter 3 (in part from memory): the printed p95 from p50 and p85, within 0.01 s."""
+    theirs = next(
+        row
+        for row in printed_in(published / "prt_distributions.csv")
+        if row["study"].startswith("Koppa") and row["condition"] == condition
+    )
+    text = (DATA / "rule126" / "edition.toml").read_text(encoding="utf-8")
+    stated = f'{{ p50 = "{theirs["p50"]} s", p85 = "{theirs["p85"]} s" }}\npercentile = "p95"'
+    assert text.count('"0.6818 s"') == 1
+    (tmp_path / "edition.toml").write_text(text.replace('"0.6818 s"', stated), encoding="utf-8")
+    reaction = load_edition(tmp_path).driver("thinking").reaction
+    assert reaction.time_s == pytest.approx(float(theirs["p95"]), abs=0.01)
+    assert reaction.mu == pytest.approx(float(theirs["lognormal_lambda"]), abs=0.01)
+    assert reaction.sigma == pytest.approx(float(theirs["lognormal_zeta"]), abs=0.01)
