@@ -39,6 +39,7 @@ REACTION: dict[str, Key] = {
         says="Fall of a dropped rule until it was caught: a group's own measurement, t = sqrt(2 s/g).",
         form="quantity",
         measure=q.FALL,
+        bounds=Bounds(least=0, above=True, most=10, says="above 0 m, up to 10 m"),
     ),
 }
 DRIVER: dict[str, Key] = {
