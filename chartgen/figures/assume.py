@@ -87,6 +87,10 @@ class Assumption:
     load: Literal["laden", "unladen"] | None
     rounding: Rounded
     method: Method
+    perception_s: float | None = None
+    """The share of the reaction time that passes before the foot moves, where the source keeps it apart."""
+    adopted: str | None = None
+    """Source of a published table that is printed as it stands: then nothing else here is known but the names."""
 
 
 def assumptions(edition: Edition, rows: pd.DataFrame | pd.Series, sheet: pd.DataFrame | None = None) -> Assumption:
@@ -130,6 +134,8 @@ def assumptions(edition: Edition, rows: pd.DataFrame | pd.Series, sheet: pd.Data
             short=may_be_short(table if sheet is None else sheet, edition),
         ),
         method=edition.method,
+        perception_s=driver.reaction.perception_s,
+        adopted=edition.adopted.source.text if edition.adopted else None,
     )
 
 

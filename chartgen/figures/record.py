@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy.typing as npt
 
-from chartgen.edition.model import DistanceUnit, Method, Rounding, Source, SpeedUnit
+from chartgen.edition.model import DistanceUnit, Method, Questions, Rounding, Source, SpeedUnit, Spread
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -41,7 +41,8 @@ class Figures:
 
     `table`: one row a case, driver, vehicle, surface, grade and speed, in that order (columns: `table.COLUMNS`).
     `sources`: where the values come from, by key ("driver/ready", "surface/dry", "vehicle/lorry", "gap/…"); a row's
-    trace names the keys. `gap_rule`: key of the following-gap rule, None without cab cards.
+    trace names the keys. `gap_rule`: key of the cards' following-gap rule, None without cab cards. `questions` and
+    `spread`: what the edition asks for, so that those who print know which columns have a meaning.
     """
 
     edition_id: str
@@ -54,3 +55,7 @@ class Figures:
     notices: tuple[Notice, ...]
     sources: Mapping[str, Source]
     gap_rule: str | None
+    questions: Questions = field(default_factory=Questions)
+    spread: Spread | None = None
+    answer_distances: Mapping[str, float] = field(default_factory=dict)
+    """Distances that greatest speeds are asked for, "sight" and "headlight", as printed."""

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 from itertools import product
 from typing import Final
@@ -10,14 +11,19 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-from chartgen.edition.catalogue import GAP_RULES
-from chartgen.edition.model import Edition, Source
-from chartgen.figures.gaps import gaps
+from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
+from chartgen.edition.model import Edition, Friction, Source
+from chartgen.figures.adopted import adopted
+from chartgen.figures.answers import answer_distances, answers
+from chartgen.figures.gaps import gaps, gaps_by_rule
 from chartgen.figures.notices import notices
 from chartgen.figures.record import Columns, Figures, Notice
-from chartgen.figures.rounding import print_parts
+from chartgen.figures.rounding import nearest, print_parts, up
+from chartgen.figures.spread import spread
 from chartgen.figures.stops import stops
 from chartgen.figures.units import from_metres
+from chartgen.motion.friction import friction_at
+from chartgen.motion.limits import KMH_PER_MPS
 
 __all__ = ["COLUMNS", "Figures", "Notice", "figures", "select"]
 
@@ -34,6 +40,16 @@ COLUMNS: Final = (
     "printed_speed", "printed_reaction", "printed_lag", "printed_braking", "printed_stopping",
     "printed_also_reaction", "printed_also_lag", "printed_also_braking", "printed_also_stopping",
     "gap_s", "printed_gap_s", "printed_gap_distance", "printed_also_gap_distance",
+    "brake_share", "valid_to_mps", "friction_table",
+    "perception_s", "perception_distance_m", "printed_perception", "printed_also_perception",
+    "stopping_p50_m", "stopping_p85_m", "stopping_p95_m", "spread_error_m",
+    "printed_p50", "printed_p85", "printed_p95", "printed_also_p50", "printed_also_p85", "printed_also_p95",
+    "residual_speed_mps", "printed_residual_speed",
+    "greatest_sight_mps", "greatest_headlight_mps", "greatest_gap_mps",
+    "greatest_sight_at_top", "greatest_headlight_at_top", "greatest_gap_at_top",
+    "printed_greatest_sight", "printed_greatest_headlight", "printed_greatest_gap",
+    "added_by_driver_m", "printed_added_by_driver", "printed_also_added_by_driver",
+    "added_by_surface_m", "printed_added_by_surface", "printed_also_added_by_surface",
 )  # fmt: skip
 """Columns of the table, in order.
 
@@ -41,7 +57,12 @@ COLUMNS: Final = (
 are "" where the edition does not say; `reaction_percentile` is "" for a fixed time. `friction` is the coefficient at
 the row's speed, nan where none is used. `full_deceleration_mps2` is the deceleration as full braking begins, slope
 included. Distances in m, unrounded, nan where the vehicle does not stop; `printed_…` in the printed unit after
-rounding, `printed_also_…` in the second unit, from the unrounded value. `gap_…` nan without a following-gap rule.
+rounding, `printed_also_…` in the second unit, from the unrounded value. `gap_…` nan without cab cards.
+`friction_table` is a table by speed as "30:0.62 100:0.45" (km/h), else "". `perception_…`: the share of the reaction
+that passes before the foot moves; nan where the source does not keep it apart. `stopping_p…`: see `spread`; the
+columns of `[questions]`: see `answers`. What is not asked for is nan.
+
+Behind these stand, for each rule of `questions.gaps`, the four gap columns under its key: "gap_s gap/…" and so on.
 """
 
 
@@ -52,11 +73,18 @@ def figures(edition: Edition) -> Figures:
     Where the edition leaves a choice open the longer distance is printed.
     """
     columns = _assumptions(edition)
-    columns |= stops(columns, edition.method)
-    columns |= _printed(columns, edition)
+    if edition.adopted is None:
+        columns |= stops(columns, edition)
+        columns |= _printed(columns, edition)
+    else:
+        columns |= adopted(columns, edition)
+    columns |= _perception(columns, edition)
     columns |= gaps(columns, edition)
+    columns |= spread(columns, edition)
+    columns |= answers(columns, edition)
+    by_rule = gaps_by_rule(columns, edition)
     # The frame is made once, of finished columns: growing it column by column costs more than the mechanics.
-    table = pd.DataFrame({name: columns[name] for name in COLUMNS})
+    table = pd.DataFrame({name: columns[name] for name in COLUMNS} | by_rule)
     return Figures(
         edition_id=edition.id,
         speed_unit=edition.speed_unit,
@@ -68,6 +96,9 @@ def figures(edition: Edition) -> Figures:
         notices=notices(table, edition),
         sources=_sources(edition),
         gap_rule=edition.cards.gap if edition.cards else None,
+        questions=edition.questions,
+        spread=edition.spread,
+        answer_distances=answer_distances(edition),
     )
 
 
@@ -130,9 +161,27 @@ def _assumptions(edition: Edition) -> Columns:
         "friction_mu": _or([f.mu for f in friction], np.nan),
         "friction_f60": _or([f.f60 for f in friction], np.nan),
         "friction_sp_kmh": _or([f.sp_kmh for f in friction], np.nan),
-        "friction_max_mu": _or([f.max_mu for f in friction], np.inf),
-        "length_m": _or([v.length_m for v in vehicle], np.nan),
+        "friction_max_mu": np.array([_cap(f) for f in friction]),
+        "friction_table": np.array([_table_text(f) for f in friction], dtype=object),
+        "valid_to_mps": _or([f.valid_kmh[1] / KMH_PER_MPS if f.valid_kmh else None for f in friction], np.inf),
+        "brake_share": np.array([v.brake_share for v in vehicle]),
+        "perception_s": _or([r.perception_s for r in reaction], np.nan),
+        "length_m": _or([v.whole_length_m for v in vehicle], np.nan),
     }
+
+
+def _cap(friction: Friction) -> float:
+    """The cap on friction that falls with speed. Below the slowest speed its source speaks of the value there holds:
+    the law goes on rising, which nobody has measured, and would print a distance too short."""
+    cap = math.inf if friction.max_mu is None else friction.max_mu
+    if friction.valid_kmh is None or friction.f60 is None or friction.sp_kmh is None:
+        return cap
+    least_mps = friction.valid_kmh[0] / KMH_PER_MPS
+    return min(cap, float(friction_at(least_mps, f60=friction.f60, sp_kmh=friction.sp_kmh)))
+
+
+def _table_text(friction: Friction) -> str:
+    return " ".join(f"{kmh:g}:{mu:g}" for kmh, mu in friction.table or ())
 
 
 def _or(values: list[float | None], missing: float) -> Floats:
@@ -156,11 +205,29 @@ def _printed(columns: Columns, edition: Edition) -> Columns:
     return out
 
 
+def _perception(columns: Columns, edition: Edition) -> Columns:
+    """The road covered before the foot moves: a share of the reaction, rounded by the reaction's rule."""
+    distance = columns["speed_mps"] * columns["perception_s"]
+    out: Columns = {"perception_distance_m": distance}
+    for prefix, unit, step in (
+        ("printed", edition.distance_unit, edition.rounding.step),
+        ("printed_also", edition.also_unit, edition.rounding.also_step),
+    ):
+        round_ = nearest if edition.rounding.rules["reaction"] == "nearest" else up
+        values = np.full(len(distance), np.nan) if unit is None else round_(from_metres(distance, unit), step)
+        out[f"{prefix}_perception"] = values
+    return out
+
+
 def _sources(edition: Edition) -> dict[str, Source]:
     """Where the edition's values come from, by the keys that rows name in their trace."""
     out = {f"driver/{d.id}": d.source for d in edition.drivers}
     out |= {f"surface/{s.id}": s.source for s in edition.surfaces}
     out |= {f"vehicle/{v.id}": v.source for v in edition.vehicles if v.source}
-    if edition.cards:
-        out[edition.cards.gap] = GAP_RULES[edition.cards.gap].source
+    rules = (*((edition.cards.gap,) if edition.cards else ()), *edition.questions.gaps)
+    out |= {key: GAP_RULES[key].source for key in rules}
+    if edition.questions.headlight:
+        out[edition.questions.headlight] = HEADLIGHTS[edition.questions.headlight].source
+    if edition.adopted:
+        out["adopted"] = edition.adopted.source
     return out

@@ -19,8 +19,8 @@ from rich.table import Table
 
 from chartgen.edition.model import PARTS, Text
 from chartgen.figures.assume import Assumption, Rounded, assumptions
-from chartgen.figures.export import whole
-from chartgen.figures.notices import REASONS
+from chartgen.figures.export import asked_greatest, whole
+from chartgen.figures.notices import OUTSIDE, REASONS
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -29,6 +29,7 @@ if TYPE_CHECKING:
     from chartgen.figures.record import Figures
 
 DOES_NOT_STOP: Final = "does not stop"
+NO_FIGURE: Final = "no figure"
 
 
 def table_text(figures: Figures, edition: Edition, width: int = 100, colour: bool = False) -> str:
@@ -78,17 +79,26 @@ def _block(console: Console, rows: pd.DataFrame, figures: Figures, edition: Edit
     )
     console.print(f"{driver} · {vehicle} · {surface} · {_grade(assumed.grade)}", style="bold")
     console.print(Padding(_assumed(assumed, edition), (0, 0, 1, 2)), style="dim")
-    heads = _heads(rows, figures)
+    for heads in (_heads(rows, figures), _asked(rows, figures), _gaps(figures)):
+        if len(heads) > 1:
+            _columns(console, rows, heads)
+            console.print()
+    lines = list(_greatest(rows.iloc[0], figures))
+    if lines:
+        console.print(Padding("\n".join(lines), (0, 0, 1, 2)))
+    for reason in dict.fromkeys(rows.loc[~rows["stops"].astype(bool), "reason"]):
+        verdict = NO_FIGURE if reason == OUTSIDE else DOES_NOT_STOP
+        console.print(Padding(f"{verdict}: {REASONS[reason]}", (0, 0, 1, 2)))
+
+
+def _columns(console: Console, rows: pd.DataFrame, heads: dict[str, str]) -> None:
+    """A table, or a list where it would be too wide: it would lose a column without a word, so it is not tried."""
     table = _table(rows, heads)
-    # A table that is too wide would lose a column without a word, so it is not tried.
     if Measurement.get(console, console.options.update(max_width=1000), table).maximum > console.width:
         for line in _list(rows, heads):
             console.print(Padding(line, (0, 0, 0, 2)))
     else:
         console.print(table)
-    for reason in dict.fromkeys(rows.loc[~rows["stops"].astype(bool), "reason"]):
-        console.print(Padding(f"{DOES_NOT_STOP}: {REASONS[reason]}", (0, 0, 0, 2)))
-    console.print()
 
 
 def _heads(rows: pd.DataFrame, figures: Figures) -> dict[str, str]:
@@ -105,12 +115,54 @@ def _heads(rows: pd.DataFrame, figures: Figures) -> dict[str, str]:
     return heads
 
 
+def _asked(rows: pd.DataFrame, figures: Figures) -> dict[str, str]:
+    """The columns that the edition asks for beside the distances; the speed alone where it asks for none."""
+    unit, speed, asked = figures.distance_unit, figures.speed_unit, figures.questions
+    heads = {"printed_speed": f"Speed ({speed})"}
+    if rows["perception_s"].notna().any():
+        heads["printed_perception"] = f"of which perception ({unit})"
+    if figures.spread is not None and rows["spread_error_m"].notna().any():
+        heads |= {f"printed_p{percent}": f"P{percent} ({unit})" for percent in (50, 85, 95)}
+    if asked.residual_from is not None:
+        heads["printed_residual_speed"] = f"Speed left ({speed})"
+    for name in ("driver", "surface"):
+        reference = getattr(asked, name)
+        if reference is not None:
+            heads[f"printed_added_by_{name}"] = f"More than {reference} ({unit})"
+    return heads
+
+
+def _gaps(figures: Figures) -> dict[str, str]:
+    """The following gaps by the rules that the edition asks for."""
+    heads = {"printed_speed": f"Speed ({figures.speed_unit})"}
+    for rule in figures.questions.gaps:
+        short = rule.removeprefix("gap/")
+        heads[f"printed_gap_s {rule}"] = f"Gap {short} (s)"
+        heads[f"printed_gap_distance {rule}"] = f"Gap {short} ({figures.distance_unit})"
+    return heads
+
+
+def _greatest(row: pd.Series, figures: Figures) -> Iterator[str]:
+    """The greatest speeds, which are the same at every speed of a block: a line each."""
+    asked, unit = figures.questions, figures.distance_unit
+    for name in asked_greatest(asked):
+        within = f"its gap by {asked.gaps[0]}" if name == "gap" else f"{figures.answer_distances[name]:g} {unit}"
+        if name == "headlight":
+            within += f" ({asked.headlight})"
+        speed = _cell(row, f"printed_greatest_{name}")
+        unit_said = "" if speed == "none" else f" {figures.speed_unit}"
+        yield f"Greatest speed that stops within {within}: {speed}{unit_said}"
+
+
 def _cell(row: pd.Series, column: str) -> str:
     """One printed value; in words where there is none."""
     value = row[column]
     if not np.isnan(value):
-        return str(whole(float(value)))
-    return DOES_NOT_STOP if column.endswith(("braking", "stopping")) else "none"
+        more = column.startswith("printed_greatest_") and row[column.replace("printed_", "") + "_at_top"]
+        return f"{whole(float(value))}{' or more' if more else ''}"
+    if row["reason"] == OUTSIDE:
+        return NO_FIGURE
+    return DOES_NOT_STOP if column in ("printed_braking", "printed_stopping", "printed_also_stopping") else "none"
 
 
 def _table(rows: pd.DataFrame, heads: dict[str, str]) -> Table:
@@ -130,7 +182,11 @@ def _list(rows: pd.DataFrame, heads: dict[str, str]) -> Iterator[str]:
 
 def _assumed(a: Assumption, edition: Edition) -> str:
     """Six of the seven fields, short; the rounding is the same for all blocks and stands at the top."""
+    if a.adopted is not None:
+        return f"as published: {a.adopted}; surface {a.surface}; {_grade(a.grade)}."
     reaction = f"reaction {a.reaction_time_s:.4g} s"
+    if a.perception_s is not None:
+        reaction += f" (of which perception {a.perception_s:.4g} s)"
     if a.reaction_percentile:
         reaction += f" ({a.reaction_percentile.upper()})"
     lag = f"brake lag {a.brake_lag_s:g} s" if a.brake_lag_s else "no brake lag"

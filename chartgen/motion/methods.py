@@ -18,6 +18,7 @@ from numpy.typing import ArrayLike
 from chartgen.motion.friction import friction_at
 from chartgen.motion.limits import GRAVITY_MPS2, KMH_PER_MPS, LEAST_DECELERATION_MPS2, FloatArray, checked
 from chartgen.motion.stopping import Stop, stop
+from chartgen.motion.thumb import square_feet, square_half_metric, square_metric
 
 MPS_PER_MPH = 0.44704
 """Exact: the international mile of 1959."""
@@ -244,6 +245,11 @@ METHOD_INPUTS: Mapping[str, MethodInputs] = {
         optional=frozenset({"grade", "brake_efficiency"}),
         source="slide-to-stop formula, mph and ft",
     ),
+    "square-metric": MethodInputs(function=square_metric, required=frozenset(), source="rule of thumb, km/h and m"),
+    "square-half-metric": MethodInputs(
+        function=square_half_metric, required=frozenset(), source="rule of thumb for emergency braking, km/h and m"
+    ),
+    "square-feet": MethodInputs(function=square_feet, required=frozenset(), source="rule of thumb, mph and ft"),
 }
 """By the name an edition uses. First principles need friction or a limit, at least one of the two."""
 
