@@ -55,6 +55,8 @@ RANGES: dict[str, Range] = {
     "f60": Range(low=0.0, high=1.5, unit="", open_low=True),
     "sp_kmh": Range(low=10.0, high=10_000.0, unit="km/h"),
     "max_mu": Range(low=0.0, high=np.inf, unit="", open_low=True),
+    "brake_share": Range(low=0.0, high=1.0, unit="", open_low=True),
+    "valid_to_mps": Range(low=0.0, high=np.inf, unit="m/s", open_low=True),
     "grade": Range(low=-0.30, high=0.30, unit=""),
     "brake_efficiency": Range(low=0.0, high=1.0, unit="", open_low=True),
     "max_deceleration_mps2": Range(low=0.0, high=np.inf, unit="m/s²", open_low=True),

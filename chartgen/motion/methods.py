@@ -217,7 +217,16 @@ METHOD_INPUTS: Mapping[str, MethodInputs] = {
         function=stop,
         required=frozenset({"reaction_time_s"}),
         optional=frozenset(
-            {"friction", "grade", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2"}
+            {
+                "friction",
+                "grade",
+                "brake_lag_s",
+                "build_up_s",
+                "brake_efficiency",
+                "max_deceleration_mps2",
+                "brake_share",
+                "valid_to_mps",
+            }  # fmt: skip
         ),
         source="equation of motion",
     ),

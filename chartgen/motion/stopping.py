@@ -6,20 +6,27 @@ formulas of each phase stand in `phases` and `braking`.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from chartgen.motion.braking import full_braking
-from chartgen.motion.friction import Brake, checked_friction, some
-from chartgen.motion.limits import LEAST_DECELERATION_MPS2, BoolArray, FloatArray, checked
-from chartgen.motion.phases import build_up, lag
+from chartgen.motion.braking import Braking, full_braking
+from chartgen.motion.friction import Brake, FrictionTable, checked_friction, checked_tables, some
+from chartgen.motion.friction_table import TableBrake, braking_distance_and_time
+from chartgen.motion.limits import GRAVITY_MPS2, LEAST_DECELERATION_MPS2, BoolArray, FloatArray, checked
+from chartgen.motion.phases import Phase, build_up, lag
 
-REASONS: tuple[str, ...] = ("", "too-little-friction", "never-at-rest")
-"""Why a vehicle does not stop: "" it does; the least deceleration is positive but under `LEAST_DECELERATION_MPS2`;
-gravity pulls at least as hard as the brakes hold."""
+REASONS: tuple[str, ...] = ("", "too-little-friction", "never-at-rest", "outside-friction-range")
+"""Why there is no stop: "" there is one; the least deceleration is positive but under `LEAST_DECELERATION_MPS2`;
+gravity pulls at least as hard as the brakes hold; the fastest speed passed is one of which the friction's source does
+not speak, so that nothing can be said."""
+
+_OUTSIDE = REASONS.index("outside-friction-range")
+_SAME_SPEED = 1e-9
+"""Relative: a speed this near the fastest one of a source counts as on it, whatever unit it was converted from."""
 
 _CHUNK_ROWS = 16_384
 """Rows worked at a time: the buffers stay in the processor's cache."""
@@ -64,6 +71,10 @@ def stop(
     grade: ArrayLike = 0.0,
     brake_efficiency: ArrayLike = 1.0,
     max_deceleration_mps2: ArrayLike = np.inf,
+    brake_share: ArrayLike = 1.0,
+    valid_to_mps: ArrayLike = np.inf,
+    tables: Sequence[FrictionTable] = (),
+    table: ArrayLike = -1,
 ) -> Stop:
     """How far and how long from seeing a hazard to rest, from first principles.
 
@@ -85,9 +96,14 @@ def stop(
         grade: rise over run, uphill positive, -0.30 to 0.30.
         brake_efficiency: share of the friction that the brakes use, 0 < η <= 1.
         max_deceleration_mps2: the vehicle's own limit on the level, m/s², more than 0; infinite for none.
+        brake_share: mass with brakes over whole mass, 0 < share <= 1; below 1 with an unbraked trailer.
+        valid_to_mps: fastest speed that the friction's source speaks of, m/s; infinite for no end. A table has an end
+            of its own.
+        tables: frictions by speed.
+        table: index into `tables`, -1 where the friction is not one of them.
 
-        All broadcast against one another. Per element exactly one of `mu` and (`f60`, `sp_kmh`) is given; with
-        neither, the vehicle's limit alone governs and must be finite.
+        All but `tables` broadcast against one another. Per element exactly one of `mu`, (`f60`, `sp_kmh`) and `table`
+        is given; with none, the vehicle's limit alone governs and must be finite.
 
     Returns:
         A `Stop` in the broadcast shape: m, s, m/s².
@@ -114,15 +130,46 @@ def stop(
         "grade": checked("grade", grade),
         "brake_efficiency": checked("brake_efficiency", brake_efficiency),
         "max_deceleration_mps2": checked("max_deceleration_mps2", max_deceleration_mps2),
+        "brake_share": checked("brake_share", brake_share),
+        "valid_to_mps": checked("valid_to_mps", valid_to_mps),
         **checked_friction(mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu),
     }
-    bare = np.isnan(given["mu"]) & np.isnan(given["f60"])
+    which = checked_tables(tables, table, given)
+    bare = np.isnan(given["mu"]) & np.isnan(given["f60"]) & (which < 0)
     if (bare & np.isinf(given["max_deceleration_mps2"])).any():
         raise ValueError("mu: without friction (mu, or f60 and sp_kmh) max_deceleration_mps2 must be finite")
     if (bare & (given["brake_efficiency"] != 1.0)).any():
         raise ValueError("brake_efficiency: it is a share of friction (mu, or f60 and sp_kmh), and none is given")
-    shape = np.broadcast_shapes(*(x.shape for x in given.values()))
-    return _in_chunks({name: _flat(x, shape) for name, x in given.items()}, shape)
+    shape = np.broadcast_shapes(which.shape, *(x.shape for x in given.values()))
+    flat = {name: _flat(x, shape) for name, x in given.items()}
+    if not (which >= 0).any():
+        return _in_chunks(flat, shape)
+    return _by_table(flat, shape, tables, np.broadcast_to(which, shape).reshape(-1))
+
+
+def _by_table(
+    given: dict[str, FloatArray], shape: tuple[int, ...], tables: Sequence[FrictionTable], which: NDArray[np.int64]
+) -> Stop:
+    """The rows of each table apart, and those without one; put together again."""
+    rows = len(which)
+    out = {name: np.empty(rows) for name in _NAMES}
+    code = np.zeros(rows, dtype=np.int8)
+    for index in np.unique(which):
+        here = which == index
+        some_rows = {name: some(x, here) for name, x in given.items()}
+        part = {name: np.empty(int(here.sum())) for name in _NAMES}
+        part_code = np.zeros(int(here.sum()), dtype=np.int8)
+        with np.errstate(divide="ignore", invalid="ignore", over="ignore", under="ignore"):
+            if index < 0:
+                # A constant of no use stands in where every row has one value, so that chunks keep their lengths.
+                _one_chunk(some_rows, part, part_code)
+            else:
+                full = {name: np.broadcast_to(x, part_code.shape) for name, x in some_rows.items()}
+                _one_table(full, tables[index], part, part_code)
+        for name, values in part.items():
+            out[name][here] = values
+        code[here] = part_code
+    return _record(out, code, shape)
 
 
 def _flat(value: FloatArray, shape: tuple[int, ...]) -> FloatArray:
@@ -140,6 +187,11 @@ def _in_chunks(given: dict[str, FloatArray], shape: tuple[int, ...]) -> Stop:
             part = slice(start, start + _CHUNK_ROWS)
             here = {name: some(x, part) for name, x in given.items()}
             _one_chunk(here, {name: x[part] for name, x in out.items()}, code[part])
+    return _record(out, code, shape)
+
+
+def _record(out: dict[str, FloatArray], code: NDArray[np.int8], shape: tuple[int, ...]) -> Stop:
+    """The arrays in the shape asked for, read-only."""
     arrays = {name: x.reshape(shape) for name, x in out.items()}
     code = code.reshape(shape)
     stops = np.asarray(code == 0)
@@ -157,26 +209,37 @@ _NAMES = (
     "stopping_time_s",
     "full_deceleration_mps2",
 )
-_BRAKE = ("mu", "f60", "sp_kmh", "max_mu", "grade", "brake_efficiency", "max_deceleration_mps2")
+_BRAKE = ("mu", "f60", "sp_kmh", "max_mu", "grade", "brake_efficiency", "max_deceleration_mps2", "brake_share")
 
 
 def _one_chunk(given: dict[str, FloatArray], out: dict[str, FloatArray], code: NDArray[np.int8]) -> None:
     """The phases in their order, for rows that fit the cache; writes into `out` and `code`."""
-    speed, reaction_time = given["speed_mps"], given["reaction_time_s"]
+    speed = given["speed_mps"]
     brake = Brake.of(**{name: given[name] for name in _BRAKE})
     lagging = lag(speed, lag_s=given["brake_lag_s"], slope_mps2=brake.slope)
     building = build_up(lagging.end_speed_mps, build_up_s=given["build_up_s"], brake=brake)
     full = full_braking(building.end_speed_mps, brake)
 
     slowing = least = full.deceleration_mps2
+    top = speed
     if building.end_speed_mps is not speed:
         top = np.maximum(lagging.top_speed_mps, building.top_speed_mps)
         least = np.minimum(slowing, brake.at(top) + brake.slope)
     code[...] = least < LEAST_DECELERATION_MPS2
     if code.any():
         code[np.broadcast_to(slowing <= 0.0, code.shape)] = 2
+    _write(given, (lagging, building), full, top, out, code)
 
-    out["full_deceleration_mps2"][...] = slowing
+
+def _write(
+    given: dict[str, FloatArray], phases: tuple[Phase, Phase], full: Braking, top: FloatArray,
+    out: dict[str, FloatArray], code: NDArray[np.int8],
+) -> None:  # fmt: skip
+    """The results into `out`; what has no end, or no friction, is blanked."""
+    (lagging, building), speed, reaction_time = phases, given["speed_mps"], given["reaction_time_s"]
+    if not np.isinf(given["valid_to_mps"]).all():
+        code[np.broadcast_to(top > given["valid_to_mps"] * (1.0 + _SAME_SPEED), code.shape)] = _OUTSIDE
+    out["full_deceleration_mps2"][...] = full.deceleration_mps2
     np.multiply(speed, reaction_time, out=out["reaction_distance_m"])
     out["lag_distance_m"][...] = lagging.distance_m
     np.add(building.distance_m, full.distance_m, out=out["braking_distance_m"])
@@ -186,3 +249,43 @@ def _one_chunk(given: dict[str, FloatArray], out: dict[str, FloatArray], code: N
     if code.any():
         for name in ("braking_distance_m", "stopping_distance_m", "stopping_time_s"):
             out[name][code != 0] = np.nan
+
+
+def _one_table(
+    given: dict[str, FloatArray], table: FrictionTable, out: dict[str, FloatArray], code: NDArray[np.int8]
+) -> None:
+    """The phases in their order for rows under one table of friction; writes into `out` and `code`."""
+    speed, grade = given["speed_mps"], given["grade"]
+    run = 1.0 / np.sqrt(1.0 + grade * grade)
+    share, rise = given["brake_share"], given["build_up_s"]
+    brake = TableBrake(
+        table=table, scale=share * given["brake_efficiency"] * GRAVITY_MPS2 * run,
+        cap=share * given["max_deceleration_mps2"], slope=GRAVITY_MPS2 * grade * run,
+    )  # fmt: skip
+    lagging = lag(speed, lag_s=given["brake_lag_s"], slope_mps2=brake.slope)
+    ramp = _ramp_force(lagging.end_speed_mps, rise, brake)
+    even = Brake(at_zero=ramp, fall_per_mps=np.zeros(1), cap=np.full(1, np.inf), slope=brake.slope)
+    building = build_up(lagging.end_speed_mps, build_up_s=rise, brake=even)
+    begin = np.broadcast_to(building.end_speed_mps, speed.shape)
+    top = np.maximum(np.maximum(lagging.top_speed_mps, building.top_speed_mps), speed)
+    outside = top > table.last_mps * (1.0 + _SAME_SPEED)
+    safe = np.where(outside, 0.0, begin)
+    distance, time = braking_distance_and_time(np.minimum(safe, table.last_mps), brake)
+    slowing = brake.at(np.where(outside, np.nan, begin)) + brake.slope
+    least = brake.least(np.zeros(len(speed)), np.minimum(top, table.last_mps)) + brake.slope
+    code[...] = least < LEAST_DECELERATION_MPS2
+    code[least <= 0.0] = 2
+    code[outside] = _OUTSIDE
+    full = Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
+    _write(given, (lagging, building), full, top, out, code)
+
+
+def _ramp_force(speed: FloatArray, rise_s: FloatArray, brake: TableBrake) -> FloatArray:
+    """What the build-up rises to: the least force at any speed that it can pass, so that a table that rises with speed
+    makes no stop shorter than it is. On the level, under friction that falls with speed, that is the force at the speed
+    at which it begins."""
+    down = np.maximum(-brake.slope, 0.0)
+    last = brake.table.last_mps
+    most = np.minimum(brake.scale * brake.table.mu.max(), brake.cap) + brake.slope
+    slowest = np.clip(speed - np.maximum(most, 0.0) * rise_s, 0.0, last)
+    return brake.least(slowest, np.minimum(speed + down * rise_s, last))
