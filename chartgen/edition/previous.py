@@ -31,6 +31,24 @@ def previous(
     if found is None:
         return None
     text, shown = found
+    figures = figures_in(reading, text, shown, speed_unit, distance_unit)
+    if figures is None:
+        return None
+    if "id" in head and figures["edition"] != head["id"]:
+        reading.warn(
+            head.at("previous"),
+            f'{name} holds the figures of the edition {as_written(figures["edition"])}, not of "{head["id"]}".',
+        )
+    return Previous(file=name, figures=figures)
+
+
+def figures_in(
+    reading: Reading, text: str, shown: str, speed_unit: str | None = None, distance_unit: str | None = None
+) -> dict[str, Any] | None:
+    """The figures that a JSON text holds, as the program makes them; None, with faults, where it holds none.
+
+    `shown`: how messages call the file. With units, figures printed in other ones are a fault too.
+    """
     try:
         figures = json.loads(text, parse_constant=_no_constant)
     except RecursionError:
@@ -45,14 +63,7 @@ def previous(
         return None
     _head(reading, shown, figures, speed_unit, distance_unit)
     _rows(reading, shown, figures.get("rows"))
-    if len(reading.faults) > before:
-        return None
-    if "id" in head and figures["edition"] != head["id"]:
-        reading.warn(
-            head.at("previous"),
-            f'{name} holds the figures of the edition {as_written(figures["edition"])}, not of "{head["id"]}".',
-        )
-    return Previous(file=name, figures=figures)
+    return figures if len(reading.faults) == before else None
 
 
 def _no_constant(word: str) -> float:

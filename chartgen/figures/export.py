@@ -10,6 +10,7 @@ import io
 import json
 import math
 from collections.abc import Hashable, Iterator, Mapping
+from dataclasses import asdict
 from typing import Any, Final
 
 from chartgen.edition.model import Questions
@@ -18,8 +19,9 @@ from chartgen.figures.record import Figures
 Value = bool | int | float | str | None
 
 PLAIN: Final = (
-    "case", "driver", "vehicle", "surface", "grade", "load", "method", "speed_mps",
+    "case", "driver", "vehicle", "surface", "grade", "load", "state", "length_m", "method", "speed_mps",
     "reaction_time_s", "reaction_percentile", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
+    "reaction_mu", "reaction_sigma", "friction_low", "friction_high",
     "brake_share", "friction", "friction_f60", "friction_sp_kmh", "friction_max_mu", "friction_table", "valid_to_mps",
     "full_deceleration_mps2",
     "reaction_distance_m", "lag_distance_m", "braking_distance_m", "stopping_distance_m", "stopping_time_s",
@@ -44,9 +46,10 @@ def to_json(figures: Figures) -> str:
 def document(figures: Figures) -> dict[str, Any]:
     """The figures as public data.
 
-    `{"edition", "speed_unit", "distance_unit", "also_unit", "warnings", "sources", "rows"}`; what does not exist (a
-    braking distance where the vehicle does not stop) is null. Whole numbers in `printed` are written as integers.
-    Each row's trace: its inputs stand beside its results, `method`, `rounding`, and `sources`, keys into the list
+    `{"edition", "speed_unit", "distance_unit", "also_unit", "warnings", "sources", "questions", "spread", "rows"}`;
+    what does not exist (a braking distance where the vehicle does not stop) is null. Whole numbers in `printed` are
+    written as integers. `questions` and `spread`: what the edition asks for, null where it does not. Each row's trace:
+    its inputs stand beside its results, `method`, `rounding`, and `sources`, keys into the list
     of sources at the top. What an edition does not ask for has no key: `perception_distance_m` where a source keeps
     perception apart, `spread` with `[figures.spread]`, `residual_speed_mps`, `greatest_speed_mps`, `added_m` and `gaps`
     with `[questions]`; what they print stands in `printed` too.
@@ -63,6 +66,8 @@ def document(figures: Figures) -> dict[str, Any]:
             key: {"text": source.text, "kind": source.kind, "from_memory": source.from_memory}
             for key, source in figures.sources.items()
         },
+        "questions": asdict(figures.questions),
+        "spread": None if figures.spread is None else asdict(figures.spread),
         "rows": rows(figures),
     }
 

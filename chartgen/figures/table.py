@@ -40,7 +40,8 @@ COLUMNS: Final = (
     "printed_speed", "printed_reaction", "printed_lag", "printed_braking", "printed_stopping",
     "printed_also_reaction", "printed_also_lag", "printed_also_braking", "printed_also_stopping",
     "gap_s", "printed_gap_s", "printed_gap_distance", "printed_also_gap_distance",
-    "brake_share", "valid_to_mps", "friction_table",
+    "brake_share", "valid_to_mps", "friction_table", "length_m",
+    "reaction_mu", "reaction_sigma", "friction_low", "friction_high",
     "perception_s", "perception_distance_m", "printed_perception", "printed_also_perception",
     "stopping_p50_m", "stopping_p85_m", "stopping_p95_m", "spread_error_m",
     "printed_p50", "printed_p85", "printed_p95", "printed_also_p50", "printed_also_p85", "printed_also_p95",
@@ -59,8 +60,9 @@ the row's speed, nan where none is used. `full_deceleration_mps2` is the deceler
 included. Distances in m, unrounded, nan where the vehicle does not stop; `printed_…` in the printed unit after
 rounding, `printed_also_…` in the second unit, from the unrounded value. `gap_…` nan without cab cards.
 `friction_table` is a table by speed as "30:0.62 100:0.45" (km/h), else "". `perception_…`: the share of the reaction
-that passes before the foot moves; nan where the source does not keep it apart. `stopping_p…`: see `spread`; the
-columns of `[questions]`: see `answers`. What is not asked for is nan.
+that passes before the foot moves; nan where the source does not keep it apart. `reaction_mu`, `reaction_sigma` (of
+ln(t/s)), `friction_low`, `friction_high`: what a spread is taken over, nan where nothing varies. `length_m`: trailer
+included. `stopping_p…`: see `spread`; the columns of `[questions]`: see `answers`. What is not asked for is nan.
 
 Behind these stand, for each rule of `questions.gaps`, the four gap columns under its key: "gap_s gap/…" and so on.
 """
@@ -165,6 +167,10 @@ def _assumptions(edition: Edition) -> Columns:
         "friction_table": np.array([_table_text(f) for f in friction], dtype=object),
         "valid_to_mps": _or([f.valid_kmh[1] / KMH_PER_MPS if f.valid_kmh else None for f in friction], np.inf),
         "brake_share": np.array([v.brake_share for v in vehicle]),
+        "reaction_mu": _or([r.mu for r in reaction], np.nan),
+        "reaction_sigma": _or([r.sigma for r in reaction], np.nan),
+        "friction_low": _or([f.low for f in friction], np.nan),
+        "friction_high": _or([f.high for f in friction], np.nan),
         "perception_s": _or([r.perception_s for r in reaction], np.nan),
         "length_m": _or([v.whole_length_m for v in vehicle], np.nan),
     }
