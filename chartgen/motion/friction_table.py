@@ -157,6 +157,13 @@ def braking_distance_and_time(speed_mps: FloatArray, brake: TableBrake) -> tuple
         Nothing.
 
     Source: equation of motion. Accuracy against a step-by-step integration: tests/motion/test_friction_table.py.
+
+    >>> one = np.ones(1)
+    >>> table = FrictionTable(np.array([10.0, 40.0]), np.array([0.5, 0.5]))
+    >>> brake = TableBrake(table=table, scale=10.0 * one, cap=np.inf * one, slope=0.0 * one)
+    >>> metres, seconds = braking_distance_and_time(20.0 * one, brake)
+    >>> round(float(metres[0]), 9), round(float(seconds[0]), 9)
+    (40.0, 4.0)
     """
     first = float(brake.table.speeds_mps[0])
     below = np.minimum(speed_mps, first)

@@ -9,13 +9,14 @@ are given in metres.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import ArrayLike
 
 from chartgen.motion.friction import friction_at
+from chartgen.motion.friction_table import FrictionTable
 from chartgen.motion.limits import GRAVITY_MPS2, KMH_PER_MPS, LEAST_DECELERATION_MPS2, FloatArray, checked
 from chartgen.motion.stopping import Stop, stop
 from chartgen.motion.thumb import square_feet, square_half_metric, square_metric
@@ -109,6 +110,8 @@ def slide_metric(
     max_mu: ArrayLike = np.inf,
     grade: ArrayLike = 0.0,
     brake_efficiency: ArrayLike = 1.0,
+    tables: Sequence[FrictionTable] = (),
+    table: ArrayLike = -1,
 ) -> Stop:
     """Slide-to-stop distance, metric form with its printed constants.
 
@@ -124,6 +127,8 @@ def slide_metric(
         max_mu: cap on the friction that falls with speed, more than 0; infinite for none.
         grade: rise over run, uphill positive, -0.30 to 0.30.
         brake_efficiency: 0 < η <= 1.
+        tables: frictions by speed, see `friction.friction_at`.
+        table: index into `tables`, -1 where the friction is not one of them.
 
     Returns:
         A `Stop` in m and s. The formula gives no time: the one given is that of an even deceleration over the printed
@@ -141,7 +146,7 @@ def slide_metric(
     """
     speed, time, slope = _common_arguments(speed_mps, reaction_time_s, grade)
     printed = speed * KMH_PER_MPS
-    held = _friction(speed, mu, f60, sp_kmh, max_mu, brake_efficiency) + slope
+    held = _friction(speed, mu, f60, sp_kmh, max_mu, brake_efficiency, tables, table) + slope
     return _record(
         speed, time, reaction=0.278 * printed * time, braking=printed**2 / (254.0 * _positive(held)), held=held
     )
@@ -157,6 +162,8 @@ def slide_us(
     max_mu: ArrayLike = np.inf,
     grade: ArrayLike = 0.0,
     brake_efficiency: ArrayLike = 1.0,
+    tables: Sequence[FrictionTable] = (),
+    table: ArrayLike = -1,
 ) -> Stop:
     """Slide-to-stop distance, US customary form with its printed constants.
 
@@ -172,6 +179,8 @@ def slide_us(
         max_mu: cap on the friction that falls with speed, more than 0; infinite for none.
         grade: rise over run, uphill positive, -0.30 to 0.30.
         brake_efficiency: 0 < η <= 1.
+        tables: frictions by speed, see `friction.friction_at`.
+        table: index into `tables`, -1 where the friction is not one of them.
 
     Returns:
         A `Stop` in m and s. The formula gives no time: the one given is that of an even deceleration over the printed
@@ -189,7 +198,7 @@ def slide_us(
     """
     speed, time, slope = _common_arguments(speed_mps, reaction_time_s, grade)
     printed = speed / MPS_PER_MPH
-    held = _friction(speed, mu, f60, sp_kmh, max_mu, brake_efficiency) + slope
+    held = _friction(speed, mu, f60, sp_kmh, max_mu, brake_efficiency, tables, table) + slope
     braking = printed**2 / (30.0 * _positive(held))
     return _record(speed, time, reaction=1.47 * printed * time * M_PER_FT, braking=braking * M_PER_FT, held=held)
 
@@ -216,18 +225,10 @@ METHOD_INPUTS: Mapping[str, MethodInputs] = {
     "first-principles": MethodInputs(
         function=stop,
         required=frozenset({"reaction_time_s"}),
-        optional=frozenset(
-            {
-                "friction",
-                "grade",
-                "brake_lag_s",
-                "build_up_s",
-                "brake_efficiency",
-                "max_deceleration_mps2",
-                "brake_share",
-                "valid_to_mps",
-            }  # fmt: skip
-        ),
+        optional=frozenset({
+            "friction", "grade", "brake_lag_s", "build_up_s", "brake_efficiency", "max_deceleration_mps2",
+            "brake_share", "valid_to_mps",
+        }),
         source="equation of motion",
     ),
     "sight-metric": MethodInputs(
@@ -259,7 +260,7 @@ METHOD_INPUTS: Mapping[str, MethodInputs] = {
         function=square_half_metric, required=frozenset(), source="rule of thumb for emergency braking, km/h and m"
     ),
     "square-feet": MethodInputs(function=square_feet, required=frozenset(), source="rule of thumb, mph and ft"),
-}
+}  # fmt: skip
 """By the name an edition uses. First principles need friction or a limit, at least one of the two."""
 
 
@@ -280,9 +281,10 @@ def _sight_arguments(
 
 
 def _friction(
-    speed: FloatArray, mu: ArrayLike, f60: ArrayLike, sp_kmh: ArrayLike, max_mu: ArrayLike, brake_efficiency: ArrayLike
-) -> FloatArray:
-    friction = friction_at(speed, mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu)
+    speed: FloatArray, mu: ArrayLike, f60: ArrayLike, sp_kmh: ArrayLike, max_mu: ArrayLike, brake_efficiency: ArrayLike,
+    tables: Sequence[FrictionTable], table: ArrayLike,
+) -> FloatArray:  # fmt: skip
+    friction = friction_at(speed, mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu, tables=tables, table=table)
     if np.isnan(friction).any():
         raise ValueError("mu: the method needs friction (mu, or f60 and sp_kmh)")
     return np.asarray(checked("brake_efficiency", brake_efficiency) * friction)

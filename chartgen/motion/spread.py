@@ -97,6 +97,7 @@ def stopping_percentiles(
             ("mu", reaction_mu), ("sigma", reaction_sigma), ("low", friction_low), ("high", friction_high),
         )
     }  # fmt: skip
+    own = _curves(own, spread["high"])
     out = np.empty((len(shares), rows))
     error, endless = np.empty((len(shares), rows)), np.empty(rows)
     step = max(1, _CHUNK_VALUES // samples)
@@ -148,21 +149,34 @@ def _sampled(
     return np.asarray(speed * time + way)
 
 
+def _curves(arguments: dict[str, Any], high: FloatArray) -> dict[str, Any]:
+    """The arguments with every friction curve times its highest factor (`top_factor`), as far as the mechanics accept a
+    friction: beyond that the longer distance is taken."""
+    out = {**arguments, "top_factor": high}
+    for name in ("mu", "f60", "max_mu"):
+        if name in out:
+            scaled = np.asarray(out[name]) * high
+            out[name] = np.where(np.isinf(scaled), scaled, np.minimum(scaled, RANGES["mu"].high))
+    which = np.broadcast_to(np.asarray(out.get("table", -1)), high.shape)
+    factors = {index: float(high[which == index].max()) for index in np.unique(which[which >= 0])}
+    if factors:
+        tables = tuple(out["tables"])
+        out["tables"] = tuple(t.times(factors.get(index, 1.0)) for index, t in enumerate(tables))
+        out["top_factor"] = np.array([factors.get(index, h) for index, h in zip(which, high, strict=True)])
+    return out
+
+
 def _some(arguments: dict[str, Any], rows: Any) -> dict[str, Any]:
     return {name: value if name == "tables" else value[rows] for name, value in arguments.items()}
 
 
 def _after_reaction(speed: FloatArray, arguments: dict[str, Any], factor: FloatArray) -> FloatArray:
     """Distance from the end of the reaction to rest with the friction times `factor`, infinite without an end."""
-    given = {**arguments, "reaction_time_s": 0.0}
-    # The brake's efficiency multiplies the friction curve just as the factor does, but must not be above 1; a factor
-    # above 1 goes to the curve itself, as far as the mechanics accept it: beyond, the longer distance is taken.
-    for name in ("mu", "f60", "max_mu"):
-        if name in given:
-            scaled = np.asarray(given[name]) * factor
-            given[name] = np.where(np.isinf(scaled), scaled, np.minimum(scaled, RANGES["mu"].high))
-    if given.get("tables"):
-        raise ValueError("tables: a spread needs the tables of friction as factors")
+    top = arguments["top_factor"]
+    given = {name: value for name, value in arguments.items() if name != "top_factor"} | {"reaction_time_s": 0.0}
+    if (np.asarray(factor) != 1.0).any():
+        # The curve is at its highest already; the efficiency, a share of it, brings it down.
+        given["brake_efficiency"] = np.minimum(np.asarray(given.get("brake_efficiency", 1.0)) * factor / top, 1.0)
     made = stop(speed, **given)
     return np.where(made.stops, made.stopping_distance_m, np.inf)
 
@@ -196,4 +210,5 @@ def _quantiles(key: bytes) -> FloatArray:
 def _normal_quantile(shares: FloatArray) -> FloatArray:
     """Φ⁻¹ of each share (P. J. Wichura, algorithm AS 241, Applied Statistics 37, 1988, as the standard library has
     it)."""
-    return np.asarray(_quantiles(np.ascontiguousarray(shares).tobytes()).reshape(shares.shape))
+    flat: FloatArray = _quantiles(np.ascontiguousarray(shares).tobytes())
+    return flat.reshape(shares.shape)

@@ -14,8 +14,8 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from chartgen.motion.braking import Braking, full_braking
-from chartgen.motion.friction import Brake, FrictionTable, checked_friction, checked_tables, some
-from chartgen.motion.friction_table import TableBrake, braking_distance_and_time
+from chartgen.motion.friction import Brake, checked_friction, checked_tables, some
+from chartgen.motion.friction_table import FrictionTable, TableBrake, braking_distance_and_time
 from chartgen.motion.limits import GRAVITY_MPS2, LEAST_DECELERATION_MPS2, BoolArray, FloatArray, checked
 from chartgen.motion.phases import Phase, build_up, lag
 

@@ -6,9 +6,10 @@ They take the speed and nothing else: reaction time and deceleration lie in the 
 from __future__ import annotations
 
 from collections.abc import Mapping
+from typing import Any
 
 import numpy as np
-from numpy.typing import ArrayLike
+from numpy.typing import ArrayLike, NDArray
 
 from chartgen.motion.limits import KMH_PER_MPS, FloatArray, checked
 from chartgen.motion.stopping import Stop
@@ -114,6 +115,7 @@ def _record(speed: FloatArray, *, reaction: FloatArray, braking: FloatArray) -> 
     made = {name: np.asarray(value, dtype=np.float64) for name, value in arrays.items()}
     code = np.zeros(speed.shape, dtype=np.int8)
     stops = np.ones(speed.shape, dtype=bool)
-    for array in (*made.values(), code, stops):
+    every: tuple[NDArray[Any], ...] = (*made.values(), code, stops)
+    for array in every:
         array.setflags(write=False)
     return Stop(**made, stops=stops, reason_code=code)

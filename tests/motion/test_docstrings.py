@@ -25,13 +25,16 @@ def public_functions() -> Iterator[tuple[ModuleType, FunctionType]]:
 
 
 # Helpers between the files of this floor: checks of arguments, and picking rows. Their docstrings are plain.
-PLAIN = {"checked", "checked_friction", "some"}
+PLAIN = {"checked", "checked_friction", "checked_tables", "some"}
 CALLED = [f for _, f in public_functions() if f.__name__ not in PLAIN]
 
 
 def test_the_list_is_complete() -> None:
     assert {f.__name__ for f in CALLED} == {
-        *("stop", "lag", "build_up", "full_braking", "friction_at"),
+        *("stop", "lag", "build_up", "full_braking", "friction_at", "penn_state", "speed_constant"),
+        *("braking_distance_and_time", "dropped_rule_time", "lognormal", "lognormal_percentile"),
+        *("residual_speed", "greatest_speed", "greatest_speed_in_gap", "stopping_percentiles"),
+        *("square_metric", "square_half_metric", "square_feet"),
         *("sight_metric", "sight_us", "slide_metric", "slide_us", "gap_seconds", "gap_distance_m"),
     }
 
@@ -42,7 +45,8 @@ def test_docstring_has_its_parts(function: FunctionType) -> None:
     assert text is not None
     at = [text.index(part) for part in ("Formula: ", "Args:", "Returns:", "Raises:", "Source: ", ">>> ")]
     assert at == sorted(at)
-    documented = re.findall(r"^    (\w+): ", text[text.index("Args:") : text.index("Returns:")], flags=re.MULTILINE)
+    arguments = text[text.index("Args:") : text.index("Returns:")]
+    documented = re.findall(r"^    \*{0,2}(\w+): ", arguments, flags=re.MULTILINE)
     assert documented == list(inspect.signature(function).parameters)
 
 

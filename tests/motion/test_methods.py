@@ -162,7 +162,7 @@ def test_inputs_say_what_the_functions_take() -> None:
         parameters = dict(inspect.signature(inputs.function).parameters)
         assert next(iter(parameters)) == "speed_mps"
         parameters.pop("speed_mps")
-        has_friction = all(parameters.pop(p, None) is not None for p in ("mu", "f60", "sp_kmh", "max_mu"))
+        has_friction = all(parameters.pop(p, None) is not None for p in ("mu", "f60", "sp_kmh", "max_mu", "tables", "table"))
         assert has_friction == inputs.usable("friction")
         takes = set(inputs.required | inputs.optional) - {"friction"}
         assert set(parameters) == takes, name
@@ -172,7 +172,10 @@ def test_inputs_say_what_the_functions_take() -> None:
 
 
 def test_what_a_method_cannot_use() -> None:
-    assert set(METHOD_INPUTS) == {"first-principles", "sight-metric", "sight-us", "slide-metric", "slide-us"}
+    rules = {"square-metric", "square-half-metric", "square-feet"}
+    assert set(METHOD_INPUTS) - rules == {"first-principles", "sight-metric", "sight-us", "slide-metric", "slide-us"}
+    for name in rules:
+        assert not METHOD_INPUTS[name].required | METHOD_INPUTS[name].optional
     for name in ("sight-metric", "sight-us", "slide-metric", "slide-us"):
         assert not METHOD_INPUTS[name].usable("brake_lag_s")
         assert not METHOD_INPUTS[name].usable("build_up_s")

@@ -198,7 +198,7 @@ def test_friction_that_falls_decides_at_the_highest_speed_passed() -> None:
 
 
 def test_reasons_are_the_published_codes() -> None:
-    assert REASONS == ("", "too-little-friction", "never-at-rest")
+    assert REASONS == ("", "too-little-friction", "never-at-rest", "outside-friction-range")
 
 
 def test_full_deceleration_includes_the_slope() -> None:
