@@ -140,8 +140,11 @@ def assumptions(edition: Edition, rows: pd.DataFrame | pd.Series, sheet: pd.Data
 
 
 def _between(rows: pd.DataFrame, column: str) -> AtSpeed:
-    """The column at the lowest and at the highest speed of `rows`, which stand in speed order."""
-    low, high = rows.iloc[0], rows.iloc[-1]
+    """The column at the lowest and at the highest speed of `rows`, which stand in speed order; speeds of which the
+    friction's source does not speak are passed over."""
+    known = rows[rows[column].notna()]
+    seen = known if len(known) else rows
+    low, high = seen.iloc[0], seen.iloc[-1]
     return AtSpeed(
         low_speed=float(low["speed"]),
         low=float(low[column]),

@@ -12,6 +12,7 @@ from chartgen.figures.rounding import up
 from chartgen.figures.stops import arguments
 from chartgen.figures.units import from_metres
 from chartgen.motion.friction import friction_at
+from chartgen.motion.friction_table import FrictionTable
 from chartgen.motion.limits import KMH_PER_MPS
 from chartgen.motion.spread import stopping_percentiles
 
@@ -127,8 +128,6 @@ def reference_friction(friction: Friction) -> float:
     if friction.mu is not None:
         return friction.mu
     if friction.table is not None:
-        from chartgen.motion.friction import FrictionTable
-
         speeds, mu = zip(*friction.table, strict=True)
         table = FrictionTable(speeds_mps=np.array(speeds) / KMH_PER_MPS, mu=np.array(mu))
         return float(table.at(np.array([min(max(_REFERENCE_KMH, speeds[0]), speeds[-1]) / KMH_PER_MPS]))[0])

@@ -9,6 +9,7 @@ import numpy.typing as npt
 
 from chartgen.figures.record import Columns
 from chartgen.motion.friction import friction_at
+from chartgen.motion.friction_table import FrictionTable
 from chartgen.motion.limits import KMH_PER_MPS
 from chartgen.motion.methods import METHOD_INPUTS
 from chartgen.motion.stopping import Stop
@@ -105,12 +106,8 @@ def _frictions(given: Columns, edition: Edition) -> Arguments:
     return out
 
 
-def friction_tables(surfaces: tuple[Surface, ...]) -> dict[str, Any]:
+def friction_tables(surfaces: tuple[Surface, ...]) -> dict[str, FrictionTable]:
     """The frictions that are tables by speed, by surface id; speeds in m/s."""
-    if all(s.friction.table is None for s in surfaces):
-        return {}
-    from chartgen.motion.friction import FrictionTable
-
     return {
         s.id: FrictionTable(
             speeds_mps=np.array([kmh for kmh, _ in s.friction.table]) / KMH_PER_MPS,

@@ -193,7 +193,7 @@ def _square(count: int, shift: tuple[float, float]) -> FloatArray:
     number = np.arange(1, count + 1)[:, None]
     ratios = np.array([1.0 / _PLASTIC, 1.0 / _PLASTIC**2])
     points = (number * ratios + np.array(shift)) % 1.0
-    return np.clip(points, 1e-12, 1.0 - 1e-12)
+    return np.asarray(np.clip(points, 1e-12, 1.0 - 1e-12), dtype=np.float64)
 
 
 def _shifts(seed: int) -> tuple[tuple[float, float], ...]:
@@ -210,5 +210,5 @@ def _quantiles(key: bytes) -> FloatArray:
 def _normal_quantile(shares: FloatArray) -> FloatArray:
     """Φ⁻¹ of each share (P. J. Wichura, algorithm AS 241, Applied Statistics 37, 1988, as the standard library has
     it)."""
-    flat: FloatArray = _quantiles(np.ascontiguousarray(shares).tobytes())
-    return flat.reshape(shares.shape)
+    flat = _quantiles(np.ascontiguousarray(shares).tobytes())
+    return np.asarray(np.reshape(flat, shares.shape), dtype=np.float64)
