@@ -1,27 +1,18 @@
-"""What a friction by speed comes to at one speed: for the checks between a curve, its range and its bounds."""
+"""What a friction comes to where it is checked: at 60 km/h, around which its range stands, and where it is greatest."""
 
 from __future__ import annotations
 
-from itertools import pairwise
-from math import exp, inf
+from math import inf
+
+import numpy as np
 
 from chartgen.edition.model import Friction
+from chartgen.motion.friction import friction_at
+from chartgen.motion.friction_table import FrictionTable
+from chartgen.motion.limits import KMH_PER_MPS
 
 REFERENCE_KMH = 60.0
-"""Where a stated range of friction stands (ASTM E1960 reports friction at this speed)."""
-KM_PER_MILE = 1.609344
-
-
-def speed_constant(texture_mm: float) -> float:
-    """Sp in km/h from the mean profile depth: Sp = 14.2 + 89.7 MPD (ASTM E1960)."""
-    return 14.2 + 89.7 * texture_mm
-
-
-def penn_state(sn0: float, png_h_per_mile: float) -> tuple[float, float]:
-    """F60 and Sp in km/h of SN(V) = SN0 exp(-PNG V / 100), V in mph: the same fall in other letters."""
-    return sn0 / 100.0 * exp(
-        -png_h_per_mile / 100.0 * REFERENCE_KMH / KM_PER_MILE
-    ), 100.0 * KM_PER_MILE / png_h_per_mile
+"""Where a stated range of a friction by speed stands: ASTM E1960 reports friction at this speed."""
 
 
 def reference_kmh(friction: Friction) -> float:
@@ -33,30 +24,22 @@ def reference_kmh(friction: Friction) -> float:
 
 def at_60(friction: Friction) -> float:
     """The friction that a stated range stands around: the constant, or the curve's value at `reference_kmh`."""
-    if friction.mu is not None:
-        return friction.mu
-    if friction.table is not None:
-        return _interpolated(friction.table, reference_kmh(friction))
-    return min(friction.f60 or inf, _cap(friction))
+    return _at(friction, reference_kmh(friction))
 
 
 def greatest(friction: Friction) -> float:
-    """The greatest friction anywhere on the curve: near standstill, or a table's greatest."""
+    """The greatest friction anywhere on the curve: at standstill, or a table's greatest."""
+    return _at(friction, 0.0) if friction.table is None else max(mu for _, mu in friction.table)
+
+
+def _at(friction: Friction, speed_kmh: float) -> float:
+    speed_mps = speed_kmh / KMH_PER_MPS
+    if friction.table is not None:
+        speeds, mu = (np.array(column) for column in zip(*friction.table, strict=True))
+        return float(FrictionTable(speeds / KMH_PER_MPS, mu).at(speed_mps))
     if friction.mu is not None:
         return friction.mu
-    if friction.table is not None:
-        return max(mu for _, mu in friction.table)
     if friction.f60 is None or friction.sp_kmh is None:
-        return inf
-    return min(friction.f60 * exp(REFERENCE_KMH / friction.sp_kmh), _cap(friction))
-
-
-def _cap(friction: Friction) -> float:
-    return inf if friction.max_mu is None else friction.max_mu
-
-
-def _interpolated(table: tuple[tuple[float, float], ...], at: float) -> float:
-    for (slow, mu), (fast, next_mu) in pairwise(table):
-        if slow <= at <= fast:
-            return mu + (next_mu - mu) * (at - slow) / (fast - slow)
-    return table[-1][1]
+        raise ValueError("friction: there is none")
+    cap = inf if friction.max_mu is None else friction.max_mu
+    return float(friction_at(speed_mps, f60=friction.f60, sp_kmh=friction.sp_kmh, max_mu=cap))

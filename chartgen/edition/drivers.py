@@ -3,12 +3,11 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from math import ceil, exp, log, nan, sqrt
-from statistics import NormalDist
+from math import ceil, nan
 from typing import Literal
 
 from chartgen.edition.catalogue import DRIVERS
-from chartgen.edition.methods import IMPLIED_REACTION_S, needs_time
+from chartgen.edition.methods import needs_time
 from chartgen.edition.model import Driver, Reaction, Source
 from chartgen.edition.parts import cannot_use, needed, picked, plain, preset_name, source
 from chartgen.edition.quantity import Quantity
@@ -16,6 +15,8 @@ from chartgen.edition.reading import Reading, Row
 from chartgen.edition.spec_parts import PERCENTILES, REACTION_BOUNDS
 from chartgen.edition.walk import within
 from chartgen.motion.limits import GRAVITY_MPS2
+from chartgen.motion.reaction import dropped_rule_time, lognormal, lognormal_percentile
+from chartgen.motion.thumb import IMPLIED_REACTION_S
 
 _Percentile = Literal["p50", "p85", "p95"]
 _TWO_PERCENTILES = 'reaction_time = { p50 = "1.1 s", p85 = "1.6 s" }'
@@ -98,11 +99,11 @@ def _percentile_time(given: object, percentile: str, mu: float, sigma: float) ->
     """The percentile as it was stated, else the lognormal's: a stated 1.6 s stays 1.6 s to the last digit."""
     if isinstance(given, Row) and percentile in given:
         return float(given[percentile].value)
-    return exp(mu + sigma * _z(percentile))
+    return lognormal_percentile(mu, sigma, _share(percentile))
 
 
-def _z(percentile: str) -> float:
-    return NormalDist().inv_cdf(int(percentile[1:]) / 100)
+def _share(percentile: str) -> float:
+    return int(percentile[1:]) / 100
 
 
 def _lognormal(reading: Reading, given: Row) -> tuple[float, float] | None:
@@ -118,8 +119,7 @@ def _lognormal(reading: Reading, given: Row) -> tuple[float, float] | None:
         allowed = f"a time for {high} that is longer than the one for {low}"
         reading.fault(given.path, f"{low} is not shorter than {high}", allowed, given=plain(given))
         return None
-    sigma = (log(t_high) - log(t_low)) / (_z(high) - _z(low))
-    return log(t_low) - sigma * _z(low), sigma
+    return lognormal(_share(low), t_low, _share(high), t_high)
 
 
 # ---- a group's own measurement, and the two shares of a time ------------------------------------------------------
@@ -132,7 +132,7 @@ def _dropped(reading: Reading, given: Row) -> Reaction | None:
         reading.fault(given.path, "a dropped rule and percentiles are two ways to say it", allowed, given=plain(given))
         return None
     drop: Quantity = given["drop"]
-    time_s = sqrt(2.0 * drop.value / GRAVITY_MPS2)
+    time_s = float(dropped_rule_time(drop.value))
     if time_s < REACTION_BOUNDS.least:
         least_m = ceil(GRAVITY_MPS2 * REACTION_BOUNDS.least**2 / 2.0 * 1000.0) / 1000.0
         problem = f"a rule falls so far in {time_s:.3g} s, which is out of range"

@@ -59,7 +59,8 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     method: Method = ADOPTED if adopts else figures.get("method", FIRST_PRINCIPLES)
     rounding = scales.rounding(reading, figures, distance_unit, also_unit)
     drivers = [driver_parts.driver(reading, row, method) for row in root.get("driver", [])]
-    surfaces = [surface_parts.surface(reading, row, method) for row in root.get("surface", [])]
+    fastest = speeds[-1] if speeds else None
+    surfaces = [surface_parts.surface(reading, row, method, fastest) for row in root.get("surface", [])]
     vehicles = [vehicle_parts.vehicle(reading, row, method, root["vehicle"]) for row in root.get("vehicle", [])]
     for number, row in enumerate(root.get("poster", []), 1):
         if "id" not in row.broken:

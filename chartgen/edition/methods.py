@@ -8,8 +8,6 @@ FIRST_PRINCIPLES: Final = "first-principles"
 ADOPTED: Final = "adopted"
 THUMB = ("square-metric", "square-half-metric", "square-feet")
 """Rules of thumb, a distance from the speed alone: everything else is within the rule."""
-IMPLIED_REACTION_S = {"square-metric": 1.08, "square-half-metric": 1.08, "square-feet": 15 / 22}
-"""The first term of each rule as a time: 3 m for each 10 km/h; 1 ft for each mph."""
 METHODS = (FIRST_PRINCIPLES, "sight-metric", "sight-us", "slide-metric", "slide-us", *THUMB)
 """Those that an edition may name; a table that is adopted needs no name."""
 

@@ -7,15 +7,16 @@ from itertools import pairwise
 from typing import Any, Literal, cast
 
 from chartgen.edition.catalogue import SURFACES
-from chartgen.edition.curves import at_60, greatest, penn_state, reference_kmh, speed_constant
+from chartgen.edition.curves import at_60, greatest, reference_kmh
 from chartgen.edition.measures import SPEED
-from chartgen.edition.methods import ADOPTED, THUMB, needs_friction
+from chartgen.edition.methods import ADOPTED, FIRST_PRINCIPLES, THUMB, called, needs_friction
 from chartgen.edition.model import Friction, Surface
 from chartgen.edition.parts import cannot_use, needed, picked, plain, preset_name, source
 from chartgen.edition.quantity import Quantity, factor
 from chartgen.edition.reading import Reading, Row
 from chartgen.edition.scales import FASTEST_MPS
 from chartgen.edition.spec_parts import FRICTION_BOUNDS
+from chartgen.motion.friction import penn_state, speed_constant
 
 _State = Literal["dry", "wet", "snow", "ice"]
 STATES: tuple[_State, ...] = ("dry", "wet", "snow", "ice")
@@ -23,8 +24,8 @@ FORMS = '{ f60 = 0.35, sp = "110 km/h" }, { f60 = 0.35, texture = "0.8 mm" }, { 
 _KEYS = ("friction", "friction_range", "valid")
 
 
-def surface(reading: Reading, row: Row, method: str) -> Surface | None:
-    """One [[surface]]; None where it does not hold together."""
+def surface(reading: Reading, row: Row, method: str, fastest: Quantity | None) -> Surface | None:
+    """One [[surface]]; None where it does not hold together. `fastest`: the last of the edition's speeds."""
     preset = picked(reading, row, SURFACES)
     if preset is None and "use" not in row:
         needed(reading, row, "surface", "name", *(("friction",) if needs_friction(method) else ()))
@@ -32,6 +33,8 @@ def surface(reading: Reading, row: Row, method: str) -> Surface | None:
     _unused(reading, row, method)
     if friction is not None and "friction" not in row.broken:
         friction = _limits(reading, row, friction)
+    if friction is not None and method != FIRST_PRINCIPLES:
+        friction = _without_gaps(reading, row, method, friction, fastest)
     if row.broken or friction is None:
         return None
     own = preset is None or "source" in row or any(key in row for key in _KEYS)
@@ -185,6 +188,25 @@ def _limits(reading: Reading, row: Row, friction: Friction) -> Friction | None:
     if "valid" in row:
         stated["valid_kmh"] = _valid(reading, row, friction)
     return replace(friction, **stated) if len(reading.faults) == before else None
+
+
+def _without_gaps(
+    reading: Reading, row: Row, method: str, friction: Friction, fastest: Quantity | None
+) -> Friction | None:
+    """The friction without its `valid`: only first principles leave a row out. Where the method uses friction, a fault
+    for speeds that the source does not speak of."""
+    table = friction.table
+    ends = ([friction.valid_kmh[1]] if friction.valid_kmh else []) + ([table[-1][0]] if table else [])
+    if needs_friction(method) and ends and fastest is not None and kmh(fastest) > min(ends) * (1 + 1e-9):
+        where = next((row.at(key) for key in ("valid", "friction") if key in row), row.at("use"))
+        reading.fault(
+            where,
+            f"the source speaks of speeds up to {min(ends):.6g} km/h, and the edition goes up to {fastest.text}; "
+            f"{called(method)} cannot leave a row out",
+            f'slower speeds, or method = "{FIRST_PRINCIPLES}"',
+        )
+        return None
+    return replace(friction, valid_kmh=None)
 
 
 def _range(reading: Reading, row: Row, friction: Friction, low: float, high: float) -> None:

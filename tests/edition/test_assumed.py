@@ -203,3 +203,19 @@ def test_a_spread_follows_from_reaction_or_friction(edition: Changed, change: tu
     made = edition(section, change)
     assert (made.spread, made.compare) == (Spread(samples=256, seed=7), False)
     assert edition((section[0], "[figures.spread]\n\n[[driver]]"), change).spread == Spread(samples=4096, seed=1)
+
+
+@pytest.mark.parametrize("method", ["slide-metric", "sight-metric"])
+def test_only_first_principles_leave_rows_out(edition: Changed, method: str) -> None:
+    """Within the source's speeds another method loses nothing without them."""
+    lorry = ('brake_lag = "0.4 s"\n', "")
+    limit = ('max_deceleration = "5 m/s^2"\n', "") if method == "slide-metric" else (
+        'kind = "car"', 'kind = "car"\nmax_deceleration = "3.4 m/s^2"'
+    )  # fmt: skip
+    made = edition(
+        ("[[driver]]", f'[figures]\nmethod = "{method}"\n\n[[driver]]'),
+        (FRICTION, FRICTION + '\nvalid = ["20 mph", "70 mph"]'),
+        lorry,
+        limit,
+    )
+    assert made.surface("dry").friction.valid_kmh is None

@@ -52,8 +52,8 @@ def test_a_demo_is_sound_and_wholly_made(demo: Edition) -> None:
 
 def test_a_demo_has_every_text_in_both_languages(demo: Edition) -> None:
     found = list(texts(demo))
-    # Title, publisher, and a name for each driver, surface and vehicle, a headline for each poster.
-    assert len(found) == 2 + len(demo.drivers + demo.surfaces + demo.vehicles + demo.posters)
+    # Title, publisher, a name for each driver, surface, vehicle and speed limit, a headline for each poster.
+    assert len(found) == 2 + len(demo.drivers + demo.surfaces + demo.vehicles + demo.limits + demo.posters)
     assert all(tuple(text) == demo.languages for text in found)
 
 
