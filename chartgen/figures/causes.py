@@ -21,7 +21,6 @@ _ADOPTED: Final = ("reaction_distance_m", "lag_distance_m", "braking_distance_m"
 
 ABSENT_MEANS: Final[Mapping[str, Value]] = {
     "brake_share": 1.0, "friction_table": None, "valid_to_mps": None, "perception_s": None, "gap_rule": None,
-    "rounding.also_step": None,
 }  # fmt: skip
 """What it means that a row does not have the input. Of any other input that one issue alone knows nothing is said: the
 issue was made before the program wrote it down."""
