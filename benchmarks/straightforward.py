@@ -21,10 +21,12 @@ import pandas as pd
 import weasyprint
 
 from chartgen.charts.inks import palette
+from chartgen.edition.catalogue import SHELVES
 from chartgen.edition.load import load_edition
 from chartgen.edition.model import Cards, Edition, RosterRow
 from chartgen.figures.assume import assumptions
-from chartgen.figures.export import to_csv, to_json
+from chartgen.figures.compare import compare
+from chartgen.figures.export import asked_greatest, to_csv, to_json
 from chartgen.figures.record import Figures
 from chartgen.figures.table import figures, select
 from chartgen.language.headline import headline_plain
@@ -71,6 +73,9 @@ dl div{display:inline-block;margin-right:2em}dt,dd{display:inline}</style>
 <dl>{% for name, value in face.control %}<div><dt>{{ name }}</dt> <dd>{{ value }}</dd></div>{% endfor %}</dl>
 </div>{% endfor %}</html>""")
 CONTROL = ("title", "reference", "issue", "issued", "review_by", "owner", "approver", "copy", "status", "licence")
+
+
+Block = tuple[str, list[list[str]]]
 
 
 @dataclass(frozen=True)
@@ -129,6 +134,105 @@ def chart(
     return out.getvalue()
 
 
+def bars(job: Job, names: list[str], lengths: list[float], texts: list[str], language: Language) -> str:
+    """Level bars with a name before and a figure behind each, as an SVG."""
+    ink = palette(job.edition.palette).ink("braking").srgb
+    fig, ax = plt.subplots(figsize=(180 / 25.4, max(1.0, 0.33 * len(names))))
+    drawn = ax.barh(np.arange(len(names)), np.nan_to_num(lengths), color=ink)
+    ax.bar_label(drawn, texts, weight="bold")
+    ax.set_yticks(np.arange(len(names)), names)
+    ax.invert_yaxis()
+    if language.direction == "rtl":
+        ax.invert_xaxis()
+        ax.yaxis.tick_right()
+    out = io.StringIO()
+    fig.savefig(out, format="svg")
+    plt.close(fig)
+    return out.getvalue()
+
+
+def by_speed(job: Job, language: Language, rows: pd.DataFrame, printed: list[str], length: str = "") -> Block:
+    """A table of some printed columns by speed, with the bars of `length` where it is given."""
+    lines = [
+        [language.speed(row["printed_speed"], job.figures.speed_unit)]
+        + [language.t("word.none") if np.isnan(row[c]) else language.number(row[c]) for c in printed]
+        for row in rows.to_dict("records")
+    ]
+    if not length or rows[length].isna().all():
+        return "", lines
+    known = rows[rows[length].notna()]
+    names = [language.speed(x, job.figures.speed_unit) for x in known["printed_speed"]]
+    texts = [language.number(x) for x in known[printed[0]]]
+    return bars(job, names, list(known[length]), texts, language), lines
+
+
+def answers(job: Job, language: Language) -> dict[str, list[Block]]:
+    """A page for each question that the edition asks."""
+    asked, table, made = job.edition.questions, job.figures.table, {}
+    cases = [rows for _, rows in table.groupby(["vehicle", "surface", "grade", "driver"], sort=False)]
+    slowest = [
+        max((r for _, r in rows.groupby("driver", sort=False)), key=lambda r: r["reaction_time_s"].iloc[0])
+        for _, rows in table.groupby(["vehicle", "surface", "grade"], sort=False)
+    ]
+    charted = {(*rows[["vehicle", "surface", "grade", "driver"]].iloc[0],) for rows in slowest}
+
+    def pages_of(printed: list[str], length: str) -> list[Block]:
+        return [
+            by_speed(
+                job, language, rows, printed,
+                length if (*rows[["vehicle", "surface", "grade", "driver"]].iloc[0],) in charted else "",
+            )
+            for rows in cases
+            if rows[printed[0]].notna().any()
+        ]  # fmt: skip
+
+    if job.edition.spread is not None:
+        made["spread"] = pages_of(["printed_p50", "printed_p85", "printed_p95"], "")
+    if asked.residual_from is not None:
+        made["residual"] = pages_of(["printed_residual_speed"], "residual_speed_mps")
+    for name in ("driver", "surface"):
+        if getattr(asked, name) is not None:
+            made[f"added-{name}"] = pages_of([f"printed_added_by_{name}"], f"added_by_{name}_m")
+    firsts = [rows.iloc[0] for rows in cases]
+    kinds = asked_greatest(asked)
+    if kinds:
+        named = [f"{r['driver']} {r['vehicle']} {r['surface']}" for r in firsts]
+        made["greatest"] = [
+            (
+                bars(
+                    job, named, [r[f"greatest_{kind}_mps"] for r in firsts],
+                    [language.number(np.nan_to_num(r[f"printed_greatest_{kind}"])) for r in firsts], language,
+                ),
+                [[name, language.number(np.nan_to_num(r[f"printed_greatest_{kind}"]))] for name, r in zip(named, firsts, strict=True)],
+            )
+            for kind in kinds
+        ]  # fmt: skip
+    if asked.gaps:
+        columns = [f"printed_{what} {rule}" for rule in asked.gaps for what in ("gap_distance", "gap_s")]
+        different = {tuple(np.nan_to_num(rows[columns].to_numpy()).ravel()): rows for rows in reversed(cases)}
+        made["gaps"] = [by_speed(job, language, rows, columns, columns[0]) for rows in different.values()]
+    return made
+
+
+def beside(job: Job, language: Language) -> list[Block]:
+    """The edition beside each published table, and the catalogue: tables in words."""
+    comparisons = compare(job.figures, job.edition) if job.edition.compare else ()
+    return [("", [[str(getattr(row, name)) for name in row.__slots__] for row in c.rows]) for c in comparisons]
+
+
+def catalogue(language: Language) -> list[Block]:
+    return [
+        (
+            "",
+            [
+                [language.text(p.name), p.key, str(p.value), str(p.low), str(p.high), p.source.text]
+                for p in shelf.values()
+            ],
+        )
+        for shelf in SHELVES.values()
+    ]
+
+
 def cells(job: Job, language: Language, rows: pd.DataFrame) -> list[list[str]]:
     unit, out = job.figures.distance_unit, []
     for row in rows.to_dict("records"):
@@ -153,6 +257,8 @@ def pages(job: Job, folder: Path) -> None:
         wanted |= {f"surface-{s}": [b for k, b in blocks.items() if k[1] == s] for s in table["surface"].unique()}
         wanted |= {f"vehicle-{v}": [b for k, b in blocks.items() if k[0] == v] for v in table["vehicle"].unique()}
         wanted["method"] = [("", cells(job, language, table))]
+        wanted |= {f"answers-{id}": blocks for id, blocks in answers(job, language).items()}
+        wanted |= {"compare": beside(job, language), "catalogue": catalogue(language)}
         for name, shown in wanted.items():
             title, caution = language.text(edition.title), caution_sentences(language)
             text = PAGE.render(language=language, title=title, blocks=shown, caution=caution)

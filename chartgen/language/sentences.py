@@ -21,11 +21,21 @@ from chartgen.language.load import Language
 __all__ = [
     "assumption_fragments", "assumption_line", "assumption_line_html", "assumption_line_plain", "caution_sentences",
     "headline", "headline_html", "headline_pieces", "headline_plain", "notice_sentence", "notice_sentence_html",
+    "spread_sentence", "verdict",
 ]  # fmt: skip
 
 JOIN = " · "
 CAUTION = ("caution.worked", "caution.no_guarantee", "caution.law", "caution.design")
 """The sentences of the caution, in their order; all of them stand on every page and sheet."""
+
+VERDICTS = {"outside-friction-range": "verdict.outside_range"}
+"""What stands in place of a distance, by the row's reason, where it is not “does not stop”."""
+REASONS = {
+    "too-little-friction": "verdict.too_little_friction",
+    "never-at-rest": "verdict.never_at_rest",
+    "outside-friction-range": "verdict.outside_range_reason",
+}
+"""The sentence that says why, by the row's reason."""
 
 Fragment = tuple[str, Mapping[str, str]]
 """A word key and the values of its placeholders, written as the language writes them."""
@@ -58,6 +68,8 @@ def assumption_line_html(language: Language, edition: Edition, assumption: Assum
 def assumption_fragments(language: Language, edition: Edition, assumption: Assumption) -> tuple[Fragment, ...]:
     """The fragments of an assumption line, for those who set them as a list. Always the seven fields; a named method of
     a manual and a brake efficiency under 100 % are added."""
+    if assumption.adopted is not None:
+        return (("assume.adopted", {"source": assumption.adopted}), *_where(language, edition, assumption))
     fragments = [
         _reaction(language, assumption),
         _lag(language, assumption),
@@ -65,16 +77,30 @@ def assumption_fragments(language: Language, edition: Edition, assumption: Assum
     ]
     if assumption.braking.efficiency != 1.0:
         fragments.append(("assume.efficiency", {"share": language.percent(assumption.braking.efficiency)}))
-    fragments.append(("assume.surface", {"name": language.text(edition.surface(assumption.surface).name)}))
-    fragments.append(_slope(language, assumption.grade))
-    if assumption.load is None:
-        fragments.append(("assume.load_not_stated", {}))
-    else:
-        fragments.append(("assume.load", {"state": language.t(f"word.{assumption.load}")}))
+    fragments += _where(language, edition, assumption)
     fragments.append(_rounding(language, assumption.rounding))
     if assumption.method != "first-principles":
         fragments.append(("assume.method", {"name": language.t(f"method.name.{assumption.method}")}))
     return tuple(fragments)
+
+
+def _where(language: Language, edition: Edition, assumption: Assumption) -> list[Fragment]:
+    """Surface, slope and load."""
+    load: Fragment = ("assume.load_not_stated", {})
+    if assumption.load is not None:
+        load = ("assume.load", {"state": language.t(f"word.{assumption.load}")})
+    surface = language.text(edition.surface(assumption.surface).name)
+    return [("assume.surface", {"name": surface}), _slope(language, assumption.grade), load]
+
+
+def verdict(language: Language, reason: str) -> str:
+    """The words in place of a distance that a row does not have: it does not stop, or there is no figure."""
+    return language.t(VERDICTS.get(reason, "verdict.does_not_stop"))
+
+
+def spread_sentence(language: Language) -> tuple[str, dict[str, str]]:
+    """Key and values of the sentence that says what a whisker beside a column means."""
+    return "sheet.spread", {"middle": language.percent(0.85), "most": language.percent(0.95)}
 
 
 def notice_sentence(language: Language, notice: Notice) -> str:
@@ -97,6 +123,8 @@ def _notice_values(language: Language, notice: Notice) -> dict[str, str]:
 
 def _reaction(language: Language, assumption: Assumption) -> Fragment:
     time = language.seconds(assumption.reaction_time_s)
+    if assumption.perception_s is not None:
+        return "assume.perception", {"time": time, "perception": language.seconds(assumption.perception_s)}
     if assumption.reaction_percentile is None:
         return "assume.reaction", {"time": time}
     share = language.percent(int(assumption.reaction_percentile.removeprefix("p")) / 100)

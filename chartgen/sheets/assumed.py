@@ -21,6 +21,7 @@ _FALLING: Final = {"first": "friction", "low": "speed", "second": "friction", "h
 _COLUMNS: Final[Mapping[str, Mapping[str, str]]] = {
     "assume.reaction": {"time": "reaction_time_s"},
     "assume.reaction_percentile": {"time": "reaction_time_s"},
+    "assume.perception": {"time": "reaction_time_s", "perception": "perception_s"},
     "assume.lag": {"time": "brake_lag_s"},
     "assume.lag_build_up": {"time": "brake_lag_s", "rise": "build_up_s"},
     "assume.friction": {"value": "friction"},
@@ -65,9 +66,7 @@ def assumed(
     return (*found, *(_assumed(fragment, series[0], language, account) for fragment in shared))
 
 
-def _assumed(
-    fragment: Fragment, rows: pd.DataFrame, language: Language, account: Account, name: str = ""
-) -> Assumed:
+def _assumed(fragment: Fragment, rows: pd.DataFrame, language: Language, account: Account, name: str = "") -> Assumed:
     key, values = fragment
     _enter(fragment, rows, language, account)
     text = name + language.t(key, **values)

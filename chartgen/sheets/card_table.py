@@ -14,6 +14,7 @@ import numpy as np
 
 from chartgen.charts.drawing import FaceName
 from chartgen.charts.fonts import digit_ratio, extent
+from chartgen.language.sentences import verdict
 from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account, decimals_of
 from chartgen.sheets.card_foot import line_count
@@ -203,9 +204,7 @@ def set_table(
         plan.number_size([cell.text or "00" for cell in column], place_.width_mm, free, face)
         for column, place_ in list(zip(zip(*cells, strict=True), table.laid, strict=True))[1:]
     ]
-    lines = [
-        Line(speed=row[0].text, cells=_joined(row[1:]), bar_mm=bar) for row, bar in zip(cells, bars, strict=True)
-    ]
+    lines = [Line(speed=row[0].text, cells=_joined(row[1:]), bar_mm=bar) for row, bar in zip(cells, bars, strict=True)]
     return Block(
         kind="front" if table.barred else "back", top_mm=top_mm, row_mm=row_mm, group_mm=table.group_mm,
         names_mm=table.names_mm, size_mm=min(sizes), groups=table.groups, lines=tuple(lines),
@@ -243,7 +242,7 @@ def _cell(
     row = int(one.rows["row"].iloc[number])
     value = float(one.rows[one.quantity].iloc[number])
     if math.isnan(value):
-        return Cell(text="", words=language.t("verdict.does_not_stop"))
+        return Cell(text="", words=verdict(language, str(one.rows["reason"].iloc[number])))
     step = edition.rounding.step if one.quantity.startswith("printed_") and "gap_s" not in one.quantity else 1.0
     account.enter(row, one.quantity, language.tag, place)
     if one.quantity == "speed":

@@ -11,6 +11,7 @@ from markupsafe import Markup
 from chartgen.edition.catalogue import GAP_RULES
 from chartgen.figures.table import select
 from chartgen.figures.units import from_metres
+from chartgen.language.sentences import REASONS
 from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account
 from chartgen.sheets.assumed import Assumed, assumed
@@ -27,7 +28,6 @@ SHORT_CAUTION: Final = ("caution.no_guarantee", "caution.law")
 """What the back says where the four sentences, which stand on the front, have no room a second time."""
 LEAST_DECELERATION_MPS2: Final = 0.1
 """Under it a vehicle counts as one that does not stop."""
-_REASONS: Final = {"too-little-friction": "verdict.too_little_friction", "never-at-rest": "verdict.never_at_rest"}
 _SIDES: Final = 2
 
 
@@ -137,7 +137,7 @@ def _reason(card: Card, reason: str, account: Account) -> Markup:
         feet = card.edition.distance_unit == "ft"
         least = float(from_metres(LEAST_DECELERATION_MPS2, "ft")) if feet else LEAST_DECELERATION_MPS2
         values = {"least": account.fact(language.deceleration(least, "ft/s²" if feet else "m/s²"))}
-    return language.html(_REASONS[reason], **values)
+    return language.html(REASONS[reason], **values)
 
 
 def _gap(card: Card, laden: Series, account: Account) -> Paragraph:

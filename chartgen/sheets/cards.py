@@ -196,9 +196,7 @@ def _backs(task: _Task, account: Account, *, short: bool) -> list[_Draft]:
     return _level(task, tables, lambda card: back_foot(card, account, short=short))
 
 
-def _level(
-    task: _Task, tables: Callable[[Card], tuple[Table, ...]], foot: Callable[[Card], Foot]
-) -> list[_Draft]:
+def _level(task: _Task, tables: Callable[[Card], tuple[Table, ...]], foot: Callable[[Card], Foot]) -> list[_Draft]:
     """Drafts of one side of all cards, the heads of their tables equally high."""
     planned = zip(*(as_high(column) for column in zip(*(tables(card) for card in task.deck), strict=True)), strict=True)
     return [_Draft(card=card, tables=own, foot=foot(card)) for card, own in zip(task.deck, planned, strict=True)]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -12,7 +12,7 @@ from chartgen.charts.drawing import Drawing, FaceName
 from chartgen.edition.model import Edition
 from chartgen.figures.record import Figures
 from chartgen.language.load import Language
-from chartgen.language.sentences import JOIN
+from chartgen.language.sentences import JOIN, spread_sentence
 from chartgen.sheets.account import Account
 from chartgen.sheets.assumed import Assumed, assumed
 from chartgen.sheets.control import caution, notices
@@ -91,7 +91,16 @@ def poster_notes(
                 Note(lines=(notice,), kind="notice", language=language)
                 for notice in notices(language, figures, rows, account)
             ),
+            *_spread(language, series, account),
             Note(lines=(escape(caution(language, account)),), kind="caution", language=language),
             *(Note(lines=(escape(text),), kind="also", language=other) for other, text in also),
         ),
     )
+
+
+def _spread(language: Language, series: Sequence[pd.DataFrame], account: Account) -> Iterator[Note]:
+    """What a whisker beside a column means, where there is one."""
+    if any(one["stopping_p50_m"].notna().any() for one in series):
+        key, values = spread_sentence(language)
+        account.fact(language.t(key, **values))
+        yield Note(lines=(language.html(key, **values),), kind="spread", language=language)

@@ -10,6 +10,7 @@ from chartgen.charts.drawing import Drawing
 from chartgen.charts.fonts import extent
 from chartgen.edition.model import Edition
 from chartgen.language.load import Language
+from chartgen.language.sentences import verdict
 from chartgen.sheets.account import Account, decimals_of
 from chartgen.sheets.control import once
 from chartgen.sheets.markup import digit_centre, reading_order
@@ -252,7 +253,6 @@ def _row(
         names.append((language.tag, language.direction, name))
     for _, _, text in once(names):
         account.fact(text)
-    verdict = once((language.tag, language.direction, language.t("verdict.does_not_stop")) for language in languages)
     rows = [row for rows in by_speed for row in rows]
     cells = []
     for row, box in zip(rows, boxes, strict=True):
@@ -260,5 +260,7 @@ def _row(
             text = account.figure(int(row["row"]), kind.column, languages[0], (1, box), kind.step)
             cells.append(Cell(text=text))
         else:
-            cells.append(Cell(text="", words=verdict))
+            reason = str(row["reason"])
+            said = once((language.tag, language.direction, verdict(language, reason)) for language in languages)
+            cells.append(Cell(text="", words=said))
     return TableRow(names=once(names), cells=tuple(cells), total=kind.part == "stopping")

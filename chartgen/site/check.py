@@ -16,12 +16,14 @@ import numpy as np
 
 from chartgen.edition.model import Edition
 from chartgen.errors import Finding
+from chartgen.figures.compare import compare
 from chartgen.figures.export import to_csv, to_json
 from chartgen.figures.record import Figures
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS, number_style
-from chartgen.language.sentences import caution_sentences
+from chartgen.language.sentences import caution_sentences, verdict
 from chartgen.site.downloads import CSV, JSON
+from chartgen.site.edition_site import page_names
 from chartgen.site.frame import CSP
 from chartgen.site.reading import ReadChart, ReadPage, ReadRow, ReadTable, read_page
 from chartgen.site.tables import TIME_STEP_S
@@ -59,7 +61,7 @@ def _expected(
 ) -> Iterator[Finding]:
     """The pages that must be there."""
     surfaces, vehicles = set(figures.table["surface"]), set(figures.table["vehicle"])
-    names = ["index.html", "method.html", "downloads.html"]
+    names = list(page_names(edition, compare(figures, edition) if edition.compare else ()))
     names += [f"surface-{s.id}.html" for s in edition.surfaces if s.id in surfaces]
     names += [f"vehicle-{v.id}.html" for v in edition.vehicles if v.id in vehicles]
     for path in ("index.html", CSV, JSON, *(f"{language.tag}/{name}" for language in languages for name in names)):
@@ -173,13 +175,18 @@ def _table(path: str, table: ReadTable, language: Language, records: Records) ->
 def _cell(
     text: str, quantities: list[str], record: Mapping[str, Any], language: Language, kind: str, *, never: bool
 ) -> Iterator[str]:
-    verdict = language.t("verdict.does_not_stop")
-    if never or text == verdict:
-        if not text.startswith(verdict):
-            yield f"says {text!r} where it must say {verdict!r}"
+    wanted = verdict(language, str(record["reason"]))
+    if never or text in (wanted, language.t("word.none")):
+        if never and not text.startswith(wanted):
+            yield f"says {text!r} where it must say {wanted!r}"
         for quantity in quantities:
             if np.isfinite(float(record[quantity])):
-                yield f"{quantity} says that it does not stop, but the figures have {record[quantity]}"
+                yield f"{quantity} says {text!r}, but the figures have {record[quantity]}"
+        return
+    if quantities == [""]:  # the head over names: no figure stands under it
+        return
+    if quantities[0].startswith("printed_greatest_"):
+        yield from _greatest(text, quantities[0], record, language)
         return
     if len(quantities) != 1 or quantities[0] not in record:
         yield f"{text!r} stands under no column of the figures"
@@ -187,6 +194,18 @@ def _cell(
     value, printed = float(record[quantities[0]]), read_number(text, language.tag)
     if printed is None or not _agrees(printed, value, text, quantities[0], language.tag, kind):
         yield f"{quantities[0]} is printed as {text!r}, but the figures have {value!r}"
+
+
+def _greatest(text: str, quantity: str, record: Mapping[str, Any], language: Language) -> Iterator[str]:
+    """A greatest speed: its number, "or more" where even the fastest speed is slow enough, words where none is."""
+    value = float(record[quantity])
+    wanted = language.number(value) if np.isfinite(value) else language.t("word.none")
+    if value == 0.0:
+        wanted = language.t("answers.no_speed")
+    elif np.isfinite(value) and record[quantity.replace("printed_", "") + "_at_top"]:
+        wanted = language.t("answers.at_least", speed=wanted)
+    if text != wanted:
+        yield f"{quantity} is printed as {text!r}, but the figures have {wanted!r}"
 
 
 def _agrees(printed: float, value: float, text: str, quantity: str, tag: str, kind: str) -> bool:
@@ -200,13 +219,18 @@ def _agrees(printed: float, value: float, text: str, quantity: str, tag: str, ki
 
 
 def read_number(text: str, tag: str) -> float | None:
-    """A number as a locale writes it, back to a float; None where it is not one.
+    """A number as a locale writes it, back to a float; None where it is not one. A plus sign may stand before it.
 
     Where thousands are parted by a space, either no-break space is read: a drawing takes the wide one for the narrow.
     """
     style = number_style(tag)
     groups = "\u00a0\u202f" if style.group.isspace() else style.group
-    plain = text.translate(dict.fromkeys(map(ord, groups))).replace(style.decimal, ".").replace(MINUS, "-")
+    plain = (
+        text.removeprefix("+")
+        .translate(dict.fromkeys(map(ord, groups)))
+        .replace(style.decimal, ".")
+        .replace(MINUS, "-")
+    )
     return float(plain) if re.fullmatch(r"-?\d+(\.\d+)?", plain) else None
 
 
@@ -215,7 +239,8 @@ def _chart(
 ) -> Iterator[Finding]:
     """Every number on a chart is a printed figure of a row in the tables below it."""
     rows = [records[n] for t in tables for r in t.rows[1:] if (n := row_number(r)) is not None and n in records]
-    known = {float(row[quantity]) for row in rows for quantity in _FIGURES}
+    heads = {cell.quantity for t in tables if t.rows for cell in t.rows[0].cells if cell.quantity}
+    known = {float(row[quantity]) for row in rows for quantity in heads.union(_FIGURES) if quantity in row}
     for text in chart.numbers:
         printed = read_number(text, language.tag)
         if printed is None or not any(abs(printed - value) <= _SAME * abs(value) for value in known):

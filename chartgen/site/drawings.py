@@ -16,6 +16,7 @@ from chartgen.charts.drawing import Drawing, Label
 from chartgen.charts.inks import palette
 from chartgen.edition.model import Text
 from chartgen.language.load import Language
+from chartgen.language.sentences import spread_sentence
 from chartgen.site.compact import compact
 from chartgen.site.edition_site import Group, Series, Site, slope_plain
 
@@ -127,9 +128,13 @@ def _threes(series: tuple[Series, ...]) -> Iterator[tuple[Series, ...]]:
 
 def _caption(site: Site, language: Language, drawing: Drawing, name: str) -> Markup:
     """What a course is worth; where no course is drawn, what the chart shows."""
-    if not drawing.course:
-        return escape(name)
-    return language.html("sheet.course_m", length=language.distance(drawing.course, site.figures.distance_unit))
+    said = escape(name)
+    if drawing.course:
+        said = language.html("sheet.course_m", length=language.distance(drawing.course, site.figures.distance_unit))
+    if drawing.spread:
+        key, values = spread_sentence(language)
+        said = Markup("{}. {}").format(said, language.html(key, **values))
+    return said
 
 
 def inline(drawing: Drawing, language: Language, told: str) -> Markup:

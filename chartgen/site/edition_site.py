@@ -11,6 +11,8 @@ from markupsafe import Markup, escape
 
 from chartgen.edition.model import Edition, Text
 from chartgen.figures.assume import Assumption, assumptions
+from chartgen.figures.changes import Changes
+from chartgen.figures.compare import Comparison
 from chartgen.figures.record import Figures, Notice
 from chartgen.language.bidi import isolated
 from chartgen.language.load import Language
@@ -76,6 +78,13 @@ class Site:
     languages: tuple[Language, ...]
     leaflets: tuple[Leaflet, ...]
     groups: tuple[Group, ...]
+    comparisons: tuple[Comparison, ...] = ()
+    changes: Changes | None = None
+
+    @property
+    def page_names(self) -> tuple[str, ...]:
+        """File names of the pages beside those of surfaces and vehicles."""
+        return page_names(self.edition, self.comparisons)
 
     def on_surface(self, surface: str) -> tuple[Group, ...]:
         return tuple(g for g in self.groups if g.surface == surface)
@@ -99,6 +108,32 @@ class Site:
             if notice.reader and (not notice.rows or rows.intersection(notice.rows)):
                 found.setdefault(notice.code, notice)
         return tuple(found.values())
+
+
+def page_names(edition: Edition, comparisons: tuple[Comparison, ...]) -> tuple[str, ...]:
+    """The pages that every language of an edition has, beside those of its surfaces and vehicles."""
+    names = ["index.html"]
+    if answer_ids(edition):
+        names += ["answers.html", *(f"answers-{id}.html" for id in answer_ids(edition))]
+    if comparisons:
+        names.append("compare.html")
+    if edition.previous is not None:
+        names.append("changes.html")
+    return (*names, "method.html", "catalogue.html", "downloads.html")
+
+
+def answer_ids(edition: Edition) -> tuple[str, ...]:
+    """What an edition asks for beside the distances, in the order of its pages; each has a page of its own."""
+    asked = edition.questions
+    there = {
+        "spread": edition.spread is not None,
+        "greatest": asked.sight_m is not None or asked.headlight is not None or bool(asked.gaps),
+        "residual": asked.residual_from is not None,
+        "added-driver": asked.driver is not None,
+        "added-surface": asked.surface is not None,
+        "gaps": bool(asked.gaps),
+    }
+    return tuple(id for id, wanted in there.items() if wanted)
 
 
 def groups(edition: Edition, figures: Figures) -> Iterator[Group]:

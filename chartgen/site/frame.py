@@ -21,9 +21,13 @@ CSP: Final = (
 
 _PAGES: Final = (
     ("index.html", "page.home"),
+    ("answers.html", "page.answers"),
+    ("compare.html", "page.compare"),
+    ("changes.html", "page.changes"),
     ("method.html", "page.method"),
     ("downloads.html", "page.downloads"),
 )
+"""Those an edition has, see `edition_site.page_names`; the catalogue is reached from the method page."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,7 +89,9 @@ def frame(site: Site, language: Language, page: str, title: str, description: st
             )
             for other in site.languages
         ),
-        pages=tuple(Link(href, escape(language.t(key)), href == page) for href, key in _PAGES),
+        pages=tuple(
+            Link(href, escape(language.t(key)), href == page) for href, key in _PAGES if href in site.page_names
+        ),
         words={
             "language": language.t("page.language"),
             "nav": language.t("page.nav"),

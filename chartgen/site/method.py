@@ -10,12 +10,15 @@ from typing import Final
 from markupsafe import Markup, escape
 
 from chartgen.edition.catalogue import GAP_RULES
-from chartgen.edition.model import Friction, Source
+from chartgen.edition.model import Friction, Source, Vehicle
 from chartgen.figures.notices import may_be_short
+from chartgen.figures.rounding import up
+from chartgen.figures.spread import printed_step
+from chartgen.figures.units import from_metres
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.sentences import notice_sentence_html
-from chartgen.site.edition_site import Site, colon, named
+from chartgen.site.edition_site import Site, answer_ids, colon, named
 from chartgen.site.tables import TIME_STEP_S, deceleration, least_deceleration
 from chartgen.site.trace import Trace, traces
 
@@ -64,6 +67,9 @@ _PRINTED: Final[dict[str, tuple[str, ...]]] = {
     "sight-us": ("1.47 V t + 1.075 V² / a", "1.47 V t + V² / (30 ((a / 32.2) ± G))"),
     "slide-metric": ("0.278 V t + V² / (254 (f ± G))",),
     "slide-us": ("1.47 V t + V² / (30 (f ± G))",),
+    "square-metric": ("3 V / 10 + (V / 10)²",),
+    "square-half-metric": ("3 V / 10 + (V / 10)² / 2",),
+    "square-feet": ("V + V² / 20",),
 }
 
 
@@ -98,6 +104,7 @@ class Part:
 class MethodPage:
     title: str
     intro: str
+    catalogue: str
     notices: tuple[Markup, ...]
     steps_title: str
     method_name: Markup
@@ -107,8 +114,13 @@ class MethodPage:
     trace_title: str
     trace_text: str
     traces: tuple[Trace, ...]
+
+
 FALLING = "F(S) = F60 · exp((60 − S)/Sp)"
 """Friction falling with speed, PIARC / ASTM E1960: a value of its own in a sentence, so that it runs left to right."""
+TEXTURE = "Sp = 14.2 + 89.7 · MPD"
+GRADIENT = "SN(V) = SN0 · exp(−PNG · V / 100)"
+DROPPED = "t = √(2s/g)"
 
 
 def method_page(site: Site, language: Language) -> MethodPage:
@@ -117,10 +129,11 @@ def method_page(site: Site, language: Language) -> MethodPage:
     return MethodPage(
         title=language.t("page.method"),
         intro=language.t("method.intro"),
+        catalogue=language.t("page.catalogue"),
         notices=tuple(notice_sentence_html(language, n) for n in site.notices(every)),
         steps_title=language.t("method.steps"),
         method_name=language.html("assume.method", name=language.t(f"method.name.{method}")),
-        steps=tuple(_steps(language, method)),
+        steps=tuple(_steps(site, language)),
         gravity=language.html("method.gravity", value=language.deceleration(GRAVITY_MPS2, decimals=5)),
         parts=tuple(_parts(site, language)),
         trace_title=language.t("method.rows"),
@@ -129,10 +142,18 @@ def method_page(site: Site, language: Language) -> MethodPage:
     )
 
 
-def _steps(language: Language, method: str) -> Iterator[Step]:
+def _steps(site: Site, language: Language) -> Iterator[Step]:
+    method = site.edition.method
+    if site.edition.adopted is not None:
+        yield Step(language.t("method.adopted_text"), ())
+        return
     if method in _PRINTED:
         printed = tuple(escape(formula) for formula in _PRINTED[method])
-        yield Step(language.t("method.printed_formula"), printed)
+        text = language.t("method.printed_formula")
+        if method.startswith("square-"):
+            own = float(site.figures.table["reaction_time_s"].iloc[0])
+            text = language.plain("method.square_text", time=language.seconds(own))
+        yield Step(text, printed)
         return
     for key, formulas in _STEPS:
         yield Step(language.t(key), formulas)
@@ -143,8 +164,14 @@ def _parts(site: Site, language: Language) -> Iterator[Part]:
     yield Part(id="drivers", title=language.t("method.drivers"), table=_drivers(site, language))
     yield Part(id="surfaces", title=language.t("method.surfaces"), table=_surfaces(site, language))
     yield Part(id="vehicles", title=language.t("method.vehicles"), table=_vehicles(site, language))
-    if site.edition.cards is not None:
+    if site.figures.gap_rule is not None or site.figures.questions.gaps:
         yield _gap(site, language)
+    if site.figures.spread is not None:
+        yield Part(id="spread", title=language.t("method.spread"), paragraphs=(spread_text(site, language),))
+    if answer_ids(site.edition):
+        yield Part(
+            id="answers", title=language.t("method.questions"), paragraphs=(escape(language.t("method.residual_text")),)
+        )
     yield Part(id="rounding", title=language.t("method.rounding"), paragraphs=tuple(_rounding(site, language)))
     yield Part(
         id="does-not-stop",
@@ -154,7 +181,7 @@ def _parts(site: Site, language: Language) -> Iterator[Part]:
     yield _words(language)
 
 
-def _source_cells(language: Language, source: Source | None) -> tuple[Markup, ...]:
+def source_cells(language: Language, source: Source | None) -> tuple[Markup, ...]:
     """Where a value comes from and what kind of source that is; a source nobody opened says so."""
     if source is None:
         return escape(language.t("method.kind.publisher")), escape(language.t("method.kind.publisher"))
@@ -175,7 +202,13 @@ def _drivers(site: Site, language: Language) -> ValueTable:
         if reaction.percentile is not None:
             share = language.percent(int(reaction.percentile[1:]) / 100)
             value = Markup("{}. {}").format(value, language.html("method.lognormal", share=share))
-        cells = (named(language, driver.name), value, *_source_cells(language, driver.source))
+        if reaction.perception_s is not None:
+            kept_apart = language.html("method.perception", time=language.seconds(reaction.perception_s))
+            value = Markup("{} · {}").format(value, kept_apart)
+        if reaction.drop_m is not None:
+            drop = f"{language.number(reaction.drop_m, 2)}\u00a0{language.unit('m')}"
+            value = Markup("{}. {}").format(value, language.html("method.dropped_rule", formula=DROPPED, drop=drop))
+        cells = (named(language, driver.name), value, *source_cells(language, driver.source))
         rows.append(ValueRow(f"driver-{driver.id}", cells))
     return _value_table(language, "method.drivers", ("quantity.driver", "method.reaction_time"), rows)
 
@@ -186,8 +219,8 @@ def _surfaces(site: Site, language: Language) -> ValueTable:
             f"surface-{surface.id}",
             (
                 named(language, surface.name),
-                _friction(language, surface.friction),
-                *_source_cells(language, surface.source),
+                friction_text(language, surface.friction),
+                *source_cells(language, surface.source),
             ),
         )
         for surface in site.edition.surfaces
@@ -196,15 +229,41 @@ def _surfaces(site: Site, language: Language) -> ValueTable:
     return _value_table(language, "method.surfaces", ("quantity.surface", "quantity.friction"), rows)
 
 
-def _friction(language: Language, friction: Friction) -> Markup:
+def friction_text(language: Language, friction: Friction, *, with_range: bool = True) -> Markup:
+    """A friction in words: its constant, its law with its constants or its table; its range; what it comes from."""
+    pieces = [_law(language, friction)]
+    if friction.texture_mm is not None:
+        depth = f"{language.number(friction.texture_mm, 2)}\u00a0mm"
+        pieces.append(language.html("method.friction_texture", depth=depth, formula=TEXTURE))
+    if friction.sn0 is not None and friction.png_h_per_mile is not None:
+        start, gradient = (
+            f"{name} = {language.number(x, 2)}" for name, x in (("SN0", friction.sn0), ("PNG", friction.png_h_per_mile))
+        )
+        pieces.append(language.html("method.friction_gradient", formula=GRADIENT, start=start, gradient=gradient))
+    if friction.valid_kmh is not None:
+        low, high = (language.speed(x, "km/h") for x in friction.valid_kmh)
+        pieces.append(language.html("method.friction_valid", low=low, high=high))
+    if with_range and friction.mu is None and friction.low is not None and friction.high is not None:
+        low, high = (language.number(x, 2) for x in (friction.low, friction.high))
+        pieces.append(language.html("method.range_at", low=low, high=high, speed=language.speed(60.0, "km/h")))
+    elif with_range and friction.low is not None and friction.high is not None and friction.mu is not None:
+        low, high = (language.number(x, 2) for x in (friction.low, friction.high))
+        pieces[0] = language.html("method.range", value=pieces[0], low=low, high=high)
+    return Markup(" · ").join(pieces)
+
+
+def _law(language: Language, friction: Friction) -> Markup:
     if friction.mu is not None:
-        value = isolate(language.number(friction.mu, 2))
-        if friction.low is None or friction.high is None:
-            return value
-        low, high = language.number(friction.low, 2), language.number(friction.high, 2)
-        return language.html("method.range", value=value, low=low, high=high)
-    grip = language.number(friction.f60 or 0.0, 2)
-    sp = language.speed(friction.sp_kmh or 0.0, "km/h")
+        return isolate(language.number(friction.mu, 2))
+    if friction.table is not None:
+        pairs = Markup(", ").join(
+            language.html("method.at_speed", value=language.number(mu, 2), speed=language.speed(kmh, "km/h"))
+            for kmh, mu in friction.table
+        )
+        return language.html("method.friction_table", pairs=pairs)
+    if friction.f60 is None or friction.sp_kmh is None:
+        return escape(language.t("word.none"))
+    grip, sp = language.number(friction.f60, 2), language.speed(friction.sp_kmh, "km/h")
     text = language.html("method.friction_falls", formula=FALLING, grip=f"F60 = {grip}", sp=f"Sp = {sp}")
     if friction.max_mu is not None:
         cap = language.html("method.friction_cap", max=language.number(friction.max_mu, 2))
@@ -221,13 +280,13 @@ def _vehicles(site: Site, language: Language) -> ValueTable:
             continue
         limit = vehicle.max_deceleration_mps2
         cells = (
-            named(language, vehicle.name),
+            _vehicle_name(language, vehicle),
             escape(language.t(f"word.{vehicle.load}" if vehicle.load else "word.not_given")),
             surface_alone if limit is None else isolate(deceleration(site, language, limit)),
             isolate(language.seconds(vehicle.brake_lag_s)) if vehicle.brake_lag_s else none,
             isolate(language.seconds(vehicle.build_up_s)) if vehicle.build_up_s else none,
             isolate(language.percent(vehicle.brake_efficiency)),
-            *_source_cells(language, vehicle.source),
+            *source_cells(language, vehicle.source),
         )
         rows.append(ValueRow(f"vehicle-{vehicle.id}", cells))
     heads = (
@@ -237,25 +296,48 @@ def _vehicles(site: Site, language: Language) -> ValueTable:
     return _value_table(language, "method.vehicles", heads, rows)
 
 
+def _vehicle_name(language: Language, vehicle: Vehicle) -> Markup:
+    """Its name, and what it draws."""
+    name = named(language, vehicle.name)
+    if vehicle.trailer is None:
+        return name
+    if vehicle.brake_share == 1.0:
+        return Markup("{}. {}").format(name, language.t("method.trailer_braked"))
+    share = language.percent(vehicle.brake_share)
+    return Markup("{}. {}").format(name, language.html("method.trailer_unbraked", share=share))
+
+
 def _value_table(language: Language, title: str, heads: tuple[str, ...], rows: list[ValueRow]) -> ValueTable:
     keys = (*heads, "method.source", "method.kind")
     return ValueTable(label=language.t(title), heads=tuple(language.t(k) for k in keys), rows=tuple(rows))
 
 
 def _gap(site: Site, language: Language) -> Part:
-    cards = site.edition.cards
-    if cards is None:  # the caller has looked; for the type checker
-        raise ValueError("no cards, no following gap")
-    rule = GAP_RULES[cards.gap]
-    name = named(language, rule.name)
-    source, kind = _source_cells(language, rule.source)
-    return Part(
-        id="gap",
-        title=language.t("quantity.gap"),
-        paragraphs=(
-            language.html("method.gap_text", rule=name),
+    """Each rule that the edition prints gaps by, with its source."""
+    keys = dict.fromkeys(filter(None, (site.figures.gap_rule, *site.figures.questions.gaps)))
+    paragraphs: list[Markup] = []
+    for rule in (GAP_RULES[key] for key in keys):
+        source, kind = source_cells(language, rule.source)
+        paragraphs += [
+            language.html("method.gap_text", rule=named(language, rule.name)),
             Markup("{}{}{} ({})").format(language.t("method.source"), colon(language), source, kind),
-        ),
+        ]
+    return Part(id="gap", title=language.t("quantity.gap"), paragraphs=tuple(paragraphs))
+
+
+def spread_text(site: Site, language: Language) -> Markup:
+    """How the percentiles were sampled, how far they may be off, and to what they are rounded; "" without a spread."""
+    figures = site.figures
+    sample = figures.spread
+    if sample is None:
+        return Markup("")
+    worst = float(from_metres(figures.table["spread_error_m"].max(), figures.distance_unit))
+    return language.html(
+        "method.spread_text",
+        samples=language.number(sample.samples),
+        seed=str(sample.seed),
+        error=language.distance(float(up(worst, 0.01)), figures.distance_unit),
+        step=language.distance(printed_step(worst, figures.rounding.step), figures.distance_unit),
     )
 
 

@@ -10,17 +10,25 @@ from typing import Protocol
 from markupsafe import Markup, escape
 
 from chartgen.edition.model import Edition, Poster
+from chartgen.figures.changes import changes
+from chartgen.figures.compare import compare
+from chartgen.figures.export import document
 from chartgen.figures.record import Figures
 from chartgen.language.headline import headline_html, headline_plain
 from chartgen.language.load import Language
 from chartgen.output import File
+from chartgen.site.answers import answer_pages
 from chartgen.site.assets import assets
 from chartgen.site.blocks import Block, Blocks, Section
+from chartgen.site.catalogue_page import catalogue_page
+from chartgen.site.changes_page import changes_page
 from chartgen.site.choose import choose_page
+from chartgen.site.compare_page import compare_page
 from chartgen.site.downloads import FileItem, data_files, downloads_page, leaflet_items
 from chartgen.site.drawings import Drawings
 from chartgen.site.edition_site import Group, Leaflet, Site, groups, named, slope
 from chartgen.site.frame import Link, frame
+from chartgen.site.limits import Limits, limits
 from chartgen.site.method import method_page
 from chartgen.site.render import render
 
@@ -56,6 +64,7 @@ class Overview:
     downloads_title: str
     sheets_title: str
     sheets: tuple[FileItem, ...]
+    limits: Limits | None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -118,6 +127,8 @@ def _site(
         languages=languages,
         leaflets=tuple(_leaflet(sheet, sizes.get(sheet.path)) for sheet in sheets),
         groups=tuple(groups(edition, figures)),
+        comparisons=compare(figures, edition) if edition.compare else (),
+        changes=None if edition.previous is None else changes(edition.previous.figures, document(figures)),
     )
 
 
@@ -145,7 +156,33 @@ def _language_pages(site: Site, language: Language, drawings: Drawings, data: tu
     method = method_page(site, language)
     framed = frame(site, language, "method.html", method.title, method.intro)
     yield File(f"{folder}/method.html", render("method.html", frame=framed, page=method))
+    for name, template, made in _further_pages(site, language):
+        framed = frame(site, language, name, made.title, made.intro)
+        yield File(f"{folder}/{name}", render(template, frame=framed, page=made))
     yield _downloads(site, language, data)
+
+
+class _Made(Protocol):
+    """What is asked of a finished page's content."""
+
+    @property
+    def title(self) -> str: ...
+
+    @property
+    def intro(self) -> str: ...
+
+
+def _further_pages(site: Site, language: Language) -> Iterator[tuple[str, str, _Made]]:
+    """File name, template and content of the pages that not every edition has, and of the catalogue."""
+    names = site.page_names
+    if "answers.html" in names:
+        for name, page in answer_pages(site, language):
+            yield name, "answers.html", page
+    if "compare.html" in names:
+        yield "compare.html", "compare.html", compare_page(site, language)
+    if "changes.html" in names:
+        yield "changes.html", "changes.html", changes_page(site, language)
+    yield "catalogue.html", "listing.html", catalogue_page(site, language)
 
 
 def _overview(site: Site, language: Language, blocks: Blocks) -> bytes:
@@ -168,6 +205,7 @@ def _overview(site: Site, language: Language, blocks: Blocks) -> bytes:
         downloads_title=language.t("page.downloads"),
         sheets_title=language.t("page.sheets"),
         sheets=leaflet_items(site, language),
+        limits=limits(site, language),
     )
     framed = frame(site, language, "index.html", language.text(edition.title), plain)
     return render("overview.html", frame=framed, page=page)

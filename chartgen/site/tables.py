@@ -12,14 +12,12 @@ from chartgen.figures.rounding import up
 from chartgen.figures.units import from_metres
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
-from chartgen.language.sentences import assumption_line_html
+from chartgen.language.sentences import REASONS, assumption_line_html, verdict
 from chartgen.site.edition_site import Group, Record, Series, Site, colon, decimals, named, slope, slope_plain
 
 TIME_STEP_S: Final = 0.1
 LEAST_DECELERATION_MPS2: Final = 0.1
 """Below this a vehicle counts as not stopping; the mechanics hold the same value, and a test compares the two."""
-
-_REASONS: Final = {"too-little-friction": "verdict.too_little_friction", "never-at-rest": "verdict.never_at_rest"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -132,7 +130,6 @@ def _rows(
 ) -> Iterator[Row]:
     places = {c.quantity: 1 if c.unit == "s" else decimals(r[c.quantity] for r in series.records) for c in columns}
     speeds = decimals(r["printed_speed"] for r in series.records)
-    verdict = language.t("verdict.does_not_stop")
     for record in series.records:
         stops = bool(record["stops"])
         printed = [c for c in columns if stops or not c.ends]
@@ -142,7 +139,9 @@ def _rows(
             speed=language.number(float(record["printed_speed"]), speeds),
             trace=f"method.html#r{int(record['row'])}",
             cells=tuple(Cell(_cell(language, record, c, places[c.quantity]), c.strong) for c in printed),
-            never=None if stops else Never(len(columns) - len(printed), verdict, reason),
+            never=None
+            if stops
+            else Never(len(columns) - len(printed), verdict(language, str(record["reason"])), reason),
         )
 
 
@@ -156,7 +155,7 @@ def _cell(language: Language, record: Record, column: _Column, places: int) -> M
 def _reason(site: Site, language: Language, reason: str) -> Markup:
     """Why a row does not stop, as a sentence."""
     values = {"least": least_deceleration(site, language)} if reason == "too-little-friction" else {}
-    return language.html(_REASONS[reason], **values)
+    return language.html(REASONS[reason], **values)
 
 
 def least_deceleration(site: Site, language: Language) -> str:

@@ -11,7 +11,7 @@ from markupsafe import Markup, escape
 
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
-from chartgen.language.sentences import assumption_line_html
+from chartgen.language.sentences import assumption_line_html, verdict
 from chartgen.site.edition_site import Group, Record, Series, Site, decimals, grade_id, named, slope, slope_plain
 from chartgen.site.tables import Head
 
@@ -65,7 +65,6 @@ def _trace(site: Site, language: Language, group: Group, series: Series) -> Trac
     if not any(r["lag_distance_m"] > 0 for r in series.records):
         columns = [c for c in columns if c[0] != "lag_distance_m"]
     places = decimals(r["printed_speed"] for r in series.records)
-    never = escape(language.t("verdict.does_not_stop"))
     return Trace(
         id=f"case-{driver.id}-{group.vehicle}-{group.surface}-{grade_id(group.grade)}",
         title=Markup(" · ").join(
@@ -88,7 +87,7 @@ def _trace(site: Site, language: Language, group: Group, series: Series) -> Trac
             TraceRow(
                 int(record["row"]),
                 language.number(float(record["printed_speed"]), places),
-                tuple(_cell(language, record, quantity, never) for quantity, _, _ in columns),
+                tuple(_cell(language, record, quantity) for quantity, _, _ in columns),
             )
             for record in series.records
         ),
@@ -102,6 +101,10 @@ def _unit(language: Language, unit: str) -> Markup:
     return isolate(language.unit(unit)) if unit else Markup("")
 
 
-def _cell(language: Language, record: Record, quantity: str, never: Markup) -> Markup:
+def _cell(language: Language, record: Record, quantity: str) -> Markup:
     value = float(record[quantity])
-    return never if math.isnan(value) else escape(language.number(value, _PLACES))
+    return (
+        escape(verdict(language, str(record["reason"])))
+        if math.isnan(value)
+        else escape(language.number(value, _PLACES))
+    )
