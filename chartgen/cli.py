@@ -25,10 +25,11 @@ from chartgen import __version__, report
 from chartgen.errors import ChartgenError, CommandFault
 
 if TYPE_CHECKING:
+    from chartgen.commands import Answer
     from chartgen.edition.model import Edition
     from chartgen.pipeline import Pressed
 
-NOT_YET = ("compare", "changes", "proof", "words")
+NOT_YET = ("proof", "words")
 STARTERS = {"charity": "tarnholt", "fleet": "quillane", "authority": "sarvelle"}
 SHELVES = ("reaction", "surface", "vehicle", "gap", "headlight")
 WARN_BEFORE = timedelta(days=60)
@@ -119,6 +120,13 @@ def _parser() -> argparse.ArgumentParser:
     catalogue = add("catalogue", _catalogue, "list the presets an edition may pick by key, with their sources")
     catalogue.add_argument("kind", nargs="?", choices=SHELVES, metavar="KIND", help=f"one of {', '.join(SHELVES)}; all")
     catalogue.add_argument("--format", choices=("text", "json", "csv"), default="text", help="text if left out")
+    compare = add("compare", _compare, "set an edition's figures beside published tables of the same units and meaning")
+    compare.add_argument("edition", metavar="EDITION")
+    changes = add("changes", _changes, "list every printed number that differs between two issues, and why")
+    for name in ("old", "new"):
+        changes.add_argument(name, metavar=name.upper(), help="an edition, or the figures of an issue (JSON)")
+    for parser in (compare, changes):
+        parser.add_argument("--format", choices=("text", "json", "csv"), default="text", help="text if left out")
     begin = add("begin", _begin, "start an edition of your own from one of the starters")
     begin.add_argument("starter", choices=tuple(STARTERS), help="whom it is for: charity, fleet or authority")
     begin.add_argument("folder", type=Path, metavar="FOLDER", help="where to put it; must not be there yet")
@@ -133,7 +141,7 @@ def _workers(text: str) -> int:
 
 def _known(argv: Sequence[str]) -> Sequence[str]:
     """`argv`, unless its command is none: then a fault with the name that was most likely meant."""
-    names = ("press", "figures", "preflight", "catalogue", "begin")
+    names = ("press", "figures", "preflight", "catalogue", "compare", "changes", "begin")
     if not argv:
         raise CommandFault("chartgen: no command was given", ", ".join(names))
     if argv[0] in NOT_YET:
@@ -202,11 +210,34 @@ def _catalogue(arguments: argparse.Namespace) -> int:
 
     kinds = [arguments.kind] if arguments.kind else SHELVES
     if arguments.format == "text":
-        width = shutil.get_terminal_size().columns if sys.stdout.isatty() else 100
-        sys.stdout.write(listing.to_text(kinds, width))
+        sys.stdout.write(listing.to_text(kinds, _width()))
     else:
         sys.stdout.write(listing.to_json(kinds) if arguments.format == "json" else listing.to_csv(kinds))
     return 0
+
+
+def _compare(arguments: argparse.Namespace) -> int:
+    from chartgen import commands
+
+    return _answer(commands.compared(arguments.edition, arguments.format, _width()))
+
+
+def _changes(arguments: argparse.Namespace) -> int:
+    from chartgen import commands
+
+    return _answer(commands.changed(arguments.old, arguments.new, arguments.format, _width()))
+
+
+def _answer(answer: Answer) -> int:
+    for edition in answer.editions:
+        _warn(edition, edition.warnings)
+    _say(*(f"Warning: {text}" for text in answer.warnings))
+    sys.stdout.write(answer.text)
+    return 0
+
+
+def _width() -> int:
+    return shutil.get_terminal_size().columns if sys.stdout.isatty() else 100
 
 
 def _begin(arguments: argparse.Namespace) -> int:

@@ -23,7 +23,7 @@ from chartgen.errors import ChartgenError, CommandFault, EditionFaults, Fault, F
 
 ROOT = Path(__file__).parents[1]
 NO_NUMBER = "is not a number from 1 to 64.\nRight: see chartgen press --help.\n"
-COMMANDS = "Right: press, figures, preflight, catalogue, begin.\n"
+COMMANDS = "Right: press, figures, preflight, catalogue, compare, changes, begin.\n"
 
 
 def chartgen(*arguments: str, cwd: Path = ROOT, **environment: str) -> subprocess.CompletedProcess[str]:
@@ -39,7 +39,7 @@ def chartgen(*arguments: str, cwd: Path = ROOT, **environment: str) -> subproces
         ([], f"chartgen: no command was given.\n{COMMANDS}"),
         (["pres"], f'chartgen: there is no command "pres"; did you mean "press"?\n{COMMANDS}'),
         (["xyz"], f'chartgen: there is no command "xyz".\n{COMMANDS}'),
-        (["compare", "a"], f'chartgen: not yet: "compare" is not made in this version.\n{COMMANDS}'),
+        (["proof", "a"], f'chartgen: not yet: "proof" is not made in this version.\n{COMMANDS}'),
         (["press", "--workers", "0"], f"chartgen press: argument --workers: '0' {NO_NUMBER}"),
         (["--quick"], None),
         (["press", "--quick"], None),

@@ -17,7 +17,7 @@ MOST_FAULTS = 10
 """Rows that are named one by one."""
 MOST = 1e9
 """No number of a figure is as large; infinity and what is no number at all are not less either."""
-_RIGHT = "the figures (JSON) of the issue before, as they were made"
+_RIGHT = "the figures (JSON) of an issue, as they were made"
 
 
 def previous(

@@ -123,7 +123,8 @@ def to_text(comparisons: Sequence[Comparison], figures: Figures, edition: Editio
         return "\n".join(wrapped(text, width)) + "\n"
     lines = wrapped(
         f"{figures.edition_id} beside published {what} in {units}. Tables differ because they assume different "
-        "things; none of them is the measure of another. Distances are ours/theirs, differences ours less theirs.",
+        "things; none of them is the measure of another. Distances are ours/theirs; they differ by "
+        "ours less theirs, which is reaction + lag + braking before rounding + what rounding makes of it.",
         width,
     )
     for comparison in comparisons:
@@ -141,7 +142,7 @@ def _block(comparison: Comparison, width: int) -> Iterator[str]:
         rows = list(group)
         yield ""
         yield from wrapped(f"{driver}, {vehicle}, {surface}", width, "  ")
-        yield from columns(_heads(table.speed_unit, table.distance_unit), [_cells(row) for row in rows], width, "    ")
+        yield from columns(_heads(table.speed_unit), [_cells(row) for row in rows], width, "    ")
         for missing, speeds in _not_split(rows).items():
             yield from wrapped(f"{', '.join(speeds)} {table.speed_unit}: not split, {MISSING[missing]}.", width, "    ")
         yield from _differ(rows, width)
@@ -151,9 +152,8 @@ def _block(comparison: Comparison, width: int) -> Iterator[str]:
             yield from wrapped(f"Not compared, {why}: {count} at these speeds.", width, "  ")
 
 
-def _heads(speed_unit: str, distance_unit: str) -> tuple[str, ...]:
-    made = (f"{name} {distance_unit}" for name in NAMES)
-    return (speed_unit, *made, "difference", "of which: reaction", "lag", "braking", "rounding")
+def _heads(speed_unit: str) -> tuple[str, ...]:
+    return (speed_unit, *NAMES, "differ", "= reaction", "+ lag", "+ braking", "+ rounding")
 
 
 def _cells(row: ComparedRow) -> tuple[str, ...]:
@@ -188,7 +188,8 @@ def _differ(rows: Sequence[ComparedRow], width: int) -> Iterator[str]:
 
 
 def _worded(why: Why) -> str:
-    ours, theirs = _value(why.ours, why.ours_step), _value(why.theirs, why.theirs_step)
+    ours = "none" if why.ours is None else _value(why.ours, why.ours_step)
+    theirs = _value(why.theirs, why.theirs_step)
     if why.code == "sum":
         return f"published sum: the parts add up to {ours}, the published total is {theirs}"
     what = {"rounding": f"rounding of the {why.part}", "total": "total"}.get(why.code) or _CODES[why.code]

@@ -13,8 +13,8 @@ def columns(
 ) -> list[str]:
     """Lines of a table, its columns to the right; with `words` the last one to the left, and wrapped.
 
-    Where the table is wider than `width`, or leaves a column of words less than 20 of it, each row is written as a line of its own,
-    "head: cell; head: cell", wrapped; no column is lost.
+    Where the table is wider than `width`, or leaves a column of words less than 20 of it, each row is written as a
+    line of its own, "head: cell; head: cell", wrapped; no column is lost.
     """
     sizes = [max(len(row[i]) for row in (heads, *rows)) for i in range(len(heads))]
     used = len(indent) + sum(sizes[:-1]) + 2 * (len(heads) - 1)
