@@ -248,8 +248,9 @@ def _causes(
     if reference is not None:
         column, id = reference
         other = tuple(id if field == column else value for field, value in zip((*_HEAD, "speed"), key, strict=True))
-        for change in of_rows.get(other, ()) if other != key else ():
-            if bears_on(change.key, "stopping", also=also, shared=shared, where=where):
+        # What changed alike in both is told once.
+        for change in of_rows.get(other, ()):
+            if change not in pair.own and bears_on(change.key, "stopping", also=also, shared=shared, where=where):
                 yield InputChange(key=f"{column}/{id}.{change.key}", old=change.old, new=change.new)
     for change in pair.whole:
         if name not in BASIC and bears_on(change.key, name, also=also, shared=shared, where=where):
