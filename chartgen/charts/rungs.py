@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
 from chartgen.charts import canvas
@@ -17,6 +17,7 @@ from chartgen.charts.fonts import extent, width_mm
 from chartgen.charts.inks import Palette
 from chartgen.charts.words import LEADING, Words, wrap
 
+NARROW, WIDE = "\u202f", "\u00a0"
 NAME_MM: Final = 3.4
 FIGURE_MM: Final = 5.2
 """Font sizes on a page, where a millimetre is shown as 4 px: words of 13.6 px, digits of 14.5 px height."""
@@ -70,6 +71,8 @@ def rungs(
 
     Source: our own.
     """
+    # The condensed face has no narrow no-break space; the wide one reads the same.
+    bars = [replace(b, name=b.name.replace(NARROW, WIDE), figure=b.figure.replace(NARROW, WIDE)) for b in bars]
     if not bars or width_mm < 60.0:
         raise ValueError("a rungs drawing needs a bar and 60 mm of width")
     plan = _plan(bars, width_mm)

@@ -97,7 +97,7 @@ class Language:
 
     def territory(self, code: str) -> str:
         """A country's name by its ISO 3166-1 code, as the locale has it; the code where it has none."""
-        return numbers.babel_locale(self.tag).territories.get(code, code)
+        return str(numbers.babel_locale(self.tag).territories.get(code, code))
 
     def distance(self, x: float, unit: str, decimals: int | None = None) -> str:
         """A printed (already rounded) distance with its unit: "23 m". Raises Unprintable where `x` is not rounded."""

@@ -14,7 +14,7 @@ from numpy.typing import ArrayLike
 
 from chartgen.motion.gap import gap_distance_m, gap_seconds
 from chartgen.motion.limits import GRAVITY_MPS2, BoolArray, FloatArray
-from chartgen.motion.stopping import stop
+from chartgen.motion.stopping import REASONS, stop
 
 _SCAN = 240
 """Speeds tried before the search narrows: no unsafe stretch wider than a 240th of the top speed is stepped over."""
@@ -23,6 +23,8 @@ _LEAST_MPS = 1e-9
 """Stands for rest where the mechanics want a speed above 0."""
 _STEPS = 400
 """Steps in which a vehicle that never stops is followed to the place asked for."""
+
+_OUTSIDE = REASONS.index("outside-friction-range")
 
 Arguments = dict[str, Any]
 
@@ -48,7 +50,8 @@ def residual_speed(speed_mps: ArrayLike, distance_m: ArrayLike, **arguments: Any
         **arguments: as `stopping.stop` takes them; all broadcast against one another.
 
     Returns:
-        m/s, in the broadcast shape, within 1e-9 relative. A vehicle that never stops has a speed too: it is followed
+        m/s, in the broadcast shape, within 1e-9 relative; nan where a speed passed is one of which the friction's
+        source does not speak. A vehicle that never stops has a speed too: it is followed
         step by step, within 1e-6.
 
     Raises:
@@ -65,6 +68,14 @@ def residual_speed(speed_mps: ArrayLike, distance_m: ArrayLike, **arguments: Any
     if not (np.isfinite(place) & (place >= 0.0)).all():
         raise ValueError("distance_m: it must be at least 0 m and finite")
     given = _rows({"speed_mps": speed_mps, "distance_m": place, **_defaults(arguments)})
+    told = np.array(stop(**{n: v for n, v in given.items() if n != "distance_m"}).reason_code != _OUTSIDE)
+    out = np.full(len(told), np.nan)
+    if told.any():
+        out[told] = np.maximum(_residual(_some(given, told)), 0.0)
+    return np.asarray(out.reshape(_shape(speed_mps, place, arguments)))
+
+
+def _residual(given: Arguments) -> FloatArray:
     way = _Way(given)
     rest = given["distance_m"] - given["speed_mps"] * given["reaction_time_s"]
     out = np.where(rest <= 0.0, given["speed_mps"], way.in_lag(rest))
@@ -75,10 +86,7 @@ def residual_speed(speed_mps: ArrayLike, distance_m: ArrayLike, **arguments: Any
     out = np.where(rest > 0.0, 0.0, out)
     if braking.any():
         out[braking] = way.in_full_braking(rest, braking)
-    shape = np.broadcast_shapes(
-        *(np.shape(v) for n, v in (("", speed_mps), ("", place), *arguments.items()) if n != "tables")
-    )
-    return np.asarray(np.maximum(out, 0.0).reshape(shape))
+    return np.asarray(out)
 
 
 def _defaults(arguments: Mapping[str, Any]) -> Arguments:
@@ -129,9 +137,12 @@ class _Way:
         if not self.rise_s.any():
             return np.ones(len(self.speed))
         down = np.maximum(-self.slope, 0.0)
-        least = self.force_at(self.lagged_mps + down * self.rise_s)
+        bound = self.force_at(self.lagged_mps + down * self.rise_s)
+        # The bound on the speed may lie beyond a table that the speeds themselves do not leave.
+        least = np.where(np.isnan(bound), 0.0, bound)
         excess = np.maximum(np.maximum(2.0 / 3.0 * down - 0.25 * least, 0.5 * down - 0.15 * least), 0.0)
-        return self.force_at(self.lagged_mps + self.rise_s * excess)
+        force = self.force_at(self.lagged_mps + self.rise_s * excess)
+        return np.where(np.isnan(force), self.force_at(self.lagged_mps), force)
 
     def _build_up_speed(self, time: FloatArray) -> FloatArray:
         rise = np.where(self.rise_s > 0.0, self.force / np.where(self.rise_s > 0.0, self.rise_s, 1.0), 0.0)

@@ -84,8 +84,9 @@ def _greatest_rung(pen: Pen, record: Record, kind: str, name: str) -> Rung:
     text = _greatest_cell(pen, record, kind)
     value = float(record[f"printed_greatest_{kind}"])
     in_words = not math.isfinite(value) or value == 0.0 or bool(record[f"greatest_{kind}_at_top"])
+    length = 0.0 if value == 0.0 else float(record[f"greatest_{kind}_mps"])
     return Rung(
-        name=name, length=float(record[f"greatest_{kind}_mps"]), figure=text, words=in_words, row=int(record["row"]),
+        name=name, length=length, figure=text, words=in_words, row=int(record["row"]),
         quantity=f"printed_greatest_{kind}",
     )  # fmt: skip
 

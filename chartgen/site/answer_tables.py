@@ -18,6 +18,7 @@ from chartgen.site.drawings import Figure, inline
 from chartgen.site.edition_site import Group, Record, Series, Site, decimals, named, slope, slope_plain
 
 WIDTH_MM: Final = 180.0
+_NARROW_COLUMNS: Final = 5
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,6 +56,11 @@ class Answer:
     title: str
     paragraphs: tuple[Markup, ...]
     tables: tuple[AnswerTable, ...]
+
+    @property
+    def narrow(self) -> bool:
+        """Whether two tables have room side by side on a wide screen."""
+        return all(len(table.heads) <= _NARROW_COLUMNS for table in self.tables)
 
 
 @dataclass(frozen=True, slots=True)

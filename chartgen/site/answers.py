@@ -104,7 +104,6 @@ def _residual(pen: Pen, reference: float) -> Answer:
     language, unit = pen.language, pen.site.figures.speed_unit
     speed, quantity = language.speed(reference, unit), "printed_residual_speed"
     head = AnswerHead(pen.word("quantity.residual_speed"), pen.speed_unit(), quantity)
-    caption = in_unit(pen, language.t("quantity.residual_speed"), unit)
     tables = []
     for group, series in every(pen):
         table = by_speed(pen, group, series, (head,))
@@ -113,6 +112,7 @@ def _residual(pen: Pen, reference: float) -> Answer:
             last = language.speed(float(faster[-1][quantity]), unit)
             told = language.plain("alt.residual", low=speed, high=at_speed(pen, faster[-1]), last=last)
             bars = speed_bars(pen, faster, quantity, "residual_speed_mps", key="answers.residual_from")
+            caption = in_unit(pen, table.caption, unit)
             table = with_charts(table, chart(pen, bars, table.label, told, caption, "accent"))
         tables.append(table)
     return Answer(
@@ -128,7 +128,6 @@ def _added(pen: Pen, kind: str, reference: str) -> Answer:
     language, unit, edition = pen.language, pen.site.figures.distance_unit, pen.site.edition
     quantity = f"printed_added_by_{kind}"
     head = AnswerHead(pen.word("quantity.added"), pen.distance_unit(), quantity)
-    caption = in_unit(pen, language.t("quantity.added"), unit)
     tables = []
     for group, series in every(pen):
         known = finite(series.records, quantity)
@@ -144,6 +143,7 @@ def _added(pen: Pen, kind: str, reference: str) -> Answer:
         )
         bars = speed_bars(pen, known, quantity, f"added_by_{kind}_m", signed=True)
         ink = "reaction" if kind == "driver" else "braking"
+        caption = in_unit(pen, table.caption, unit)
         tables.append(with_charts(table, chart(pen, bars, table.label, told, caption, ink)))
     texts = edition.driver(reference).name if kind == "driver" else edition.surface(reference).name
     return Answer(

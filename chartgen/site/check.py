@@ -17,12 +17,11 @@ import numpy as np
 from chartgen.edition.model import Edition
 from chartgen.errors import Finding
 from chartgen.figures.compare import compare
-from chartgen.figures.export import to_csv, to_json
 from chartgen.figures.record import Figures
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS, number_style
 from chartgen.language.sentences import caution_sentences, verdict
-from chartgen.site.downloads import CSV, JSON
+from chartgen.site.downloads import data_files
 from chartgen.site.edition_site import page_names
 from chartgen.site.frame import CSP
 from chartgen.site.reading import ReadChart, ReadPage, ReadRow, ReadTable, read_page
@@ -43,7 +42,7 @@ def check_pages(
     """Everything wrong with the finished files of an edition (`files`: bytes by path); () where all is right."""
     records = records_of(figures)
     pages = {path: read_page(data) for path, data in files.items() if path.endswith(".html")}
-    findings = [*_expected(files, edition, figures, languages), *_data(files, figures)]
+    findings = [*_expected(files, edition, figures, languages), *_data(files, figures, edition)]
     for path, page in pages.items():
         findings += _safe(path, page)
         findings += _links(path, page, files, pages)
@@ -64,15 +63,17 @@ def _expected(
     names = list(page_names(edition, compare(figures, edition) if edition.compare else ()))
     names += [f"surface-{s.id}.html" for s in edition.surfaces if s.id in surfaces]
     names += [f"vehicle-{v.id}.html" for v in edition.vehicles if v.id in vehicles]
-    for path in ("index.html", CSV, JSON, *(f"{language.tag}/{name}" for language in languages for name in names)):
+    for path in ("index.html", *(f"{language.tag}/{name}" for language in languages for name in names)):
         if path not in files:
             yield Finding("site.missing", path, "the file is not there")
 
 
-def _data(files: Mapping[str, bytes], figures: Figures) -> Iterator[Finding]:
-    for path, text in ((CSV, to_csv(figures)), (JSON, to_json(figures))):
-        if path in files and files[path] != text.encode("utf-8"):
-            yield Finding("site.data", path, "does not hold the figures of this edition")
+def _data(files: Mapping[str, bytes], figures: Figures, edition: Edition) -> Iterator[Finding]:
+    for wanted in data_files(figures, edition):
+        if wanted.path not in files:
+            yield Finding("site.missing", wanted.path, "the file is not there")
+        elif files[wanted.path] != wanted.data:
+            yield Finding("site.data", wanted.path, "does not hold the figures of this edition")
 
 
 def _safe(path: str, page: ReadPage) -> Iterator[Finding]:

@@ -101,7 +101,7 @@ def _beside(site: Site, language: Language, series: Series, rows: tuple[Compared
     edition, unit = site.edition, isolate(language.unit(site.figures.distance_unit))
     of = (edition.driver(rows[0].driver), edition.vehicle(rows[0].vehicle), edition.surface(rows[0].surface))
     split = [row.split for row in rows if row.split is not None]
-    shares = [name for name in _SHARES if any(getattr(s, name) for s in split)]
+    shares = [name for name in _SHARES if any(name == "rounding" or getattr(s, name) for s in split)]
     speed_unit = isolate(language.unit(site.figures.speed_unit))
     heads = [
         AnswerHead(escape(language.t("quantity.speed")), speed_unit, "printed_speed"),
@@ -135,8 +135,13 @@ def _cells(language: Language, row: ComparedRow, shares: list[str]) -> Iterator[
     yield _number(language, row.ours.stopping)
     yield _number(language, row.theirs.stopping)
     yield _number(language, row.difference.stopping, signed=True)
+    left = row.difference.stopping or 0.0
     for name in shares:
-        yield _number(language, None if row.split is None else getattr(row.split, name), signed=True, places=1)
+        share = None if row.split is None else round(getattr(row.split, name), 1)
+        if name == "rounding" and share is not None:
+            share = left  # the remainder, so that the shares shown add up to the difference shown
+        left -= share or 0.0
+        yield _number(language, share, signed=True, places=1)
 
 
 def _number(language: Language, value: float | None, *, signed: bool = False, places: int | None = None) -> Markup:

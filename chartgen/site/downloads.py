@@ -7,7 +7,11 @@ from dataclasses import dataclass
 
 from markupsafe import Markup, escape
 
-from chartgen.figures.export import to_csv, to_json
+from chartgen.edition.model import Edition
+from chartgen.figures import changes_text, compare_text
+from chartgen.figures.changes import changes
+from chartgen.figures.compare import compare
+from chartgen.figures.export import document, to_csv, to_json
 from chartgen.figures.record import Figures
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
@@ -15,6 +19,7 @@ from chartgen.output import File
 from chartgen.site.edition_site import Leaflet, Site
 
 CSV, JSON = "data/figures.csv", "data/figures.json"
+COMPARED, CHANGED = "data/compared.csv", "data/changes.csv"
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,14 +43,23 @@ class DownloadsPage:
     licence: Markup
 
 
-def data_files(figures: Figures) -> Iterator[File]:
-    """All figures with the public names, as CSV and as JSON."""
+def data_files(figures: Figures, edition: Edition) -> Iterator[File]:
+    """All figures with the public names, as CSV and as JSON; the comparison and the changes where there are any."""
     yield File(CSV, to_csv(figures).encode("utf-8"))
     yield File(JSON, to_json(figures).encode("utf-8"))
+    found = compare(figures, edition) if edition.compare else ()
+    if found:
+        yield File(COMPARED, compare_text.to_csv(found).encode("utf-8"))
+    if edition.previous is not None:
+        differing = changes(edition.previous.figures, document(figures))
+        yield File(CHANGED, changes_text.to_csv(differing).encode("utf-8"))
 
 
 def downloads_page(site: Site, language: Language, data: tuple[File, ...]) -> DownloadsPage:
-    titles = {CSV: ("page.file_csv", "text/csv"), JSON: ("page.file_json", "application/json")}
+    titles = {
+        CSV: ("page.file_csv", "text/csv"), JSON: ("page.file_json", "application/json"),
+        COMPARED: ("page.file_compare", "text/csv"), CHANGED: ("page.file_changes", "text/csv"),
+    }  # fmt: skip
     licence = site.edition.licence
     return DownloadsPage(
         title=language.t("page.downloads"),
