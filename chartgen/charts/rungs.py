@@ -168,7 +168,8 @@ def _label(
     above = max(0.5, extent(text, face).above) if role != "part" else 0.698
     return Label(
         text=text, x_mm=round(x, 3), y_mm=round(middle + above * size / 2, 3), size_mm=size, anchor=anchor, face=face,
-        ink="type", lang=language.tag, dir=language.direction, role=role, row=row, quantity=quantity,
+        ink="type", lang=language.tag, dir="ltr" if role == "part" else language.direction, role=role, row=row,
+        quantity=quantity,
     )  # fmt: skip
 
 

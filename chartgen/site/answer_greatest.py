@@ -11,6 +11,7 @@ from chartgen.charts.rungs import Rung
 from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
 from chartgen.figures.export import asked_greatest
 from chartgen.site.answer_tables import (
+    WIDE_MM,
     Answer,
     AnswerHead,
     AnswerRow,
@@ -22,7 +23,7 @@ from chartgen.site.answer_tables import (
     in_unit,
     trace,
     whose,
-)
+)  # fmt: skip
 from chartgen.site.drawings import Figure
 from chartgen.site.edition_site import Record
 
@@ -41,7 +42,8 @@ def greatest(pen: Pen) -> Answer:
     for kind in kinds:
         bars = [_greatest_rung(pen, record, kind, plain) for record, _, plain in rows]
         caption = in_unit(pen, names[kind], site.figures.speed_unit)
-        figures += chart(pen, bars, names[kind], _greatest_told(pen, [r for r, _, _ in rows], kind), caption, "braking")
+        told = _greatest_told(pen, [record for record, _, _ in rows], kind)
+        figures += chart(pen, bars, names[kind], told, caption, "braking", WIDE_MM)
     table = AnswerTable(
         label=pen.t("answers.greatest_title"),
         caption=pen.word("quantity.greatest_speed"),

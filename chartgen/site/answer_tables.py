@@ -17,7 +17,9 @@ from chartgen.language.numbers import MINUS
 from chartgen.site.drawings import Figure, inline
 from chartgen.site.edition_site import Group, Record, Series, Site, decimals, named, slope, slope_plain
 
-WIDTH_MM: Final = 180.0
+SLIM_MM: Final = 116.0
+"""A drawing in one of two columns; where names are long it has the page's whole width."""
+WIDE_MM: Final = 200.0
 _NARROW_COLUMNS: Final = 5
 
 
@@ -129,9 +131,14 @@ def _column(pen: Pen, records: Sequence[Record], quantity: str, *, signed: bool 
     places = decimals(float(r[quantity]) for r in records)
     none = pen.word("word.none")
     return [
-        none if math.isnan(value) else escape(number(pen, value, places, signed=signed))
+        none if math.isnan(value) else signed_html(number(pen, value, places, signed=signed))
         for value in (float(r[quantity]) for r in records)
     ]
+
+
+def signed_html(text: str) -> Markup:
+    """A number in a cell: one with a sign keeps it before its digits in a right-to-left line too."""
+    return Markup('<bdi dir="ltr">{}</bdi>').format(text) if text[:1] in ("+", MINUS) else escape(text)
 
 
 def by_speed(
@@ -153,12 +160,14 @@ def by_speed(
     )
 
 
-def chart(pen: Pen, bars: Sequence[Rung], label: str, told: str, caption: Markup, ink: str) -> tuple[Figure, ...]:
+def chart(
+    pen: Pen, bars: Sequence[Rung], label: str, told: str, caption: Markup, ink: str, width_mm: float = SLIM_MM
+) -> tuple[Figure, ...]:
     if not any(math.isfinite(bar.length) for bar in bars):
         return ()
-    drawing = rungs(bars, name=label, language=pen.language, palette=pen.palette, width_mm=WIDTH_MM, ink=ink)
+    drawing = rungs(bars, name=label, language=pen.language, palette=pen.palette, width_mm=width_mm, ink=ink)
     shown = pen.language.plain("page.chart_label", name=label)
-    return (Figure(svg=inline(drawing, pen.language, told), label=shown, caption=caption, wide=False),)
+    return (Figure(svg=inline(drawing, pen.language, told), label=shown, caption=caption, wide=width_mm > SLIM_MM),)
 
 
 def at_speed(pen: Pen, record: Record) -> str:

@@ -15,9 +15,10 @@ from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS
 from chartgen.language.sentences import assumption_line_html
-from chartgen.site.answer_tables import AnswerHead, AnswerRow
+from chartgen.site.answer_tables import AnswerHead, AnswerRow, signed_html
 from chartgen.site.edition_site import Series, Site, colon, decimals, named
 from chartgen.site.tables import deceleration
+from chartgen.sources import cite
 
 _SHARES = ("reaction", "lag", "braking", "rounding")
 
@@ -67,7 +68,8 @@ def compare_page(site: Site, language: Language) -> ComparePage:
 def _section(site: Site, language: Language, comparison: Comparison) -> TableSection:
     table = comparison.table
     place = Markup('<span lang="en" dir="ltr">{}</span>').format(table.place)
-    source = isolate(table.cited, "en")
+    work = cite(table.source)
+    source = isolate(work if table.place in work else f"{work}; {table.place}", "en")
     return TableSection(
         id=f"table-{table.id}",
         title=Markup("{} · {}").format(language.territory(table.country), place),
@@ -150,7 +152,7 @@ def _number(language: Language, value: float | None, *, signed: bool = False, pl
     text = language.number(value, decimals([value]) if places is None else places)
     if text.strip(MINUS + "0.,") == "":
         text = text.removeprefix(MINUS)  # a share of nothing has no sign
-    return escape(f"+{text}" if signed and value > 0 and text.strip("0.,") else text)
+    return signed_html(f"+{text}" if signed and value > 0 and text.strip("0.,") else text)
 
 
 def _note(language: Language, rows: tuple[ComparedRow, ...]) -> str:
