@@ -92,6 +92,9 @@ def split(
     Returns:
         The `Split`, or the code that says why there is none.
 
+    Raises:
+        ValueError: the speed is out of the range of the edition's formula.
+
     Source: equation of motion; the table's own.
     """
     total = _less(ours.stopping, published.stopping)
