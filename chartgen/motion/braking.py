@@ -1,34 +1,43 @@
 """Full braking: from its first speed down to rest, under constant friction or friction that falls with speed.
 
-Constant deceleration has a closed form, and so has friction that falls with speed on the level. On a grade the
-distance is an integral over the speed, worked out by Gauss-Legendre quadrature in one piece; below the speed at which
-the cap or the vehicle's own limit takes over, the deceleration is constant and the closed form serves again.
+Constant deceleration has a closed form, and so has the time under friction that falls with speed. Its distance is a
+dilogarithm on a grade, an elementary function on the level; below the speed at which the cap or the vehicle's own limit
+takes over, the deceleration is constant and the closed form serves again. Where the formulas would lose digits,
+Gauss-Legendre quadrature of a variable without a near pole takes their place, row by row.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cache
-from math import factorial
+from math import ceil, factorial
 
 import numpy as np
+from numpy.polynomial import chebyshev
 from numpy.polynomial.legendre import leggauss
 
 from chartgen.motion.friction import Brake, some
-from chartgen.motion.limits import FloatArray
+from chartgen.motion.limits import BoolArray, FloatArray, Rows
 
-EASY_POINTS = 16
-HARD_POINTS = 32
-EASY_DECELERATION_MPS2 = 0.5
-"""Chosen by us: from this least deceleration on, 16 points are enough; below it the integrand is steep and 32 are
-used."""
+_SHORT = 0.05
+"""Chosen by us: below this exponent of the fall the closed forms lose digits, at most the factor 2/0.05 down to it."""
 
-EASY_FALL = 5.0
-"""Chosen by us: friction that falls by more than e^5 over the stop is steep as well."""
+_SHORT_POINTS = 8
+"""Enough for a fall of less than `_SHORT` where t is within `_FAR`: the pole is then 6 half-intervals away or more, and
+the rule leaves out less than 10^-16."""
 
-_SMALL = 0.1
-_TERMS = 10
-"""Below `_SMALL` ten terms of the series leave out less than 1e-17."""
+_FAR = 2.0
+_DEGREE = 10
+"""Of the polynomial for `t` from -2 to 2: the function's poles are 2π away, so it leaves out less than 41^-11."""
+
+_PANEL = 4.0
+_PANEL_POINTS = 16
+"""Uphill: the poles are at least π beside the way, so 16 points for an exponent of 4 leave out less than 3^-32."""
+
+_STEEP_POINTS = 32
+
+_TERMS = 7
+"""Below `_SHORT` the series leaves out less than 2e-16 after its seventh power."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -79,141 +88,192 @@ def full_braking(speed_mps: FloatArray, brake: Brake) -> Braking:
     return Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Fall:
+    """The way down from a speed to the knot, the speed below which the deceleration is constant (0 without one).
+
+    With k the fall per m/s: ``exponent = k·(speed - knot)``, `growth` is e^exponent - 1, `force` the brake's part at
+    the knot, `slope` as in `Brake`.
+    """
+
+    fall: FloatArray
+    exponent: FloatArray
+    growth: FloatArray
+    force: FloatArray
+    slope: FloatArray
+
+    def part(self, rows: Rows) -> _Fall:
+        """The same for some of the rows."""
+        return _Fall(
+            fall=some(self.fall, rows),
+            exponent=some(self.exponent, rows),
+            growth=some(self.growth, rows),
+            force=some(self.force, rows),
+            slope=some(self.slope, rows),
+        )
+
+
+Pair = tuple[FloatArray, FloatArray]
+"""Distance beyond what the knot's speed alone would make of the time, ``∫ (v - knot) dv/a``, and time ``∫ dv/a``."""
+
+
 def _falling(speed: FloatArray, brake: Brake) -> Braking:
-    """Full braking under friction that falls with speed: quadrature above the knot, closed form below it."""
-    slowing = brake.at(speed) + brake.slope
-    knot = _knot(speed, brake)
-    distance, time = _above_knot(speed, knot, brake, slowing)
-    if knot.any():
-        even = brake.cap + brake.slope
-        distance = distance + knot * knot / (2.0 * even)
-        time = time + knot / even
+    """Full braking under friction that falls with speed: above the knot, and with the closed form below it."""
+    exponent, force, knot = brake.fall_per_mps * speed, brake.at_zero, None
+    if not np.isinf(brake.cap).all():
+        flat = np.clip(np.log(brake.at_zero / brake.cap), 0.0, exponent)
+        exponent, force, knot = exponent - flat, np.minimum(brake.at_zero, brake.cap), flat / brake.fall_per_mps
+    growth = np.expm1(exponent)
+    way = _Fall(fall=brake.fall_per_mps, exponent=exponent, growth=growth, force=force, slope=brake.slope)
+    slowing = force / (1.0 + growth) + brake.slope
+    distance, time = _above_knot(way)
+    if knot is not None:
+        after = knot / (force + brake.slope)
+        distance = distance + knot * (time + 0.5 * after)
+        time = time + after
     return Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
 
 
-def _above_knot(
-    speed: FloatArray, knot: FloatArray, brake: Brake, slowing: FloatArray
-) -> tuple[FloatArray, FloatArray]:
-    """Distance and time between `speed` and the knot, each row by the way that suits it, whatever its neighbours."""
-    slope = brake.slope
-    level = slope == 0.0
-    long_fall = brake.fall_per_mps * speed > EASY_FALL
-    hard = ~level & ((slowing < EASY_DECELERATION_MPS2) | (slowing < -slope) | long_fall)
-    steep = hard & (slope < 0.0)
-    ways = ((level, _level), (~level & ~hard, _easy), (hard & ~steep, _hard), (steep, _in_log_deceleration))
-    for rows, way in ways:
-        if rows.all():
-            return way(speed, knot, brake)
-    shape = np.broadcast_shapes(speed.shape, knot.shape, slope.shape, slowing.shape)
-    distance, time = np.empty(shape), np.empty(shape)
-    for some_rows, way in ways:
-        rows = np.broadcast_to(some_rows, shape)
-        if rows.any():
-            distance[rows], time[rows] = way(some(speed, rows), some(knot, rows), brake.part(rows))
+def _above_knot(way: _Fall) -> Pair:
+    """Each row by the form that suits it, whatever its neighbours."""
+    level = way.slope == 0.0
+    if level.all():
+        return _level(way)
+    distance, time, fits = _grade(way)
+    fits &= ~level
+    if fits.all():
+        return distance, time
+    uphill = ~level & (way.slope > 0.0)
+    short = ~fits & ~level & (way.exponent < _SHORT) & (way.slope * (1.0 + way.growth) > np.expm1(-_FAR) * way.force)
+    steep = ~fits & ~level & ~short
+    for some_rows, form in (
+        (level, _level), (short, _short), (steep & uphill, _steep_up), (steep & ~uphill, _steep_down)
+    ):  # fmt: skip
+        rows = np.flatnonzero(np.broadcast_to(some_rows, fits.shape))
+        if rows.size:
+            distance[rows], time[rows] = form(way.part(rows))
     return distance, time
 
 
-def _level(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
-    """On the level the integrals have a closed form.
+def _level(way: _Fall) -> Pair:
+    """On the level, with x the exponent and B the force: time ``(e^x - 1)/(k·B)``, distance ``(x·e^x - (e^x - 1))/(k²·B)``.
 
-    With L the speed above the knot, ``x = k·L`` and B the brake's part at the knot: time ``L/B·(e^x - 1)/x``, distance
-    ``L/B·(knot·(e^x - 1)/x + L·((x - 1)·e^x + 1)/x²)``; for a small x the two factors are taken from their series, as
-    the closed forms would lose digits.
+    For a small x the distance is taken from its series ``x²·Σ x^n/(n!·(n + 2))``: the difference would lose digits.
     """
-    length = speed - knot
-    x = brake.fall_per_mps * length
-    per_force = length / _at_knot(knot, brake)
-    growth = np.exp(x)
-    first = (growth - 1.0) / x
-    second = (growth - first) / x
-    small = x < _SMALL
+    x, growth = way.exponent, way.growth
+    time = growth / (way.fall * way.force)
+    part = x * (1.0 + growth) - growth
+    small = np.broadcast_to(x < _SHORT, part.shape)
     if small.any():
-        first[small], second[small] = _series(x[small])
-    return per_force * (knot * first + length * second), per_force * first
+        y = some(x, small)
+        series = np.zeros(y.shape)
+        for n in range(_TERMS, -1, -1):
+            series = series * y + 1.0 / (factorial(n) * (n + 2))
+        part[small] = y * y * series
+    return part / (way.fall * way.fall * way.force), time
 
 
-def _series(x: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """``(e^x - 1)/x = Σ x^n/(n + 1)!`` and ``((x - 1)·e^x + 1)/x² = Σ x^n/(n!·(n + 2))``, for x below `_SMALL`."""
-    first, second = np.zeros(x.shape), np.zeros(x.shape)
-    for n in range(_TERMS - 1, -1, -1):
-        first = first * x + 1.0 / factorial(n + 1)
-        second = second * x + 1.0 / (factorial(n) * (n + 2))
-    return first, second
+def _grade(way: _Fall) -> tuple[FloatArray, FloatArray, BoolArray]:
+    """On a grade, by the logarithm ``t = ln(a/b)`` of the whole deceleration over the brake's part; and where it fits.
 
-
-def _easy(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
-    """Rows on a grade that slow well: 16 points."""
-    return _quadrature(speed, knot, brake, EASY_POINTS)
-
-
-def _hard(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
-    """Rows uphill whose least deceleration is small: 32 points."""
-    return _quadrature(speed, knot, brake, HARD_POINTS)
-
-
-def _at_knot(knot: FloatArray, brake: Brake) -> FloatArray:
-    """The brake's part at the knot."""
-    return brake.at_zero * np.exp(-brake.fall_per_mps * knot) if knot.any() else brake.at_zero
-
-
-def _knot(speed: FloatArray, brake: Brake) -> FloatArray:
-    """The speed below which the cap or the vehicle's limit governs: between 0 and `speed`."""
-    if np.isinf(brake.cap).all():
-        return np.zeros(1)
-    return np.asarray(np.clip(np.log(brake.at_zero / brake.cap) / brake.fall_per_mps, 0.0, speed))
-
-
-def _quadrature(speed: FloatArray, knot: FloatArray, brake: Brake, points: int) -> tuple[FloatArray, FloatArray]:
-    """Gauss-Legendre in the speed, between the knot and `speed`: distance and time.
-
-    With u = knot + L·x: ``1/a = P/(B + s·P)``, where ``P = exp(k·L·x)`` and B is the brake's part at the knot. The
-    nodes lie in pairs x and 1 - x, so the second P of a pair is ``exp(k·L)/P``: half the exponentials, which are what
-    costs time here. The pair's moments are ``x·p + (1-x)·q = (p+q)/2 + (1/2-x)·(q-p)``.
+    From t₁ at the knot to t₂ at the speed: time ``(t₂ - t₁)/(k·s)`` with s the slope. By parts, and as
+    ``k·dv = dt/(1 - e^-t)``, the distance is ``(x·t₂ - ∫ t/(1 - e^-t) dt)/(k²·s)``. It fits where t is within `_FAR`
+    and x is not so small that the difference loses digits; t₂ - t₁ is worked out as one logarithm for the same reason.
     """
-    length = speed - knot
-    fall = brake.fall_per_mps * length
-    bottom = _at_knot(knot, brake)
-    shape = np.broadcast_shapes(fall.shape, bottom.shape, brake.slope.shape)
-    low, high, work = np.empty(shape), np.empty(shape), np.empty(shape)
-    sums, tilts = np.zeros(shape), np.zeros(shape)
-    whole = np.exp(fall)
-    for x, weight in _half_rule(points):
-        np.exp(np.multiply(fall, x, out=low), out=low)
-        np.divide(whole, low, out=high)
-        for growth in (low, high):
-            np.multiply(brake.slope, growth, out=work)
-            work += bottom
-            growth /= work  # noqa: PLW2901  # in place on purpose: the buffers are reused
-        np.subtract(high, low, out=work)
-        low += high
-        low *= weight
-        sums += low
-        work *= weight * (0.5 - x)
-        tilts += work
-    tilts += 0.5 * sums
-    sums *= length
-    tilts *= length * length
-    return tilts + knot * sums, sums
+    bottom = np.log1p(way.slope / way.force)
+    span = np.log1p(way.slope * way.growth / (way.force + way.slope))
+    top = bottom + span
+    per_slope = 1.0 / (way.fall * way.slope)
+    distance = (way.exponent * top - span * _mean(bottom, top)) * (per_slope / way.fall)
+    time = span * per_slope
+    fits = (np.abs(top) <= _FAR) & ((way.exponent >= _SHORT) | (way.exponent == 0.0))
+    return distance, time, np.asarray(fits)
 
 
-def _in_log_deceleration(speed: FloatArray, knot: FloatArray, brake: Brake) -> tuple[FloatArray, FloatArray]:
+def _mean(t: FloatArray, u: FloatArray) -> FloatArray:
+    """The mean of ``ψ(t) = t/(1 - e^-t)`` from t to u, both within `_FAR`.
+
+    ``ψ = t/2 + p(t²)`` with an even part that is near a polynomial p; the mean of t^2m is h/(2m + 1), where h is the
+    sum of all products of 2m factors t or u, and h for m + 1 is ``(t² + u²)·h_m - t²u²·h_(m-1)``: Clenshaw's sum.
+    """
+    product = t * u
+    squares = t * t + u * u
+    fourth = product * product
+    *rest, before, last = _even_part()
+    older, newer = np.full(squares.shape, last), squares * last
+    newer += before
+    work = np.empty(squares.shape)
+    for share in rest[:0:-1]:
+        np.multiply(squares, newer, out=work)
+        older *= fourth
+        work -= older
+        work += share
+        older, newer, work = newer, work, older
+    squares += product
+    squares *= newer
+    older *= fourth
+    squares -= older
+    product = t + u
+    product *= 0.25
+    squares += product
+    squares += rest[0]
+    return squares
+
+
+@cache
+def _even_part() -> tuple[float, ...]:
+    """The coefficients of ``(t/2)·coth(t/2)`` in t², each divided by 2m + 1, from 0 to `_FAR`."""
+    width = _FAR * _FAR
+
+    def even(x: FloatArray) -> FloatArray:
+        half = 0.5 * np.sqrt(0.5 * width * (x + 1.0))
+        return np.asarray(half / np.tanh(half))
+
+    fitted = chebyshev.Chebyshev(chebyshev.chebinterpolate(even, _DEGREE), domain=[0.0, width])
+    powers = fitted.convert(kind=np.polynomial.Polynomial, domain=[-1, 1], window=[-1, 1]).coef
+    return tuple(float(c) / (2 * m + 1) for m, c in enumerate(powers))
+
+
+def _short(way: _Fall) -> Pair:
+    """Rows of a short fall that slow well."""
+    return _quadrature(way, _SHORT_POINTS, 1)
+
+
+def _steep_up(way: _Fall) -> Pair:
+    """Rows uphill whose slope is most of the deceleration."""
+    return _quadrature(way, _PANEL_POINTS, max(1, ceil(float(way.exponent.max()) / _PANEL)))
+
+
+def _quadrature(way: _Fall, points: int, panels: int) -> Pair:
+    """Gauss-Legendre in the speed: with y from 0 to x, ``1/a = e^y/(B + s·e^y)``."""
+    nodes, weights = _rule(points)
+    sums = moments = np.zeros(1)
+    for panel in range(panels):
+        places = (panel + nodes) / panels
+        growth = np.exp(way.exponent[:, None] * places)
+        share = weights / panels * growth / (way.force[:, None] + way.slope[:, None] * growth)
+        sums = sums + share.sum(axis=1)
+        moments = moments + (places * share).sum(axis=1)
+    length = way.exponent / way.fall
+    return length * length * moments, length * sums
+
+
+def _steep_down(way: _Fall) -> Pair:
     """Rows on a downgrade whose least deceleration is small: 32 points in the logarithm of the deceleration.
 
-    There ``1/a(u)`` has a pole just above the top speed. With ``z = ln a`` the integrals become
-    ``∫ u(z)/(e^z + |s|) dz / k`` and ``∫ 1/(e^z + |s|) dz / k``, whose nearest singularity is π away.
+    There 1/a has a pole just above the top speed. With ``z = ln a`` the integrals become
+    ``∫ y(z)/(e^z + |s|) dz / k²`` and ``∫ 1/(e^z + |s|) dz / k``, whose nearest singularity is π away.
     """
-    down = -brake.slope
-    lowest = brake.at_zero * np.exp(-brake.fall_per_mps * speed) - down
+    down = -way.slope
+    lowest = way.force / (1.0 + way.growth) - down
     bottom = np.log(lowest)
-    span = np.log(_at_knot(knot, brake) - down) - bottom
-    sums, moments = np.zeros(span.shape), np.zeros(span.shape)
-    for x, weight in zip(*_rule(HARD_POINTS), strict=True):
-        part = np.exp(bottom + span * x) + down
-        share = weight / part
-        sums += share
-        moments += share * np.log(brake.at_zero / part)
-    scale = span / brake.fall_per_mps
-    return moments * scale / brake.fall_per_mps, sums * scale
+    span = np.log(way.force - down) - bottom
+    nodes, weights = _rule(_STEEP_POINTS)
+    part = np.exp(bottom[:, None] + span[:, None] * nodes) + down[:, None]
+    share = weights / part
+    sums, moments = share.sum(axis=1), (share * np.log(way.force[:, None] / part)).sum(axis=1)
+    scale = span / way.fall
+    return moments * scale / way.fall, sums * scale
 
 
 @cache
@@ -221,11 +281,3 @@ def _rule(points: int) -> tuple[FloatArray, FloatArray]:
     """Nodes and weights on 0..1."""
     nodes, weights = leggauss(points)
     return 0.5 * (nodes + 1.0), 0.5 * weights
-
-
-@cache
-def _half_rule(points: int) -> tuple[tuple[float, float], ...]:
-    """The nodes below 1/2 with their weights; the others mirror them."""
-    nodes, weights = _rule(points)
-    half = points // 2
-    return tuple((float(x), float(w)) for x, w in zip(nodes[:half], weights[:half], strict=True))

@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from chartgen.motion.friction_table import FrictionTable
-from chartgen.motion.limits import GRAVITY_MPS2, KMH_PER_MPS, RANGES, BoolArray, FloatArray, checked
+from chartgen.motion.limits import GRAVITY_MPS2, KMH_PER_MPS, RANGES, FloatArray, Rows, checked
 
 _REFERENCE_KMH = 60.0
 _KM_PER_MILE = 1.609344
@@ -133,7 +133,8 @@ def checked_tables(
     which = np.asarray(table)
     if which.dtype.kind not in "iu" or not ((which >= -1) & (which < len(tables))).all():
         raise ValueError(f"table: it must be -1, or the place of one of the {len(tables)} tables")
-    if ((which >= 0) & (~np.isnan(given["mu"]) | ~np.isnan(given["f60"]))).any():
+    by_table = which >= 0
+    if by_table.any() and (by_table & (~np.isnan(given["mu"]) | ~np.isnan(given["f60"]))).any():
         raise ValueError("table, mu, f60: friction is given in more than one form")
     return which.astype(np.int64)
 
@@ -151,7 +152,7 @@ def checked_friction(*, mu: ArrayLike, f60: ArrayLike, sp_kmh: ArrayLike, max_mu
         raise ValueError("f60, sp_kmh: friction that falls with speed needs both of them")
     if (has_mu & has_f60).any():
         raise ValueError("mu, f60: friction is either constant or falls with speed, not both")
-    if (np.isfinite(given["max_mu"]) & ~has_f60).any():
+    if not has_f60.all() and (np.isfinite(given["max_mu"]) & ~has_f60).any():
         raise ValueError("max_mu: a cap belongs to friction that falls with speed (f60, sp_kmh)")
     return given
 
@@ -203,13 +204,14 @@ class Brake:
         With θ = atan(G): cosθ = 1/√(1+G²) and sinθ = G/√(1+G²), exactly.
         """
         at_zero, fall, cap = _as_falling(mu, f60, sp_kmh, max_mu)
-        run = 1.0 / np.sqrt(1.0 + grade * grade)
-        scale = brake_efficiency * (GRAVITY_MPS2 * run) * brake_share
+        across = GRAVITY_MPS2 / np.sqrt(1.0 + grade * grade)
+        scale = brake_efficiency * brake_share * across
+        limit = max_deceleration_mps2 * brake_share
         return cls(
             at_zero=np.asarray(scale * at_zero),
             fall_per_mps=fall,
-            cap=np.asarray(np.minimum(scale * cap, max_deceleration_mps2 * brake_share)),
-            slope=np.asarray(GRAVITY_MPS2 * grade * run),
+            cap=limit if np.isinf(cap).all() else np.asarray(np.minimum(scale * cap, limit)),
+            slope=np.asarray(grade * across),
         )
 
     def at(self, speed_mps: FloatArray) -> FloatArray:
@@ -218,7 +220,7 @@ class Brake:
             return np.asarray(np.minimum(self.at_zero, self.cap))
         return np.asarray(np.minimum(self.at_zero * np.exp(-self.fall_per_mps * speed_mps), self.cap))
 
-    def part(self, rows: BoolArray) -> Brake:
+    def part(self, rows: Rows) -> Brake:
         """The same for some of the rows; a quantity that is one for all rows stays one."""
         return Brake(
             at_zero=some(self.at_zero, rows),
@@ -228,6 +230,6 @@ class Brake:
         )
 
 
-def some(value: FloatArray, rows: slice | BoolArray) -> FloatArray:
+def some(value: FloatArray, rows: Rows) -> FloatArray:
     """`value` at `rows`; a single value for all rows stays as it is, so that it costs nothing."""
     return value if value.size == 1 else value[rows]
