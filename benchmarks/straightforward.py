@@ -197,16 +197,7 @@ def answers(job: Job, language: Language) -> dict[str, list[Block]]:
     kinds = asked_greatest(asked)
     if kinds:
         named = [f"{r['driver']} {r['vehicle']} {r['surface']}" for r in firsts]
-        made["greatest"] = [
-            (
-                bars(
-                    job, named, [r[f"greatest_{kind}_mps"] for r in firsts],
-                    [language.number(np.nan_to_num(r[f"printed_greatest_{kind}"])) for r in firsts], language,
-                ),
-                [[name, language.number(np.nan_to_num(r[f"printed_greatest_{kind}"]))] for name, r in zip(named, firsts, strict=True)],
-            )
-            for kind in kinds
-        ]  # fmt: skip
+        made["greatest"] = [greatest(job, named, firsts, kind, language) for kind in kinds]
     if asked.gaps:
         columns = [f"printed_{what} {rule}" for rule in asked.gaps for what in ("gap_distance", "gap_s")]
         different = {tuple(np.nan_to_num(rows[columns].to_numpy()).ravel()): rows for rows in reversed(cases)}
@@ -214,8 +205,15 @@ def answers(job: Job, language: Language) -> dict[str, list[Block]]:
     return made
 
 
-def beside(job: Job, language: Language) -> list[Block]:
-    """The edition beside each published table, and the catalogue: tables in words."""
+def greatest(job: Job, named: list[str], firsts: list[pd.Series], kind: str, language: Language) -> Block:
+    """The greatest speeds of one kind: a bar and a line a case."""
+    texts = [language.number(np.nan_to_num(row[f"printed_greatest_{kind}"])) for row in firsts]
+    drawn = bars(job, named, [row[f"greatest_{kind}_mps"] for row in firsts], texts, language)
+    return drawn, [list(pair) for pair in zip(named, texts, strict=True)]
+
+
+def beside(job: Job) -> list[Block]:
+    """The edition beside each published table."""
     comparisons = compare(job.figures, job.edition) if job.edition.compare else ()
     return [("", [[str(getattr(row, name)) for name in row.__slots__] for row in c.rows]) for c in comparisons]
 
@@ -258,7 +256,7 @@ def pages(job: Job, folder: Path) -> None:
         wanted |= {f"vehicle-{v}": [b for k, b in blocks.items() if k[0] == v] for v in table["vehicle"].unique()}
         wanted["method"] = [("", cells(job, language, table))]
         wanted |= {f"answers-{id}": blocks for id, blocks in answers(job, language).items()}
-        wanted |= {"compare": beside(job, language), "catalogue": catalogue(language)}
+        wanted |= {"compare": beside(job), "catalogue": catalogue(language)}
         for name, shown in wanted.items():
             title, caution = language.text(edition.title), caution_sentences(language)
             text = PAGE.render(language=language, title=title, blocks=shown, caution=caution)

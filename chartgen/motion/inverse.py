@@ -68,10 +68,13 @@ def residual_speed(speed_mps: ArrayLike, distance_m: ArrayLike, **arguments: Any
     if not (np.isfinite(place) & (place >= 0.0)).all():
         raise ValueError("distance_m: it must be at least 0 m and finite")
     given = _rows({"speed_mps": speed_mps, "distance_m": place, **_defaults(arguments)})
-    told = np.array(stop(**{n: v for n, v in given.items() if n != "distance_m"}).reason_code != _OUTSIDE)
+    whole = stop(**{name: value for name, value in given.items() if name != "distance_m"})
+    told = np.array(whole.reason_code != _OUTSIDE)
     out = np.full(len(told), np.nan)
     if told.any():
         out[told] = np.maximum(_residual(_some(given, told)), 0.0)
+    # Where it has stopped it has stopped, to the last digit.
+    out[whole.stops & (np.nan_to_num(whole.stopping_distance_m, nan=np.inf) <= given["distance_m"])] = 0.0
     return np.asarray(out.reshape(_shape(speed_mps, place, arguments)))
 
 

@@ -162,7 +162,8 @@ def test_inputs_say_what_the_functions_take() -> None:
         parameters = dict(inspect.signature(inputs.function).parameters)
         assert next(iter(parameters)) == "speed_mps"
         parameters.pop("speed_mps")
-        has_friction = all(parameters.pop(p, None) is not None for p in ("mu", "f60", "sp_kmh", "max_mu", "tables", "table"))
+        friction = ("mu", "f60", "sp_kmh", "max_mu", "tables", "table")
+        has_friction = all(parameters.pop(p, None) is not None for p in friction)
         assert has_friction == inputs.usable("friction")
         takes = set(inputs.required | inputs.optional) - {"friction"}
         assert set(parameters) == takes, name
