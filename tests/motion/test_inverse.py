@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from typing import Any
 
 import numpy as np
 import pytest
@@ -17,7 +18,7 @@ from tests.motion.laws import between
 from tests.motion.reference import brake_force, friction_law
 
 TABLE = FrictionTable(np.array([5.0, 15.0, 30.0]), np.array([0.7, 0.5, 0.4]))
-ROADS = {
+ROADS: dict[str, dict[str, Any]] = {
     "constant": {"mu": 0.6},
     "falling": {"f60": 0.4, "sp_kmh": 120.0, "max_mu": 0.7},
     "limit": {"mu": 0.7, "max_deceleration_mps2": 4.5},

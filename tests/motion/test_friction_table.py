@@ -1,0 +1,134 @@
+"""Is friction by a table the monotone curve of scipy, and a stop under it that of a step-by-step integration?"""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+import pytest
+from scipy.interpolate import PchipInterpolator
+
+from chartgen.motion.friction import friction_at, penn_state, speed_constant
+from chartgen.motion.friction_table import FrictionTable
+from chartgen.motion.stopping import stop
+from tests.motion.reference import brake_force, step_by_step
+
+TABLE = FrictionTable(np.array([4.0, 10.0, 18.0, 27.0, 36.0]), np.array([0.72, 0.60, 0.52, 0.47, 0.45]))
+
+
+def test_the_curve_is_that_of_scipy() -> None:
+    chance = np.random.default_rng(11)
+    for _ in range(300):
+        count = int(chance.integers(2, 12))
+        speeds = np.cumsum(chance.uniform(0.2, 8.0, count))
+        values = chance.uniform(0.05, 1.2, count)
+        at = chance.uniform(speeds[0], speeds[-1], 40)
+        table = FrictionTable(speeds, values)
+        assert table.at(at) == pytest.approx(PchipInterpolator(speeds, values)(at), abs=1e-14)
+
+
+def test_the_curve_never_overshoots() -> None:
+    at = np.linspace(4.0, 36.0, 3000)
+    assert (np.diff(TABLE.at(at)) <= 0.0).all()
+
+
+def test_below_the_first_speed_its_value_and_beyond_the_last_none() -> None:
+    assert TABLE.at([0.0, 3.9, 4.0]).tolist() == [0.72, 0.72, 0.72]
+    assert np.isnan(TABLE.at([36.0, 36.0 * (1 + 1e-10), 36.1])).tolist() == [False, False, True]
+
+
+@pytest.mark.parametrize("grade", [-0.08, 0.0, 0.1])
+@pytest.mark.parametrize("limit", [math.inf, 5.2])
+@pytest.mark.parametrize("speed", [3.0, 15.0, 33.0])
+def test_a_stop_is_that_of_the_motion(grade: float, limit: float, speed: float) -> None:
+    brake, slope = brake_force(lambda v: float(TABLE.at(max(v, 0.0))), grade=grade, brake_efficiency=0.9, limit=limit)
+    other = step_by_step(speed, reaction_time=1.0, lag=0.3, build_up=0.0, brake=brake, slope=slope)
+    out = stop(
+        speed, reaction_time_s=1.0, brake_lag_s=0.3, grade=grade, brake_efficiency=0.9, max_deceleration_mps2=limit,
+        tables=(TABLE,), table=0,
+    )  # fmt: skip
+    assert float(out.stopping_distance_m) == pytest.approx(other["stopping"], rel=1e-7)
+    assert float(out.stopping_time_s) == pytest.approx(other["time"], rel=1e-6)
+
+
+def test_rows_with_and_without_a_table_keep_their_places() -> None:
+    flat = FrictionTable(np.array([1.0, 50.0]), np.array([0.5, 0.5]))
+    out = stop(
+        [20.0, 20.0, 20.0, 30.0], reaction_time_s=1.0, mu=[math.nan, 0.5, math.nan, math.nan], tables=(TABLE, flat),
+        table=[1, -1, 0, 1],
+    )  # fmt: skip
+    even = stop([20.0, 30.0], reaction_time_s=1.0, mu=0.5).stopping_distance_m
+    assert out.stopping_distance_m[[0, 1, 3]] == pytest.approx(even[[0, 0, 1]], rel=1e-12)
+    assert float(out.stopping_distance_m[2]) < float(even[0])
+
+
+def test_beyond_the_sources_speeds_is_a_gap() -> None:
+    out = stop([35.0, 37.0], reaction_time_s=1.0, tables=(TABLE,), table=0)
+    assert out.reason.tolist() == ["", "outside-friction-range"]
+    assert np.isnan(out.stopping_distance_m).tolist() == [False, True]
+    # Downhill the lag carries a vehicle beyond the table.
+    down = stop(35.9, reaction_time_s=1.0, brake_lag_s=0.5, grade=-0.1, tables=(TABLE,), table=0)
+    assert down.reason == "outside-friction-range"
+    valid = stop([20.0, 30.0], reaction_time_s=1.0, mu=0.5, valid_to_mps=25.0)
+    assert valid.reason.tolist() == ["", "outside-friction-range"]
+
+
+def test_too_little_friction_anywhere_on_the_way_does_not_stop() -> None:
+    dip = FrictionTable(np.array([2.0, 10.0, 20.0]), np.array([0.5, 0.08, 0.5]))
+    assert stop(20.0, reaction_time_s=1.0, grade=-0.09, tables=(dip,), table=0).reason == "never-at-rest"
+    assert bool(stop(20.0, reaction_time_s=1.0, tables=(dip,), table=0).stops)
+
+
+def test_an_unbraked_trailer_lengthens_the_braking_by_its_mass() -> None:
+    alone = stop(25.0, reaction_time_s=1.0, mu=0.6).braking_distance_m
+    drawn = stop(25.0, reaction_time_s=1.0, mu=0.6, brake_share=0.6).braking_distance_m
+    assert float(drawn) == pytest.approx(float(alone) / 0.6)
+    limited = stop(25.0, reaction_time_s=1.0, max_deceleration_mps2=5.0, brake_share=0.5).braking_distance_m
+    assert float(limited) == pytest.approx(625.0 / 5.0)
+
+
+@pytest.mark.parametrize(
+    ("speeds", "values", "says"),
+    [
+        ([1.0], [0.5], "two or more"),
+        ([1.0, 2.0], [0.5], "two or more"),
+        ([2.0, 1.0], [0.5, 0.4], "rise"),
+        ([1.0, 1.0], [0.5, 0.4], "rise"),
+        ([1.0, 2.0], [0.5, 0.0], "mu"),
+        ([1.0, 2.0], [0.5, 1.6], "mu"),
+        ([-1.0, 2.0], [0.5, 0.4], "rise"),
+    ],
+)
+def test_a_table_that_is_none_is_refused(speeds: list[float], values: list[float], says: str) -> None:
+    with pytest.raises(ValueError, match=says):
+        FrictionTable(np.array(speeds), np.array(values))
+
+
+@pytest.mark.parametrize(
+    ("table", "mu", "says"), [(1, math.nan, "table"), (-2, math.nan, "table"), (0, 0.5, "more than one")]
+)
+def test_an_index_that_is_none_is_refused(table: int, mu: float, says: str) -> None:
+    with pytest.raises(ValueError, match=says):
+        stop(20.0, reaction_time_s=1.0, mu=mu, tables=(TABLE,), table=table)
+
+
+def test_friction_at_a_speed_knows_tables() -> None:
+    found = friction_at([10.0, 10.0], mu=[math.nan, 0.3], tables=(TABLE,), table=[0, -1])
+    assert found == pytest.approx([0.60, 0.3])
+
+
+def test_penn_state_is_its_own_formula() -> None:
+    """SN(V) = SN0·exp(-PNG·V/100), V in mph (from memory); friction is a hundredth of it."""
+    f60, sp = penn_state(55.0, 0.9)
+    for mph in (10.0, 40.0, 65.0):
+        found = float(friction_at(mph * 0.44704, f60=f60, sp_kmh=sp))
+        assert found == pytest.approx(0.55 * math.exp(-0.9 * mph / 100.0), rel=1e-12)
+
+
+def test_the_speed_constant_follows_from_texture() -> None:
+    """ASTM E1960: Sp = 14.2 + 89.7·MPD (from memory)."""
+    assert speed_constant(1.0) == pytest.approx(103.9)
+    with pytest.raises(ValueError, match="texture_mm"):
+        speed_constant(0.0)
+    with pytest.raises(ValueError, match="png"):
+        penn_state(50.0, 0.0)
