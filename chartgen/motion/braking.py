@@ -23,12 +23,12 @@ _SHORT = 0.05
 """Chosen by us: below this exponent of the fall the closed forms lose digits, at most the factor 2/0.05 down to it."""
 
 _SHORT_POINTS = 8
-"""Enough for a fall of less than `_SHORT` where t is within `_FAR`: the pole is then 6 half-intervals away or more, and
-the rule leaves out less than 10^-16."""
+"""Enough for a fall of less than `_SHORT` where t is within `_FAR`: the pole is then 11 half-intervals away or more, and
+the rule leaves out less than 20^-16."""
 
-_FAR = 2.0
-_DEGREE = 10
-"""Of the polynomial for `t` from -2 to 2: the function's poles are 2π away, so it leaves out less than 41^-11."""
+_FAR = 1.5
+_DEGREE = 8
+"""Of the polynomial in t² for t from -1.5 to 1.5: as the function's poles are at 2π·i, it leaves out less than 1e-16."""
 
 _PANEL = 4.0
 _PANEL_POINTS = 16
@@ -121,7 +121,7 @@ def _falling(speed: FloatArray, brake: Brake) -> Braking:
     """Full braking under friction that falls with speed: above the knot, and with the closed form below it."""
     exponent, force, knot = brake.fall_per_mps * speed, brake.at_zero, None
     if not np.isinf(brake.cap).all():
-        flat = np.clip(np.log(brake.at_zero / brake.cap), 0.0, exponent)
+        flat = np.minimum(np.maximum(np.log(brake.at_zero / brake.cap), 0.0), exponent)
         exponent, force, knot = exponent - flat, np.minimum(brake.at_zero, brake.cap), flat / brake.fall_per_mps
     growth = np.expm1(exponent)
     way = _Fall(fall=brake.fall_per_mps, exponent=exponent, growth=growth, force=force, slope=brake.slope)
@@ -140,18 +140,13 @@ def _above_knot(way: _Fall) -> Pair:
     if level.all():
         return _level(way)
     distance, time, fits = _grade(way)
-    fits &= ~level
-    if fits.all():
-        return distance, time
-    uphill = ~level & (way.slope > 0.0)
-    short = ~fits & ~level & (way.exponent < _SHORT) & (way.slope * (1.0 + way.growth) > np.expm1(-_FAR) * way.force)
-    steep = ~fits & ~level & ~short
-    for some_rows, form in (
-        (level, _level), (short, _short), (steep & uphill, _steep_up), (steep & ~uphill, _steep_down)
-    ):  # fmt: skip
-        rows = np.flatnonzero(np.broadcast_to(some_rows, fits.shape))
-        if rows.size:
-            distance[rows], time[rows] = form(way.part(rows))
+    fits |= level
+    others = np.flatnonzero(~fits)
+    if others.size:
+        distance[others], time[others] = _by_quadrature(way.part(others), others.size)
+    levels = np.flatnonzero(level)
+    if levels.size:
+        distance[levels], time[levels] = _level(way.part(levels))
     return distance, time
 
 
@@ -186,8 +181,10 @@ def _grade(way: _Fall) -> tuple[FloatArray, FloatArray, BoolArray]:
     per_slope = 1.0 / (way.fall * way.slope)
     distance = (way.exponent * top - span * _mean(bottom, top)) * (per_slope / way.fall)
     time = span * per_slope
-    fits = (np.abs(top) <= _FAR) & ((way.exponent >= _SHORT) | (way.exponent == 0.0))
-    return distance, time, np.asarray(fits)
+    fits = np.asarray(np.abs(top) <= _FAR)
+    if way.exponent.min() < _SHORT:
+        fits = fits & ((way.exponent >= _SHORT) | (way.exponent == 0.0))
+    return distance, time, fits
 
 
 def _mean(t: FloatArray, u: FloatArray) -> FloatArray:
@@ -229,22 +226,34 @@ def _even_part() -> tuple[float, ...]:
         half = 0.5 * np.sqrt(0.5 * width * (x + 1.0))
         return np.asarray(half / np.tanh(half))
 
-    fitted = chebyshev.Chebyshev(chebyshev.chebinterpolate(even, _DEGREE), domain=[0.0, width])
+    fitted = chebyshev.Chebyshev(chebyshev.chebinterpolate(even, 100)[: _DEGREE + 1], domain=[0.0, width])
     powers = fitted.convert(kind=np.polynomial.Polynomial, domain=[-1, 1], window=[-1, 1]).coef
     return tuple(float(c) / (2 * m + 1) for m, c in enumerate(powers))
 
 
+def _by_quadrature(way: _Fall, rows: int) -> Pair:
+    """Rows on a grade that `_grade` does not fit: short falls, slopes of most of the deceleration, and near balance."""
+    uphill = way.slope > 0.0
+    short = (way.exponent < _SHORT) & (way.slope * (1.0 + way.growth) > np.expm1(-_FAR) * way.force)
+    distance, time = np.empty(rows), np.empty(rows)
+    for which, form in ((short, _short), (~short & uphill, _steep_up), (~short & ~uphill, _steep_down)):
+        here = np.flatnonzero(np.broadcast_to(which, rows))
+        if here.size:
+            distance[here], time[here] = form(way.part(here))
+    return distance, time
+
+
 def _short(way: _Fall) -> Pair:
     """Rows of a short fall that slow well."""
-    return _quadrature(way, _SHORT_POINTS, 1)
+    return _gauss(way, _SHORT_POINTS, 1)
 
 
 def _steep_up(way: _Fall) -> Pair:
     """Rows uphill whose slope is most of the deceleration."""
-    return _quadrature(way, _PANEL_POINTS, max(1, ceil(float(way.exponent.max()) / _PANEL)))
+    return _gauss(way, _PANEL_POINTS, max(1, ceil(float(way.exponent.max()) / _PANEL)))
 
 
-def _quadrature(way: _Fall, points: int, panels: int) -> Pair:
+def _gauss(way: _Fall, points: int, panels: int) -> Pair:
     """Gauss-Legendre in the speed: with y from 0 to x, ``1/a = e^y/(B + s·e^y)``."""
     nodes, weights = _rule(points)
     sums = moments = np.zeros(1)

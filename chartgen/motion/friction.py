@@ -165,7 +165,7 @@ def _as_falling(
     A constant is a fall of 0; where no friction is given, at_zero is infinite and a vehicle's own limit has to govern.
     """
     fall = np.asarray(KMH_PER_MPS / sp_kmh)
-    at_zero = np.asarray(f60 * np.exp(_REFERENCE_KMH / sp_kmh))
+    at_zero = np.asarray(f60 * np.exp(_REFERENCE_KMH / KMH_PER_MPS * fall))
     constant = np.isnan(f60)
     if constant.any():
         fall = np.where(constant, 0.0, fall)

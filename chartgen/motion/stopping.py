@@ -246,9 +246,10 @@ def _write(
     np.add(out["reaction_distance_m"], out["lag_distance_m"], out=out["stopping_distance_m"])
     out["stopping_distance_m"] += out["braking_distance_m"]
     np.add(reaction_time + lagging.time_s + building.time_s, full.time_s, out=out["stopping_time_s"])
-    if code.any():
+    blank = np.flatnonzero(code)
+    if blank.size:
         for name in ("braking_distance_m", "stopping_distance_m", "stopping_time_s"):
-            out[name][code != 0] = np.nan
+            out[name][blank] = np.nan
 
 
 def _one_table(
