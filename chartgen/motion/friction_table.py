@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass, field
+from functools import cache
 from itertools import pairwise
 
 import numpy as np
@@ -17,7 +18,7 @@ from numpy.typing import ArrayLike
 
 from chartgen.motion.limits import RANGES, BoolArray, FloatArray
 
-_PANELS = 4
+_PANELS = 2
 _POINTS = 16
 """Gauss-Legendre points in each of so many panels of a smooth piece."""
 _HALVINGS = 60
@@ -169,7 +170,7 @@ def braking_distance_and_time(speed_mps: FloatArray, brake: TableBrake) -> tuple
     below = np.minimum(speed_mps, first)
     even = brake.at(np.zeros(len(speed_mps))) + brake.slope
     distance, time = below * below / (2.0 * even), below / even
-    nodes, weights = leggauss(_POINTS)
+    nodes, weights = _rule()
     for low, high in _pieces(speed_mps, brake):
         width = (high - low) / _PANELS
         for panel in range(_PANELS):
@@ -180,6 +181,12 @@ def braking_distance_and_time(speed_mps: FloatArray, brake: TableBrake) -> tuple
             time = time + share.sum(axis=1)
             distance = distance + (share * at).sum(axis=1)
     return distance, time
+
+
+@cache
+def _rule() -> tuple[FloatArray, FloatArray]:
+    nodes, weights = leggauss(_POINTS)
+    return nodes, weights
 
 
 def _pieces(speed: FloatArray, brake: TableBrake) -> Iterator[tuple[FloatArray, FloatArray]]:

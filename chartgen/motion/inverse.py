@@ -18,7 +18,7 @@ from chartgen.motion.stopping import REASONS, stop
 
 _SCAN = 240
 """Speeds tried before the search narrows: no unsafe stretch wider than a 240th of the top speed is stepped over."""
-_HALVINGS = 60
+_HALVINGS = 46
 _LEAST_MPS = 1e-9
 """Stands for rest where the mechanics want a speed above 0."""
 _STEPS = 400

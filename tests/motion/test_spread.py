@@ -21,7 +21,7 @@ SLOW = {"reaction_mu": 0.17, "reaction_sigma": 0.44}  # a surprise, R. J. Koppa 
 
 def spread(speed: object = 20.0, **arguments: object) -> StoppingSpread:
     given = {**FIXED, "reaction_time_s": 1.0, **arguments}
-    return stopping_percentiles(np.atleast_1d(speed), **given)  # type: ignore[arg-type]
+    return stopping_percentiles(np.atleast_1d(np.asarray(speed, dtype=float)), **given)
 
 
 def test_reaction_alone_gives_the_lognormals_own_percentiles() -> None:
