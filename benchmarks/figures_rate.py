@@ -17,6 +17,7 @@ import statistics
 import sys
 import time
 from collections.abc import Callable
+from typing import Any
 
 os.environ.setdefault("OMP_NUM_THREADS", "1")
 
@@ -41,7 +42,7 @@ def roads(rows: int) -> dict[str, FloatArray]:
     }
 
 
-def cases(rows: int) -> dict[str, dict[str, FloatArray]]:
+def cases(rows: int) -> dict[str, dict[str, Any]]:
     """What is measured, by name."""
     chance = np.random.default_rng(61)
     level = roads(rows)
@@ -67,16 +68,20 @@ def timed(work: Callable[[], object]) -> float:
     return time.perf_counter() - start
 
 
-def measure(name: str, given: dict[str, FloatArray], rounds: int) -> None:
+def measure(name: str, given: dict[str, Any], rounds: int) -> None:
     """Prints one line of ratios and times."""
-    first: Stop = stop(**given)
+
+    def stops() -> Stop:
+        return stop(given["speed_mps"], **{name: x for name, x in given.items() if name != "speed_mps"})
+
+    first = stops()
     speed, slowing = given["speed_mps"], np.array(first.full_deceleration_mps2)
     stopping = first.stops.mean()
     del first
     alone, ours = [], []
     for _ in range(rounds):
         alone.append(timed(lambda: speed**2 / (2 * slowing)))
-        ours.append(timed(lambda: stop(**given)))
+        ours.append(timed(stops))
     ratios = [b / a for a, b in zip(alone, ours, strict=True)]
     print(
         f"{name:40} ratio least {min(ratios):5.1f} median {statistics.median(ratios):5.1f}   "

@@ -19,16 +19,20 @@ from numpy.polynomial.legendre import leggauss
 from chartgen.motion.friction import Brake, some
 from chartgen.motion.limits import BoolArray, FloatArray, Rows
 
+_LEVEL_MPS2 = 1e-20
+"""Below this the slope changes no digit of a deceleration that counts as one; products with it stay in range."""
+
 _SHORT = 0.05
 """Chosen by us: below this exponent of the fall the closed forms lose digits, at most the factor 2/0.05 down to it."""
 
 _SHORT_POINTS = 8
-"""Enough for a fall of less than `_SHORT` where t is within `_FAR`: the pole is then 11 half-intervals away or more, and
-the rule leaves out less than 20^-16."""
+"""Enough for a fall of less than `_SHORT` where t is within `_FAR`: the pole is then 11 half-intervals away or more,
+and the rule leaves out less than 20^-16."""
 
 _FAR = 1.5
 _DEGREE = 8
-"""Of the polynomial in t² for t from -1.5 to 1.5: as the function's poles are at 2π·i, it leaves out less than 1e-16."""
+"""Of the polynomial in t² for t from -1.5 to 1.5: as the function's poles are at 2π·i, it leaves out less than 1e-16;
+its coefficients are good to 1e-15."""
 
 _PANEL = 4.0
 _PANEL_POINTS = 16
@@ -136,7 +140,7 @@ def _falling(speed: FloatArray, brake: Brake) -> Braking:
 
 def _above_knot(way: _Fall) -> Pair:
     """Each row by the form that suits it, whatever its neighbours."""
-    level = way.slope == 0.0
+    level = np.abs(way.slope) < _LEVEL_MPS2
     if level.all():
         return _level(way)
     distance, time, fits = _grade(way)
@@ -151,7 +155,7 @@ def _above_knot(way: _Fall) -> Pair:
 
 
 def _level(way: _Fall) -> Pair:
-    """On the level, with x the exponent and B the force: time ``(e^x - 1)/(k·B)``, distance ``(x·e^x - (e^x - 1))/(k²·B)``.
+    """On the level, with B the force: time ``(e^x - 1)/(k·B)``, distance ``(x·e^x - (e^x - 1))/(k²·B)``.
 
     For a small x the distance is taken from its series ``x²·Σ x^n/(n!·(n + 2))``: the difference would lose digits.
     """
@@ -226,7 +230,8 @@ def _even_part() -> tuple[float, ...]:
         half = 0.5 * np.sqrt(0.5 * width * (x + 1.0))
         return np.asarray(half / np.tanh(half))
 
-    fitted = chebyshev.Chebyshev(chebyshev.chebinterpolate(even, 100)[: _DEGREE + 1], domain=[0.0, width])
+    places = chebyshev.chebpts1(100)
+    fitted = chebyshev.Chebyshev(chebyshev.chebfit(places, even(places), _DEGREE), domain=[0.0, width])
     powers = fitted.convert(kind=np.polynomial.Polynomial, domain=[-1, 1], window=[-1, 1]).coef
     return tuple(float(c) / (2 * m + 1) for m, c in enumerate(powers))
 
