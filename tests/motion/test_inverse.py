@@ -84,6 +84,8 @@ def test_the_rest_of_the_way_is_what_the_residual_speed_still_needs(
     speed: float, grade: float, lag: float, rise: float, mu: float, share: float
 ) -> None:
     """Full braking from the residual speed takes just the rest of the way, wherever full braking has begun."""
+    # Millionths of a second and of a slope: nothing smaller is ever stated.
+    lag, rise, grade = (round(x, 6) for x in (lag, rise, grade))
     arguments = {"brake_lag_s": lag, "build_up_s": rise, "grade": grade, "mu": mu}
     out = stop(speed, reaction_time_s=0.9, **arguments)
     assume(bool(out.stops))
