@@ -17,7 +17,7 @@ TRANSLATED = ("ar", "cy", "es-US", "fr")
 SYMBOLS = {"unit.m", "unit.s", "unit.kmh", "unit.mps2", "unit.kb", "page.file_pdf"}
 """Symbols and bare frames that are the same in every language that has no own."""
 SAME_AS_ENGLISH = {
-    "cy": SYMBOLS | {"sheet.poster", "page.data"},  # Welsh uses both words: poster, data
+    "cy": SYMBOLS | {"sheet.poster", "page.data", "kind.car"},  # Welsh uses these words: poster, data, car
     "fr": SYMBOLS - {"unit.kb"} | {"method.source", "control.licence"},  # French words too; kB is ko
     "es-US": SYMBOLS | {"unit.mph"},  # United States manuals in Spanish print mph
     "ar": set[str](),
