@@ -155,20 +155,20 @@ def _by_table(
     out = {name: np.empty(rows) for name in _NAMES}
     code = np.zeros(rows, dtype=np.int8)
     for index in np.unique(which):
-        here = which == index
-        some_rows = {name: some(x, here) for name, x in given.items()}
-        part = {name: np.empty(int(here.sum())) for name in _NAMES}
-        part_code = np.zeros(int(here.sum()), dtype=np.int8)
-        with np.errstate(divide="ignore", invalid="ignore", over="ignore", under="ignore"):
-            if index < 0:
-                # A constant of no use stands in where every row has one value, so that chunks keep their lengths.
-                _one_chunk(some_rows, part, part_code)
-            else:
-                full = {name: np.broadcast_to(x, part_code.shape) for name, x in some_rows.items()}
-                _one_table(full, tables[index], part, part_code)
-        for name, values in part.items():
-            out[name][here] = values
-        code[here] = part_code
+        whole = np.flatnonzero(which == index)
+        for start in range(0, len(whole), _CHUNK_ROWS):
+            here = whole[start : start + _CHUNK_ROWS]
+            some_rows = {name: some(x, here) for name, x in given.items()}
+            part, part_code = {name: np.empty(len(here)) for name in _NAMES}, np.zeros(len(here), dtype=np.int8)
+            with np.errstate(divide="ignore", invalid="ignore", over="ignore", under="ignore"):
+                if index < 0:
+                    _one_chunk(some_rows, part, part_code)
+                else:
+                    full = {name: np.broadcast_to(x, part_code.shape) for name, x in some_rows.items()}
+                    _one_table(full, tables[index], part, part_code)
+            for name, values in part.items():
+                out[name][here] = values
+            code[here] = part_code
     return _record(out, code, shape)
 
 
@@ -270,13 +270,12 @@ def _one_table(
     begin = np.broadcast_to(building.end_speed_mps, speed.shape)
     top = np.maximum(np.maximum(lagging.top_speed_mps, building.top_speed_mps), speed)
     outside = top > table.last_mps * (1.0 + _SAME_SPEED)
-    safe = np.where(outside, 0.0, begin)
-    distance, time = braking_distance_and_time(np.minimum(safe, table.last_mps), brake)
-    slowing = brake.at(np.where(outside, np.nan, begin)) + brake.slope
     least = brake.least(np.zeros(len(speed)), np.minimum(top, table.last_mps)) + brake.slope
     code[...] = least < LEAST_DECELERATION_MPS2
     code[least <= 0.0] = 2
     code[outside] = _OUTSIDE
+    slowing = brake.at(np.where(outside, np.nan, begin)) + brake.slope
+    distance, time = braking_distance_and_time(np.where(code == 0, np.minimum(begin, table.last_mps), 0.0), brake)
     full = Braking(distance_m=distance, time_s=time, deceleration_mps2=slowing)
     _write(given, (lagging, building), full, top, out, code)
 
