@@ -26,7 +26,7 @@ def surface(id: str = "dry", **friction: float) -> Surface:
     return Surface(
         id=id,
         name={"en-GB": id.capitalize()},
-        friction=Friction(**(friction or {"mu": 0.67})),
+        friction=Friction(**(friction or {"mu": 0.67})),  # type: ignore[arg-type]  # any of its numbers
         source=INVENTED,
         state=state,  # type: ignore[arg-type]  # a literal by construction
     )

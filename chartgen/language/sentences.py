@@ -21,7 +21,7 @@ from chartgen.language.load import Language
 __all__ = [
     "assumption_fragments", "assumption_line", "assumption_line_html", "assumption_line_plain", "caution_sentences",
     "headline", "headline_html", "headline_pieces", "headline_plain", "notice_sentence", "notice_sentence_html",
-    "spread_sentence", "verdict",
+    "spread_sentence", "verdict", "where_line_html",
 ]  # fmt: skip
 
 JOIN = " · "
@@ -63,6 +63,11 @@ def assumption_line_html(language: Language, edition: Edition, assumption: Assum
     """As `assumption_line`, for markup: each value in a ``<bdi>``."""
     fragments = assumption_fragments(language, edition, assumption)
     return escape(JOIN).join(language.html(key, **values) for key, values in fragments)
+
+
+def where_line_html(language: Language, edition: Edition, assumption: Assumption) -> Markup:
+    """Surface, slope and load alone: what a following gap rests on."""
+    return escape(JOIN).join(language.html(key, **values) for key, values in _where(language, edition, assumption))
 
 
 def assumption_fragments(language: Language, edition: Edition, assumption: Assumption) -> tuple[Fragment, ...]:

@@ -10,6 +10,7 @@ from markupsafe import Markup, escape
 from chartgen.charts.rungs import Rung
 from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
 from chartgen.figures.export import asked_greatest
+from chartgen.language.sentences import assumption_line_html
 from chartgen.site.answer_tables import (
     WIDE_MM,
     Answer,
@@ -53,6 +54,11 @@ def greatest(pen: Pen) -> Answer:
             for record, name, _ in rows
         ),
         figures=figures,
+        assumptions=tuple(
+            Markup("<b>{}</b> {}").format(name, assumption_line_html(language, site.edition, series.assumption))
+            for group, series in every(pen)
+            for name in (whose(pen, group, series)[0],)
+        ),
     )
     top = language.speed(max(site.edition.speeds), site.figures.speed_unit)
     return Answer(
@@ -95,9 +101,10 @@ def _greatest_rung(pen: Pen, record: Record, kind: str, name: str) -> Rung:
 
 def _greatest_told(pen: Pen, records: Sequence[Record], kind: str) -> str:
     """From the lowest to the highest of the greatest speeds."""
-    known = sorted(finite(records, f"printed_greatest_{kind}"), key=lambda r: float(r[f"greatest_{kind}_mps"]))
+    some = [r for r in finite(records, f"printed_greatest_{kind}") if r[f"printed_greatest_{kind}"] > 0]
+    known = sorted(some, key=lambda r: float(r[f"greatest_{kind}_mps"]))
     if not known:
-        return ""
+        return pen.t("answers.no_speed")
     ends = []
     for record in (known[0], known[-1]):
         speed = pen.language.speed(float(record[f"printed_greatest_{kind}"]), pen.site.figures.speed_unit)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
 from markupsafe import Markup, escape
@@ -14,6 +14,7 @@ from chartgen.charts.rungs import Rung, rungs
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS
+from chartgen.language.sentences import assumption_line_html
 from chartgen.site.drawings import Figure, inline
 from chartgen.site.edition_site import Group, Record, Series, Site, decimals, named, slope, slope_plain
 
@@ -48,6 +49,7 @@ class AnswerTable:
     heads: tuple[AnswerHead, ...]
     rows: tuple[AnswerRow, ...]
     figures: tuple[Figure, ...] = ()
+    assumptions: tuple[Markup, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -157,6 +159,7 @@ def by_speed(
             AnswerRow(escape(speed), trace(record), cells)
             for speed, record, cells in zip(_speeds(pen, series), records, zip(*columns, strict=True), strict=True)
         ),
+        assumptions=(assumption_line_html(pen.language, pen.site.edition, series.assumption),),
     )
 
 
@@ -203,4 +206,5 @@ def in_unit(pen: Pen, name: Markup | str, unit: str) -> Markup:
 
 
 def with_charts(table: AnswerTable, figures: tuple[Figure, ...]) -> AnswerTable:
-    return AnswerTable(label=table.label, caption=table.caption, heads=table.heads, rows=table.rows, figures=figures)
+    """The table with its drawings before it."""
+    return replace(table, figures=figures)

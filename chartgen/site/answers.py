@@ -12,6 +12,7 @@ from chartgen.charts.inks import palette
 from chartgen.edition.catalogue import GAP_RULES
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
+from chartgen.language.sentences import where_line_html
 from chartgen.site.answer_greatest import greatest
 from chartgen.site.answer_tables import (
     Answer,
@@ -192,4 +193,6 @@ def _gap_table(pen: Pen, group: Group, series: Series, rules: tuple[str, ...]) -
         told = language.plain("alt.gaps", first=first, low=low, last=last, high=high)
         shown = in_unit(pen, named(language, GAP_RULES[rules[0]].name), unit)
         figures = chart(pen, speed_bars(pen, known, quantity, quantity), label, told, shown, "lag")
-    return replace(table, label=label, caption=caption, figures=figures)
+    # Driver and reaction have no part in a gap.
+    where = (where_line_html(language, pen.site.edition, series.assumption),)
+    return replace(table, label=label, caption=caption, figures=figures, assumptions=where)

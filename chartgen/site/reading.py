@@ -36,7 +36,7 @@ class ReadRow:
 
 @dataclass(slots=True)
 class ReadTable:
-    """`kind`: the table's class. The first row is the head."""
+    """`kind`: the first of the table’s classes. The first row is the head."""
 
     kind: str
     rows: list[ReadRow] = field(default_factory=list)
@@ -154,7 +154,7 @@ class _Reader(HTMLParser):
 
     def _table_part(self, tag: str, values: dict[str, str]) -> None:
         if tag == "table":
-            self.table = ReadTable(values.get("class", ""))
+            self.table = ReadTable(values.get("class", "").partition(" ")[0])
             self.page.tables.append(self.table)
             self.page.order.append(self.table)
         elif self.table is None:

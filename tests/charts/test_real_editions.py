@@ -83,7 +83,9 @@ def test_every_bar_is_its_rows_and_every_total_within_rounding(name: str) -> Non
         bars = drawn_columns(drawing)
         if drawing.direction == "rtl":
             bars.reverse()
-        for bar, row in zip(bars, case.series[0].to_dict("records"), strict=True):
+        # A row whose friction nobody has measured is a gap, in the drawing too.
+        known = [row for row in case.series[0].to_dict("records") if row["reason"] != "outside-friction-range"]
+        for bar, row in zip(bars, known, strict=True):
             if not row["stops"]:
                 assert bar.top == 0
                 continue

@@ -3,15 +3,17 @@
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 
 import numpy as np
 import pytest
 from scipy.interpolate import PchipInterpolator
+from scipy.optimize import brentq
 
 from chartgen.motion.friction import friction_at, penn_state, speed_constant
 from chartgen.motion.friction_table import FrictionTable
 from chartgen.motion.stopping import stop
-from tests.motion.reference import brake_force, step_by_step
+from tests.motion.reference import brake_force, by_quadrature, step_by_step
 
 TABLE = FrictionTable(np.array([4.0, 10.0, 18.0, 27.0, 36.0]), np.array([0.72, 0.60, 0.52, 0.47, 0.45]))
 
@@ -49,6 +51,30 @@ def test_a_stop_is_that_of_the_motion(grade: float, limit: float, speed: float) 
     )  # fmt: skip
     assert float(out.stopping_distance_m) == pytest.approx(other["stopping"], rel=1e-7)
     assert float(out.stopping_time_s) == pytest.approx(other["time"], rel=1e-6)
+
+
+def test_a_table_just_above_not_stopping() -> None:
+    """Downgrades on which the least deceleration, somewhere on the way, is 0.1005 m/s²: 1/a is as steep as it comes."""
+    chance, gravity = np.random.default_rng(3), 9.80665
+    for number in range(60):
+        speeds = np.cumsum(chance.uniform(1.0, 12.0, int(chance.integers(2, 7))))
+        values = chance.uniform(0.1, 0.29, len(speeds))
+        table = FrictionTable(speeds, np.sort(values)[::-1] if number % 3 else values)
+        grade, least = 0.0, float(values.min())
+        for _ in range(60):
+            grade = 0.1005 * math.sqrt(1.0 + grade * grade) / gravity - least
+        limit = float(chance.choice([math.inf, 1.4])) * gravity * -grade + 0.2
+        out = stop(speeds[-1], reaction_time_s=0.0, grade=grade, max_deceleration_mps2=limit, tables=(table,), table=0)
+        brake, slope = brake_force(lambda v, t=table: float(t.at(v)), grade=grade, limit=limit)  # type: ignore[misc]
+        across = gravity / math.sqrt(1.0 + grade * grade)
+        knots = [*speeds]
+        for low, high in pairwise(speeds):
+            ends = [float(table.at(v)) * across - limit for v in (low, high)]
+            if math.isfinite(limit) and ends[0] * ends[1] < 0.0:
+                knots.append(brentq(lambda v, t=table, m=limit: float(t.at(v)) * across - m, low, high, xtol=1e-14))  # type: ignore[misc]  # noqa: B023
+        expected = by_quadrature(speeds[-1], brake=brake, slope=slope, knots=tuple(knots))
+        assert bool(out.stops)
+        assert (float(out.stopping_distance_m), float(out.stopping_time_s)) == pytest.approx(expected, rel=1e-11)
 
 
 def test_rows_with_and_without_a_table_keep_their_places() -> None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import gzip
 import os
+import re
 import subprocess
 import sys
 from collections.abc import Iterator
@@ -13,6 +14,7 @@ from pathlib import Path
 from typing import Any
 
 import html5lib
+import numpy as np
 import pytest
 
 from chartgen.language.load import Language
@@ -102,7 +104,8 @@ def test_numbers_on_a_chart_are_labels_of_its_rows(name: str, language: Language
     """Counted with the other reader: each total that a chart prints stands in the tables beneath it."""
     for path, data in made(name).own(language).items():
         page = read_page(data)
-        assert len(page.charts) <= sum(table.kind == "dist" for table in page.tables)
+        tables = sum(table.kind == "dist" for table in page.tables)
+        assert len(page.charts) <= (3 if "answers-greatest" in path else 1) * tables
         for chart in page.charts:
             assert chart.numbers, path
 
@@ -121,7 +124,8 @@ def test_each_row_leads_to_its_inputs(name: str, language: Language) -> None:
         assert cells[0] == language.number(record["printed_speed"])
         assert language.number(record["speed_mps"], 2) in cells
         assert language.number(record["reaction_distance_m"], 2) in cells
-        assert language.number(record["full_deceleration_mps2"], 2) in cells
+        if np.isfinite(record["full_deceleration_mps2"]):
+            assert language.number(record["full_deceleration_mps2"], 2) in cells
 
 
 @EACH
@@ -161,7 +165,15 @@ def test_text_alternatives_state_a_claim_and_its_range(name: str, language: Lang
             told = chart.told.lower()
             openings = ("chart", "graph", "diagram", "siart", "graphique", "gráfic", "رسم", "مخطط")
             assert not told.startswith(openings), path
-            assert any(end in chart.told for end in ends), (path, chart.told)
+            if "answers-greatest" in path:
+                # Its claim is of speeds that are found, not of those that are asked.
+                assert re.search(r"\d", chart.told), (path, chart.told)
+            elif "answers-residual" in path:
+                # Speeds without a figure, for want of a measured friction, are not spoken of.
+                asked = [language.speed(v, it.figures.speed_unit) for v in it.edition.speeds]
+                assert sum(speed in chart.told for speed in asked) >= 2, (path, chart.told)
+            else:
+                assert any(end in chart.told for end in ends), (path, chart.told)
 
 
 @EACH
