@@ -278,14 +278,15 @@ def _steep_down(way: _Fall) -> Pair:
     There 1/a has a pole just above the top speed. With ``z = ln a`` the integrals become
     ``∫ y(z)/(e^z + |s|) dz / k²`` and ``∫ 1/(e^z + |s|) dz / k``, whose nearest singularity is π away.
     """
-    down = -way.slope
-    lowest = way.force / (1.0 + way.growth) - down
-    bottom = np.log(lowest)
-    span = np.log(way.force - down) - bottom
+    down, least = -way.slope, way.force / (1.0 + way.growth)
+    highest = way.force - down
+    span = np.log1p(least * way.growth / (least - down))
     nodes, weights = _rule(_STEEP_POINTS)
-    part = np.exp(bottom[:, None] + span[:, None] * nodes) + down[:, None]
-    share = weights / part
-    sums, moments = share.sum(axis=1), (share * np.log(way.force[:, None] / part)).sum(axis=1)
+    before = span[:, None] * (nodes - 1.0)
+    share = weights / (highest[:, None] * np.exp(before) + down[:, None])
+    # y = ln(B/(e^z + |s|)), in the form that keeps its digits where it is small.
+    exponent = -np.log1p((highest / way.force)[:, None] * np.expm1(before))
+    sums, moments = share.sum(axis=1), (share * exponent).sum(axis=1)
     scale = span / way.fall
     return moments * scale / way.fall, sums * scale
 

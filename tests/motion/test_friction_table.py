@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from functools import partial
 from itertools import pairwise
 
 import numpy as np
@@ -53,6 +54,10 @@ def test_a_stop_is_that_of_the_motion(grade: float, limit: float, speed: float) 
     assert float(out.stopping_time_s) == pytest.approx(other["time"], rel=1e-6)
 
 
+def _friction(speed: float, table: FrictionTable) -> float:
+    return float(table.at(speed))
+
+
 def test_a_table_just_above_not_stopping() -> None:
     """Downgrades on which the least deceleration, somewhere on the way, is 0.1005 m/s²: 1/a is as steep as it comes."""
     chance, gravity = np.random.default_rng(3), 9.80665
@@ -65,16 +70,18 @@ def test_a_table_just_above_not_stopping() -> None:
             grade = 0.1005 * math.sqrt(1.0 + grade * grade) / gravity - least
         limit = float(chance.choice([math.inf, 1.4])) * gravity * -grade + 0.2
         out = stop(speeds[-1], reaction_time_s=0.0, grade=grade, max_deceleration_mps2=limit, tables=(table,), table=0)
-        brake, slope = brake_force(lambda v, t=table: float(t.at(v)), grade=grade, limit=limit)  # type: ignore[misc]
+        brake, slope = brake_force(partial(_friction, table=table), grade=grade, limit=limit)
         across = gravity / math.sqrt(1.0 + grade * grade)
         knots = [*speeds]
         for low, high in pairwise(speeds):
             ends = [float(table.at(v)) * across - limit for v in (low, high)]
             if math.isfinite(limit) and ends[0] * ends[1] < 0.0:
-                knots.append(brentq(lambda v, t=table, m=limit: float(t.at(v)) * across - m, low, high, xtol=1e-14))  # type: ignore[misc]  # noqa: B023
+                knots.append(brentq(lambda v, t, m: _friction(v, t) - m, low, high, args=(table, limit / across)))
         expected = by_quadrature(speeds[-1], brake=brake, slope=slope, knots=tuple(knots))
         assert bool(out.stops)
-        assert (float(out.stopping_distance_m), float(out.stopping_time_s)) == pytest.approx(expected, rel=1e-11)
+        assert (float(out.stopping_distance_m), float(out.stopping_time_s)) == pytest.approx(
+            expected, rel=1e-11, abs=0.0
+        )
 
 
 def test_rows_with_and_without_a_table_keep_their_places() -> None:
