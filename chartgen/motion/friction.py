@@ -206,19 +206,16 @@ class Brake:
         at_zero, fall, cap = _as_falling(mu, f60, sp_kmh, max_mu)
         across = GRAVITY_MPS2 / np.sqrt(1.0 + grade * grade)
         scale = brake_efficiency * brake_share * across
-        limit = max_deceleration_mps2 * brake_share
-        return cls(
-            at_zero=np.asarray(scale * at_zero),
-            fall_per_mps=fall,
-            cap=limit if np.isinf(cap).all() else np.asarray(np.minimum(scale * cap, limit)),
-            slope=np.asarray(grade * across),
-        )
+        limits = [x for x in (scale * cap, max_deceleration_mps2 * brake_share) if not np.isinf(x).all()]
+        lowest = np.asarray(np.minimum(*limits)) if len(limits) == 2 else (limits or [np.full(1, np.inf)])[0]
+        return cls(at_zero=np.asarray(scale * at_zero), fall_per_mps=fall, cap=lowest, slope=np.asarray(grade * across))
 
     def at(self, speed_mps: FloatArray) -> FloatArray:
         """The brake's part b at a speed in m/s, without the slope."""
-        if not self.fall_per_mps.any():
+        if not self.fall_per_mps.max() > 0.0:
             return np.asarray(np.minimum(self.at_zero, self.cap))
-        return np.asarray(np.minimum(self.at_zero * np.exp(-self.fall_per_mps * speed_mps), self.cap))
+        force = np.exp(-self.fall_per_mps * speed_mps)
+        return np.asarray(np.minimum(self.at_zero * force, self.cap))
 
     def part(self, rows: Rows) -> Brake:
         """The same for some of the rows; a quantity that is one for all rows stays one."""

@@ -100,7 +100,7 @@ def build_up(speed_mps: FloatArray, *, build_up_s: FloatArray, brake: Brake) -> 
         rest = _time_to_rest(speed_mps, force=force, build_up_s=build_up_s, slope=slope)
         time = np.where(end <= 0.0, np.minimum(rest, time), time)
         end = np.maximum(end, 0.0)
-    rise = np.where(build_up_s > 0.0, force / np.where(build_up_s > 0.0, build_up_s, 1.0), 0.0)
+    rise = force / _divisor(build_up_s)
     distance = time * (speed_mps - time * (0.5 * slope + rise * time / 6.0))
     top = np.asarray(speed_mps)
     if (slope < 0.0).any():
@@ -129,10 +129,15 @@ def _ramp_speed(speed_mps: FloatArray, *, build_up_s: FloatArray, brake: Brake) 
 
 def _time_to_rest(speed_mps: FloatArray, *, force: FloatArray, build_up_s: FloatArray, slope: FloatArray) -> FloatArray:
     """The positive root of the speed in the build-up, each sign of the slope in the form that loses no digits."""
-    root = np.sqrt(slope * slope + 2.0 * force * speed_mps / np.where(build_up_s > 0.0, build_up_s, 1.0))
+    root = np.sqrt(slope * slope + 2.0 * force * speed_mps / _divisor(build_up_s))
     uphill = 2.0 * speed_mps / np.where(slope + root > 0.0, slope + root, 1.0)
     downhill = (root - slope) * build_up_s / force
     return np.where(slope >= 0.0, uphill, downhill)
+
+
+def _divisor(build_up_s: FloatArray) -> FloatArray:
+    """The time of the build-up to divide by; without one the quotient is multiplied by no time."""
+    return build_up_s if build_up_s.min() > 0.0 else np.where(build_up_s > 0.0, build_up_s, 1.0)
 
 
 def _nothing(speed_mps: FloatArray) -> Phase:

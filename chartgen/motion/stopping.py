@@ -135,7 +135,7 @@ def stop(
         **checked_friction(mu=mu, f60=f60, sp_kmh=sp_kmh, max_mu=max_mu),
     }
     which = checked_tables(tables, table, given)
-    bare = np.isnan(given["mu"]) & np.isnan(given["f60"]) & (which < 0)
+    bare = (which < 0) & np.isnan(given["mu"]) & np.isnan(given["f60"])
     if (bare & np.isinf(given["max_deceleration_mps2"])).any():
         raise ValueError("mu: without friction (mu, or f60 and sp_kmh) max_deceleration_mps2 must be finite")
     if (bare & (given["brake_efficiency"] != 1.0)).any():
@@ -245,7 +245,8 @@ def _write(
     np.add(building.distance_m, full.distance_m, out=out["braking_distance_m"])
     np.add(out["reaction_distance_m"], out["lag_distance_m"], out=out["stopping_distance_m"])
     out["stopping_distance_m"] += out["braking_distance_m"]
-    np.add(reaction_time + lagging.time_s + building.time_s, full.time_s, out=out["stopping_time_s"])
+    # The two short phases first: where they are one value for all rows, that is one pass less.
+    np.add(lagging.time_s + building.time_s + reaction_time, full.time_s, out=out["stopping_time_s"])
     blank = np.flatnonzero(code)
     if blank.size:
         for name in ("braking_distance_m", "stopping_distance_m", "stopping_time_s"):
