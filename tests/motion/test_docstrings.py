@@ -25,7 +25,7 @@ def public_functions() -> Iterator[tuple[ModuleType, FunctionType]]:
 
 
 # Helpers between the files of this floor: checks of arguments, and picking rows. Their docstrings are plain.
-PLAIN = {"checked", "checked_friction", "checked_tables", "some"}
+PLAIN = {"checked", "checked_friction", "checked_tables", "some", "rows_of"}
 CALLED = [f for _, f in public_functions() if f.__name__ not in PLAIN]
 
 
@@ -33,6 +33,7 @@ def test_the_list_is_complete() -> None:
     assert {f.__name__ for f in CALLED} == {
         *("stop", "lag", "build_up", "full_braking", "friction_at", "penn_state", "speed_constant"),
         *("braking_distance_and_time", "dropped_rule_time", "lognormal", "lognormal_percentile"),
+        "course",
         *("residual_speed", "greatest_speed", "greatest_speed_in_gap", "stopping_percentiles"),
         *("square_metric", "square_half_metric", "square_feet"),
         *("sight_metric", "sight_us", "slide_metric", "slide_us", "gap_seconds", "gap_distance_m"),

@@ -40,9 +40,11 @@ def followed(speed: float, place: float, road: str, grade: float) -> float:
     if place <= x:
         return speed
     start = v - slope * LAG
+    # Under a table the build-up rises to the least force at any speed it may pass; this one falls with speed.
+    ramp = brake(start + max(-slope, 0.0) * RISE if road == "table" else start)
     phases = (
         (LAG, lambda t, v: -slope),
-        (RISE, lambda t, v: -slope - brake(start) * t / RISE),
+        (RISE, lambda t, v: -slope - ramp * t / RISE),
         (400.0, lambda t, v: -slope - brake(max(v, 0.0))),
     )
     for duration, law_ in phases:
@@ -57,7 +59,7 @@ def followed(speed: float, place: float, road: str, grade: float) -> float:
         rests.direction = -1.0  # type: ignore[attr-defined]
         run = solve_ivp(
             lambda t, y, law_=law_: [y[1], law_(t, y[1])], (0.0, duration), [x, v], method="DOP853",
-            events=(reached, rests), rtol=1e-12, atol=1e-12, max_step=0.05,
+            events=(reached, rests), rtol=1e-13, atol=1e-13, max_step=0.02,
         )  # fmt: skip
         x, v = run.y[:, -1]
         if run.status == 1:
@@ -72,7 +74,7 @@ def test_residual_speed_is_that_of_the_motion(road: str, grade: float, share: fl
     speed, arguments = 26.0, {"brake_lag_s": LAG, "build_up_s": RISE, "grade": grade, **ROADS[road]}
     whole = float(stop(speed, reaction_time_s=1.0, **arguments).stopping_distance_m)
     found = float(residual_speed(speed, share * whole, reaction_time_s=1.0, **arguments))
-    assert found == pytest.approx(followed(speed, share * whole, road, grade), rel=2e-8)
+    assert found == pytest.approx(followed(speed, share * whole, road, grade), rel=1e-9)
 
 
 @settings(max_examples=200, deadline=None)
@@ -101,6 +103,24 @@ def test_the_rest_of_the_way_is_what_the_residual_speed_still_needs(
     assert rest >= float(full.stopping_distance_m) * (1.0 - 1e-9) - 1e-9
 
 
+HUMP = FrictionTable(np.array([5.0, 15.0, 30.0, 45.0]), np.array([0.3, 0.5, 0.4, 0.6]))
+"""Friction that rises with speed here and there."""
+
+
+@pytest.mark.parametrize("grade", [-0.09, -0.03, 0.0, 0.06])
+@pytest.mark.parametrize("road", [{"tables": (HUMP,), "table": 0}, {"f60": 0.35, "sp_kmh": 60.0, "max_mu": 1.1}])
+def test_it_moves_until_it_has_stopped(road: dict[str, Any], grade: float) -> None:
+    """Just before its place of rest a vehicle is as fast as its last deceleration makes it, and never at rest."""
+    arguments = {"reaction_time_s": 1.0, "brake_lag_s": 0.4, "build_up_s": 0.8, "grade": grade, **road}
+    speeds = np.array([8.0, 14.0, 17.0, 22.0, 28.0])
+    whole = stop(speeds, **arguments).stopping_distance_m
+    last = stop(1e-6, **(arguments | {"reaction_time_s": 0.0, "brake_lag_s": 0.0, "build_up_s": 0.0}))
+    left = 1e-5
+    expected = math.sqrt(2.0 * left * float(last.full_deceleration_mps2))
+    assert residual_speed(speeds, whole - left, **arguments) == pytest.approx(expected, rel=5e-4)
+    assert not residual_speed(speeds, whole, **arguments).any()
+
+
 def test_residual_speed_never_rises_with_the_distance_on_the_level() -> None:
     places = np.linspace(0.0, 120.0, 400)
     found = residual_speed(25.0, places, reaction_time_s=1.0, brake_lag_s=0.4, build_up_s=0.3, mu=0.5)
@@ -114,7 +134,46 @@ def test_a_vehicle_that_never_stops_has_a_speed_too() -> None:
     slope = 9.80665 * 0.12 / math.hypot(1.0, 0.12)
     brakes = 0.05 * 9.80665 / math.hypot(1.0, 0.12)
     found = float(residual_speed(20.0, 20.0 + 100.0, reaction_time_s=1.0, mu=0.05, grade=-0.12))
-    assert found == pytest.approx(math.sqrt(400.0 + 2 * (slope - brakes) * 100.0), rel=1e-6)
+    assert found == pytest.approx(math.sqrt(400.0 + 2 * (slope - brakes) * 100.0), rel=1e-12)
+
+
+NEVER: dict[str, tuple[dict[str, Any], float, float]] = {
+    "faster beyond the cap": ({"f60": 0.10, "sp_kmh": 60.0, "max_mu": 0.11}, -0.12, 13.0),
+    "to an even speed": (
+        {"tables": (FrictionTable(np.array([5.0, 40.0]), np.array([0.05, 0.3])),), "table": 0}, -0.12, 30.0,
+    ),
+    "limit and table": (
+        {"tables": (FrictionTable(np.array([5.0, 20.0, 40.0]), np.array([0.05, 0.3, 0.2])),), "table": 0,
+         "max_deceleration_mps2": 1.6}, -0.12, 38.0,
+    ),
+    "hardly slower": ({"f60": 0.125, "sp_kmh": 4000.0}, -0.12, 20.0),
+}  # fmt: skip
+
+
+@pytest.mark.parametrize("name", NEVER)
+@pytest.mark.parametrize("way", [3.0, 40.0, 700.0])
+def test_what_never_stops_moves_as_the_forces_have_it(name: str, way: float) -> None:
+    road, grade, speed = NEVER[name]
+    arguments = {"reaction_time_s": 0.0, "grade": grade, **road}
+    assert not bool(stop(speed, **arguments).stops)
+    limit = road.get("max_deceleration_mps2", math.inf)
+    law = (
+        road["tables"][0].at
+        if "tables" in road
+        else friction_law(**{k: v for k, v in road.items() if k != "max_deceleration_mps2"})
+    )
+    brake, slope = brake_force(lambda v: float(law(v)), grade=grade, limit=limit)
+    run = solve_ivp(
+        lambda x, w: [-slope - brake(math.sqrt(2.0 * max(w[0], 0.0)))], (0.0, way), [speed * speed / 2.0],
+        method="DOP853", rtol=1e-13, atol=1e-13, max_step=0.25,
+    )  # fmt: skip
+    assert float(residual_speed(speed, way, **arguments)) == pytest.approx(math.sqrt(2.0 * run.y[0, -1]), rel=1e-9)
+
+
+def test_a_vehicle_that_leaves_what_the_source_speaks_of_has_no_speed_there() -> None:
+    """Faster and faster downhill: 20 m/s, then beyond 21 m/s."""
+    found = residual_speed(20.0, [1.0, 30.0, 300.0], reaction_time_s=0.0, mu=0.05, grade=-0.12, valid_to_mps=21.0)
+    assert np.isnan(found).tolist() == [False, False, True]
 
 
 def test_beyond_what_the_source_speaks_of_there_is_no_speed() -> None:
@@ -168,6 +227,29 @@ def test_a_gap_that_grows_at_a_threshold_does_not_excuse_the_speeds_below_it() -
     assert found == pytest.approx(10.0, rel=1e-9)
     above = float(stop(25.0, **arguments).stopping_distance_m)
     assert above < 25.0 * float(gap_seconds(25.0, **rule))  # 25 m/s would do, but 15 m/s does not
+
+
+@pytest.mark.parametrize("threshold", [10.001, 10.05, 10.3, 12.0])
+@pytest.mark.parametrize("top", [11.0, 13.0, 50.0])
+def test_a_narrow_stretch_below_the_threshold_is_seen(threshold: float, top: float) -> None:
+    """2 s less 1 s of reaction at 5 m/s² hold up to 10 m/s; from just above it to the threshold they do not."""
+    rule = {"fixed_s": 2.0, "extra_s": 5.0, "extra_above_mps": threshold}
+    found = greatest_speed_in_gap(rule, top_mps=top, reaction_time_s=1.0, max_deceleration_mps2=5.0)
+    assert float(found.speed_mps) == pytest.approx(10.0, rel=1e-9)
+    assert not found.at_top
+
+
+def test_a_crawl_on_a_downgrade_is_not_asked_about() -> None:
+    """The vehicle rolls in the lag whatever its speed: near rest no gap in seconds holds that."""
+    arguments = {"reaction_time_s": 1.0, "brake_lag_s": 0.4, "max_deceleration_mps2": 5.0, "grade": -0.09}
+    assert float(stop(0.01, **arguments).stopping_distance_m) > 0.01 * 2.5
+    found = greatest_speed_in_gap({"fixed_s": 2.5}, top_mps=50.0, **arguments)
+    speed = float(found.speed_mps)
+    assert speed > 5.0
+    assert float(stop(speed, **arguments).stopping_distance_m) <= 2.5 * speed
+    assert float(stop(speed * (1 + 1e-9), **arguments).stopping_distance_m) > 2.5 * speed
+    some = np.linspace(1.0 / 3.6, speed, 2000)
+    assert (stop(some, **arguments).stopping_distance_m <= 2.5 * some * (1 + 1e-12)).all()
 
 
 @pytest.mark.parametrize("top", [0.0, -1.0, 201.0, math.nan])
