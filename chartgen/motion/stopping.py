@@ -16,7 +16,7 @@ from numpy.typing import ArrayLike, NDArray
 from chartgen.motion.braking import Braking, full_braking
 from chartgen.motion.friction import Brake, checked_friction, checked_tables, some
 from chartgen.motion.friction_table import FrictionTable, TableBrake, braking_distance_and_time
-from chartgen.motion.limits import GRAVITY_MPS2, LEAST_DECELERATION_MPS2, BoolArray, FloatArray, checked
+from chartgen.motion.limits import GRAVITY_MPS2, LEAST_DECELERATION_MPS2, RANGES, BoolArray, FloatArray, checked
 from chartgen.motion.phases import Phase, build_up, lag
 
 REASONS: tuple[str, ...] = ("", "too-little-friction", "never-at-rest", "outside-friction-range")
@@ -265,7 +265,7 @@ def _one_table(
         cap=share * given["max_deceleration_mps2"], slope=GRAVITY_MPS2 * grade * run,
     )  # fmt: skip
     lagging = lag(speed, lag_s=given["brake_lag_s"], slope_mps2=brake.slope)
-    ramp = _ramp_force(lagging.end_speed_mps, rise, brake)
+    ramp = _ramp_force(lagging, rise, brake)
     even = Brake(at_zero=ramp, fall_per_mps=np.zeros(1), cap=np.full(1, np.inf), slope=brake.slope)
     building = build_up(lagging.end_speed_mps, build_up_s=rise, brake=even)
     begin = np.broadcast_to(building.end_speed_mps, speed.shape)
@@ -281,12 +281,16 @@ def _one_table(
     _write(given, (lagging, building), full, top, out, code)
 
 
-def _ramp_force(speed: FloatArray, rise_s: FloatArray, brake: TableBrake) -> FloatArray:
-    """What the build-up rises to: the least force at any speed that it can pass, so that a table that rises with speed
-    makes no stop shorter than it is. On the level, under friction that falls with speed, that is the force at the speed
-    at which it begins."""
-    down = np.maximum(-brake.slope, 0.0)
+def _ramp_force(lagging: Phase, rise_s: FloatArray, brake: TableBrake) -> FloatArray:
+    """What the build-up rises to: the least force at any speed from the fastest of the lag and of the build-up to the
+    slowest of the build-up, so that a table that rises with speed makes no stop shorter than it is. On the level, under
+    friction that falls with speed, that is the force at the speed at which it begins.
+
+    The slowest is reckoned with the whole friction of the table and the steepest grade, and the fastest from the lag
+    on: bounds that followed brakes, slope or lag more closely could make the better of two stops the longer one.
+    """
     last = brake.table.last_mps
-    most = np.minimum(brake.scale * brake.table.mu.max(), brake.cap) + brake.slope
-    slowest = np.clip(speed - np.maximum(most, 0.0) * rise_s, 0.0, last)
-    return brake.least(slowest, np.minimum(speed + down * rise_s, last))
+    most = GRAVITY_MPS2 * (float(brake.table.mu.max()) + RANGES["grade"].high)
+    slowest = lagging.end_speed_mps - most * rise_s
+    fastest = lagging.top_speed_mps + np.maximum(-brake.slope, 0.0) * rise_s
+    return brake.least(np.clip(slowest, 0.0, last), np.minimum(fastest, last))

@@ -11,6 +11,7 @@ import pytest
 from scipy.interpolate import PchipInterpolator
 from scipy.optimize import brentq
 
+from chartgen.motion import stopping
 from chartgen.motion.friction import friction_at, penn_state, speed_constant
 from chartgen.motion.friction_table import FrictionTable
 from chartgen.motion.stopping import stop
@@ -165,3 +166,59 @@ def test_the_speed_constant_follows_from_texture() -> None:
         speed_constant(0.0)
     with pytest.raises(ValueError, match="png"):
         penn_state(50.0, 0.0)
+
+
+RANGES = {
+    "speed_mps": (0.1, 60.0), "reaction_time_s": (0.2, 10.0), "brake_lag_s": (0.0, 3.0), "build_up_s": (0.0, 3.0),
+    "grade": (-0.30, 0.30), "brake_efficiency": (0.05, 1.0), "max_deceleration_mps2": (0.2, 15.0),
+    "brake_share": (0.2, 1.0),
+}  # fmt: skip
+MORE_IS_WORSE = ("speed_mps", "reaction_time_s", "brake_lag_s", "build_up_s")
+
+
+def broken(key: str, curves: int = 12, rows: int = 2_000) -> int:
+    """How many of `curves` times `rows` stops, half of the curves falling and half of any shape, are shorter or quicker
+    for the worse of two values of `key`."""
+    chance, found = np.random.default_rng(8), 0
+    for number in range(curves):
+        speeds = np.cumsum(chance.uniform(0.5, 30.0, int(chance.integers(2, 8))))
+        values = chance.uniform(0.02, 1.5, len(speeds))
+        table = FrictionTable(speeds / speeds[-1] * 90.0, np.sort(values)[::-1] if number % 2 else values)
+        given = {name: chance.uniform(*ends, rows) for name, ends in RANGES.items()}
+        other = chance.uniform(*RANGES[key], rows)
+        ends = (np.minimum(given[key], other), np.maximum(given[key], other))
+        better, worse = ends if key in MORE_IS_WORSE else ends[::-1]
+        outs = [stop(**(given | {key: value}), tables=(table,), table=0) for value in (better, worse)]
+        for name in ("stopping_distance_m", "stopping_time_s"):
+            less, more = (np.where(out.stops, getattr(out, name), np.inf) for out in outs)
+            found += int((more < less * (1.0 - 1e-9)).sum())
+    return found
+
+
+@pytest.mark.parametrize("key", RANGES)
+def test_what_is_worse_is_never_shorter_under_a_table(key: str) -> None:
+    assert broken(key) == 0
+
+
+def test_a_stop_that_is_shorter_for_the_worse_is_found_out(monkeypatch: pytest.MonkeyPatch) -> None:
+    """A planted mutant: the build-up rises to the force at the speed at which it begins, whatever the curve's shape."""
+    monkeypatch.setattr(
+        stopping, "_ramp_force", lambda lagging, rise_s, brake: brake.at(np.minimum(lagging.end_speed_mps, 90.0))
+    )
+    assert broken("brake_lag_s") > 0
+
+
+def test_the_build_up_makes_no_stop_shorter_than_it_is() -> None:
+    """Against steps that take the friction of the moment, under curves of any shape."""
+    chance, longer = np.random.default_rng(21), []
+    for _ in range(60):
+        speeds = np.cumsum(chance.uniform(2.0, 15.0, 5))
+        table = FrictionTable(speeds / speeds[-1] * 60.0, chance.uniform(0.2, 0.9, 5))
+        speed, grade = chance.uniform(3.0, 45.0), chance.uniform(-0.12, 0.12)
+        out = stop(speed, reaction_time_s=0.0, build_up_s=0.8, grade=grade, tables=(table,), table=0)
+        brake, slope = brake_force(partial(_friction, table=table), grade=grade)
+        truth = step_by_step(speed, reaction_time=0.0, lag=0.0, build_up=0.8, brake=brake, slope=slope)
+        if out.stops:
+            longer.append(float(out.stopping_distance_m) / truth["stopping"] - 1.0)
+    assert len(longer) > 50
+    assert min(longer) > -1e-8

@@ -210,8 +210,9 @@ def ramp_force(cases: Grid, speed: Floats) -> Floats:
         if "table" in law:
             here = cases.law == number
             table = int(law["table"])
-            most = np.minimum(cases.scale * max(VALUES[table]), cases.cap) + cases.slope
-            slowest = np.clip(speed - np.maximum(most, 0.0) * cases.rise, 0.0, KNOTS[table][-1])
+            most = STANDARD_GRAVITY * (max(VALUES[table]) + 0.30)
+            slowest = np.clip(speed - most * cases.rise, 0.0, KNOTS[table][-1])
+            fastest = np.maximum(speed, cases.speed) + down * cases.rise
             seen = [brakes(cases, slowest), brakes(cases, np.minimum(fastest, KNOTS[table][-1]))]
             for knot in KNOTS[table]:
                 between = (slowest < knot) & (knot < fastest)
