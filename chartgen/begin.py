@@ -9,6 +9,7 @@ from pathlib import Path
 from chartgen.errors import CommandFault, MachineFault
 from chartgen.resources import starters
 
+_PREVIOUS_LINE = re.compile(r'^previous\s*=\s*"([^"/]+)"[^\n]*\n', re.MULTILINE)
 _ID_LINE = re.compile(r'^(id\s*=\s*)"[^"]*"', re.MULTILINE)
 
 
@@ -28,7 +29,11 @@ def begin(starter: str, folder: Path) -> tuple[Path, ...]:
         shutil.copytree(source, folder, dirs_exist_ok=True)
         edition = folder / "edition.toml"
         text = edition.read_text(encoding="utf-8")
-        edition.write_text(_ID_LINE.sub(rf'\g<1>"{new_id}"', text, count=1), encoding="utf-8")
+        text = _ID_LINE.sub(rf'\g<1>"{new_id}"', text, count=1)
+        # A first issue has none before it.
+        for line in _PREVIOUS_LINE.finditer(text):
+            (folder / line[1]).unlink(missing_ok=True)
+        edition.write_text(_PREVIOUS_LINE.sub("", text), encoding="utf-8")
     except OSError as error:
         problem = f"Writing failed at {error.filename or folder}: {error.strerror}"
         raise MachineFault(problem, "Choose a folder that can be written") from error

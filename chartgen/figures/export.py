@@ -46,8 +46,8 @@ def to_json(figures: Figures) -> str:
 def document(figures: Figures) -> dict[str, Any]:
     """The figures as public data.
 
-    `{"edition", "speed_unit", "distance_unit", "also_unit", "warnings", "sources", "questions", "spread", "rows"}`;
-    what does not exist (a braking distance where the vehicle does not stop) is null. Whole numbers in `printed` are
+    `{"edition", "issue", "issued", "speed_unit", "distance_unit", "also_unit", "warnings", "sources", "questions",
+    "spread", "rows"}`; what does not exist (a braking distance where the vehicle does not stop) is null. Whole numbers in `printed` are
     written as integers. `questions` and `spread`: what the edition asks for, null where it does not. Each row's trace:
     its inputs stand beside its results, `method`, `rounding`, and `sources`, keys into the list
     of sources at the top. What an edition does not ask for has no key: `perception_distance_m` where a source keeps
@@ -56,6 +56,8 @@ def document(figures: Figures) -> dict[str, Any]:
     """
     return {
         "edition": figures.edition_id,
+        "issue": figures.issue,
+        "issued": figures.issued,
         "speed_unit": figures.speed_unit,
         "distance_unit": figures.distance_unit,
         "also_unit": figures.also_unit,

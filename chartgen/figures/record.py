@@ -59,3 +59,6 @@ class Figures:
     spread: Spread | None = None
     answer_distances: Mapping[str, float] = field(default_factory=dict)
     """Distances that greatest speeds are asked for, "sight" and "headlight", as printed."""
+    issue: str = ""
+    """The edition's issue and the day of it (ISO 8601), so that its figures can be told from those of another."""
+    issued: str = ""

@@ -101,6 +101,8 @@ def figures(edition: Edition) -> Figures:
         questions=edition.questions,
         spread=edition.spread,
         answer_distances=answer_distances(edition),
+        issue=edition.issue,
+        issued=edition.issued.isoformat(),
     )
 
 

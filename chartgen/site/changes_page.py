@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import groupby
 from typing import Final
 
 from markupsafe import Markup, escape
@@ -13,7 +14,7 @@ from chartgen.figures.changes import Change, InputChange, RowChange
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.site.edition_site import Site, decimals, named, slope
-from chartgen.site.method import ValueRow, ValueTable
+from chartgen.site.method import Part, ValueRow, ValueTable
 
 _NUMBERS: Final = {
     "reaction": "quantity.reaction", "lag": "quantity.lag", "braking": "quantity.braking",
@@ -38,7 +39,7 @@ class ChangesPage:
     title: str
     intro: str
     statements: tuple[Markup, ...]
-    table: ValueTable | None
+    parts: tuple[Part, ...]
 
 
 def changes_page(site: Site, language: Language) -> ChangesPage:
@@ -53,30 +54,45 @@ def changes_page(site: Site, language: Language) -> ChangesPage:
     ]
     if not changes.rows:
         statements.append(escape(language.t("changes.none")))
-    heads = ("quantity.driver", "quantity.speed", "changes.quantity", "changes.old", "changes.new", "changes.reason")
-    rows = tuple(row for change in changes.rows for row in _rows(site, language, change))
-    title = language.t("page.changes")
+    runs = groupby(changes.rows, key=lambda row: (row.driver, row.vehicle, row.surface, row.grade))
     return ChangesPage(
-        title=title,
+        title=language.t("page.changes"),
         intro=language.plain("changes.intro", issue=issue),
         statements=tuple(statements),
-        table=ValueTable(label=title, heads=tuple(language.t(key) for key in heads), rows=rows) if rows else None,
+        parts=tuple(_part(site, language, number, tuple(run)) for number, (_, run) in enumerate(runs, start=1)),
     )
 
 
-def _rows(site: Site, language: Language, row: RowChange) -> Iterator[ValueRow]:
+def _part(site: Site, language: Language, number: int, rows: tuple[RowChange, ...]) -> Part:
+    """All changes of one driver, vehicle, surface and slope."""
+    heads = ("quantity.speed", "changes.quantity", "changes.old", "changes.new", "changes.reason")
+    title = _whose(site, language, rows[0])
+    once: set[str] = set()  # greatest speeds are the same at every speed: one number, told once
+    made = tuple(ValueRow("", cells) for row in rows for cells in _rows(language, row, once))
+    label = str(title.striptags())
+    table = ValueTable(label=label, heads=tuple(language.t(key) for key in heads), rows=made)
+    return Part(id=f"changes-{number}", title=title, table=table)
+
+
+def _rows(language: Language, row: RowChange, once: set[str]) -> Iterator[tuple[Markup, ...]]:
+    places = decimals([row.speed])
+    speed = isolate(f"{language.number(row.speed, places)}\u00a0{language.unit(row.speed_unit)}")
     if row.kind != "changed":
         said = escape(language.t("changes.added" if row.kind == "added" else "changes.removed"))
         totals = [change for change in row.changes if change.name == "stopping" and not change.also]
         for change in totals or row.changes[:1]:
-            yield ValueRow("", (*_head(site, language, row), *_cells(language, change), said))
+            yield (speed, *_cells(language, change), said)
         return
     for change in row.changes:
-        yield ValueRow("", (*_head(site, language, row), *_cells(language, change), _reason(language, change)))
+        if change.name.startswith("greatest_"):
+            if change.key in once:
+                continue
+            once.add(change.key)
+        yield (speed, *_cells(language, change), _reason(language, change))
 
 
-def _head(site: Site, language: Language, row: RowChange) -> tuple[Markup, Markup]:
-    """Whose row it is, and its speed. A row of the issue before may name what this edition no longer has."""
+def _whose(site: Site, language: Language, row: RowChange) -> Markup:
+    """Driver, vehicle, surface and slope. A row of the issue before may name what this edition no longer has."""
     edition = site.edition
     names = []
     for id, known in ((row.driver, edition.drivers), (row.vehicle, edition.vehicles), (row.surface, edition.surfaces)):
@@ -84,9 +100,7 @@ def _head(site: Site, language: Language, row: RowChange) -> tuple[Markup, Marku
         names.append(isolate(id) if one is None else named(language, one.name))
     if row.grade:
         names.append(slope(language, row.grade))
-    places = decimals([row.speed])
-    speed = f"{language.number(row.speed, places)}\u00a0{language.unit(row.speed_unit)}"
-    return Markup(" · ").join(names), isolate(speed)
+    return Markup(" · ").join(names)
 
 
 def _cells(language: Language, change: Change) -> tuple[Markup, Markup, Markup]:

@@ -95,7 +95,7 @@ class ValueTable:
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Part:
     id: str
-    title: str
+    title: str | Markup
     paragraphs: tuple[Markup, ...] = ()
     table: ValueTable | None = None
 
