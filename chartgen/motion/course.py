@@ -17,7 +17,7 @@ from chartgen.motion.braking import full_braking
 from chartgen.motion.friction import Brake
 from chartgen.motion.friction_table import TableBrake, braking_distance_and_time
 from chartgen.motion.limits import GRAVITY_MPS2, FloatArray
-from chartgen.motion.phases import _ramp_speed, build_up, lag
+from chartgen.motion.phases import Phase, _ramp_speed, build_up, lag
 from chartgen.motion.stopping import REASONS, _ramp_force, stop
 
 PHASES: tuple[str, ...] = ("reaction", "lag", "build-up", "braking")
@@ -169,15 +169,17 @@ class Forces:
             out[here] = brake.at(fast) if isinstance(brake, Brake) else brake.least(np.zeros(len(fast)), fast)
         return out + self.slope
 
-    def ramp(self, speed: FloatArray, rise_s: FloatArray) -> FloatArray:
+    def ramp(self, lagging: Phase, rise_s: FloatArray) -> FloatArray:
         """What the build-up rises to, by the mechanics' own rules, so that the two cannot differ."""
-        out = np.empty(len(speed))
+        out = np.empty(len(rise_s))
         for here, brake in self.parts:
-            fast, rise = speed[here], rise_s[here]
+            before = Phase(**{
+                name: np.broadcast_to(getattr(lagging, name), out.shape)[here] for name in Phase.__slots__
+            })  # fmt: skip
             if isinstance(brake, Brake):
-                out[here] = brake.at(_ramp_speed(fast, build_up_s=rise, brake=brake))
+                out[here] = brake.at(_ramp_speed(before.end_speed_mps, build_up_s=rise_s[here], brake=brake))
             else:
-                out[here] = _ramp_force(fast, rise, brake)
+                out[here] = _ramp_force(before, rise_s[here], brake)
         return out
 
     def to_rest(self, speed: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -205,7 +207,7 @@ class Motion:
         with np.errstate(all="ignore"):
             lagging = lag(speed, lag_s=lag_s, slope_mps2=slope)
             self.lagged_mps = np.broadcast_to(lagging.end_speed_mps, rows)
-            self.ramp = self.forces.ramp(self.lagged_mps, rise)
+            self.ramp = self.forces.ramp(lagging, rise)
             even = Brake(at_zero=self.ramp, fall_per_mps=np.zeros(1), cap=np.full(1, np.inf), slope=slope)
             building = build_up(self.lagged_mps, build_up_s=rise, brake=even)
             self.after_mps = np.broadcast_to(building.end_speed_mps, rows)

@@ -41,7 +41,7 @@ def integrated(speed: float, times: np.ndarray, road: str, grade: float) -> tupl
     )
     brake, slope = brake_force(lambda v: float(law(v)), grade=grade, limit=own.get("max_deceleration_mps2", math.inf))
     start = speed - slope * LAG
-    ramp = brake(start + max(-slope, 0.0) * RISE if "tables" in own else start)
+    ramp = brake(max(speed, start) + max(-slope, 0.0) * RISE if "tables" in own else start)
     places, speeds = speed * np.minimum(times, REACTION), np.full(len(times), speed)
     x, v, begin = speed * REACTION, speed, REACTION
     for duration, rate in (

@@ -40,8 +40,8 @@ def followed(speed: float, place: float, road: str, grade: float) -> float:
     if place <= x:
         return speed
     start = v - slope * LAG
-    # Under a table the build-up rises to the least force at any speed it may pass; this one falls with speed.
-    ramp = brake(start + max(-slope, 0.0) * RISE if road == "table" else start)
+    # Under a table the build-up rises to the least force at any speed it may pass, lag included; this falls with speed.
+    ramp = brake(max(v, start) + max(-slope, 0.0) * RISE if road == "table" else start)
     phases = (
         (LAG, lambda t, v: -slope),
         (RISE, lambda t, v: -slope - ramp * t / RISE),
