@@ -52,7 +52,22 @@ class Split:
 
 
 def difference(ours: Parts, theirs: Parts) -> Parts:
-    """Ours less theirs, of each printed part; without binary dust: 69.5 - 62.6 is 6.9."""
+    """Ours less theirs, of each printed part; without binary dust: 69.5 - 62.6 is 6.9.
+
+    Formula: ``ours - theirs``, part by part.
+
+    Args:
+        ours: printed parts and total, in the printed unit of both.
+        theirs: those of the published row.
+
+    Returns:
+        The signed differences; None where either does not print it.
+
+    Raises:
+        Nothing.
+
+    Source: none needed; arithmetic.
+    """
     names = (*PARTS, "stopping")
     return Parts(**{name: _less(getattr(ours, name), getattr(theirs, name)) for name in names})
 

@@ -98,6 +98,21 @@ def assumptions(edition: Edition, rows: pd.DataFrame | pd.Series, sheet: pd.Data
 
     `sheet`: every row printed on the same sheet, from which "may be up to N short" is taken; default `rows`.
     Raises ValueError where the rows are none, or do not share driver, vehicle, surface and grade.
+
+    Formula: none; the values are those of the rows, at the lowest and at the highest speed.
+
+    Args:
+        edition: for names, load, method and rounding.
+        rows: one row of the table, or all rows of one driver, vehicle, surface and grade.
+        sheet: every row printed on the same sheet, from which "may be up to N short" is taken; default `rows`.
+
+    Returns:
+        An `Assumption`, in SI.
+
+    Raises:
+        ValueError: the rows are none, or do not share driver, vehicle, surface and grade.
+
+    Source: the edition.
     """
     table = rows if isinstance(rows, pd.DataFrame) else rows.to_frame().T.infer_objects()
     if len(table) == 0 or len(table.drop_duplicates(["driver", "vehicle", "surface", "grade"])) != 1:

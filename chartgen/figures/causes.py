@@ -80,7 +80,21 @@ _KNOWN: Final = frozenset().union(*BEARS.values())
 
 
 def inputs(row: Mapping[str, Any]) -> dict[str, Value]:
-    """The inputs of a row by key, nested ones joined with "."; for an adopted table its numbers are the inputs."""
+    """The inputs of a row by key, nested ones joined with "."; for an adopted table its numbers are the inputs.
+
+    Formula: none; keys that are no result and no name.
+
+    Args:
+        row: one row of the public data.
+
+    Returns:
+        Values by key, nested ones joined with ".".
+
+    Raises:
+        Nothing.
+
+    Source: the public data.
+    """
     out = dict(ABSENT_MEANS)
     for key, value in _leaves("", row):
         head = key.partition(".")[0]
@@ -94,7 +108,21 @@ def inputs(row: Mapping[str, Any]) -> dict[str, Value]:
 
 
 def document_inputs(document: Mapping[str, Any]) -> dict[str, Value]:
-    """Inputs of the edition as a whole: its questions and its sample where the figures carry them, its top speed."""
+    """Inputs of the edition as a whole: its questions and its sample where the figures carry them, its top speed.
+
+    Formula: ``fastest_speed = max(printed speed)``; the rest as it stands.
+
+    Args:
+        document: the public data of an issue.
+
+    Returns:
+        Values by key.
+
+    Raises:
+        KeyError: a key is missing that every figures JSON has.
+
+    Source: the public data.
+    """
     out: dict[str, Value] = {"fastest_speed": max(row["printed"]["speed"] for row in document["rows"])}
     if isinstance(document.get("questions"), Mapping):
         out |= _leaves("questions.", document["questions"])
@@ -121,6 +149,23 @@ def bears_on(key: str, name: str, *, also: bool, shared: bool, where: str) -> bo
 
     `also`: the number is one in the second unit. `shared`: the parts were adjusted to add up to the total, so what
     bears on one bears on all of them. `where`: the number's own key; a gap under `gaps` has its rule in its key.
+
+    Formula: none; see `BEARS`.
+
+    Args:
+        key: of the input.
+        name: of the printed number.
+        also: True for a number in the second unit.
+        shared: True where the parts were adjusted to add up to the total.
+        where: the number's own key.
+
+    Returns:
+        True where the one bears on the other.
+
+    Raises:
+        Nothing.
+
+    Source: the formulas of `motion` and the rules of `rounding`.
     """
     if key in {"rounding.step", "rounding.also_step"}:
         stepped = name not in _SPEEDS and name != "gap_s"
@@ -137,7 +182,22 @@ def bears_on(key: str, name: str, *, also: bool, shared: bool, where: str) -> bo
 
 
 def own_reference(name: str, document: Mapping[str, Any]) -> tuple[str, str] | None:
-    """The column and id of the row that a number is the difference to, where the figures carry the question."""
+    """The column and id of the row that a number is the difference to, where the figures carry the question.
+
+    Formula: none.
+
+    Args:
+        name: of the printed number.
+        document: the public data of an issue.
+
+    Returns:
+        Column and id, or None.
+
+    Raises:
+        Nothing.
+
+    Source: the public data.
+    """
     asked = document.get("questions")
     column = {"added_by_driver": "driver", "added_by_surface": "surface"}.get(name)
     if column is None or not isinstance(asked, Mapping) or not isinstance(asked.get(column), str):

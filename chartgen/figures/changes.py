@@ -173,7 +173,21 @@ def _match(row: Row, document: Document, same_speeds: bool) -> _Key:
 
 
 def printed_numbers(row: Row) -> dict[str, Value]:
-    """Everything printed of a row, by its key: what stands under a key that begins with `printed`, at any depth."""
+    """Everything printed of a row, by its key: what stands under a key that begins with `printed`, at any depth.
+
+    Formula: none.
+
+    Args:
+        row: one row of the public data.
+
+    Returns:
+        Values by key, nested ones joined with ".".
+
+    Raises:
+        Nothing.
+
+    Source: the public data.
+    """
     return dict(_printed("", row, inside=False))
 
 

@@ -66,7 +66,21 @@ class Comparison:
 
 
 def meaning(edition: Edition) -> Meaning:
-    """What the edition's totals mean: design values of the sight methods, else stops on a road."""
+    """What the edition's totals mean: design values of the sight methods, else stops on a road.
+
+    Formula: none.
+
+    Args:
+        edition: for its method.
+
+    Returns:
+        "sight-design" or "stopping".
+
+    Raises:
+        Nothing.
+
+    Source: the kinds of table in the library.
+    """
     return "sight-design" if edition.method in SIGHT else "stopping"
 
 

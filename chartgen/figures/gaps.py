@@ -48,6 +48,20 @@ def gaps_by_rule(columns: Columns, edition: Edition) -> Columns:
     """The gap columns of each rule that the edition's questions name: `"gap_s gap/two-seconds"` and so on.
 
     As `gaps`, once a rule; the rule's key stands behind the column's name.
+
+    Formula: see `motion.gap.gap_seconds`.
+
+    Args:
+        columns: the inputs of the table, SI, one length.
+        edition: for its questions, units and steps.
+
+    Returns:
+        The four gap columns a rule.
+
+    Raises:
+        KeyError: a rule is not in the catalogue (the front door has looked).
+
+    Source: each rule's own, in the catalogue.
     """
     out: Columns = {}
     for key in edition.questions.gaps:
@@ -57,7 +71,23 @@ def gaps_by_rule(columns: Columns, edition: Edition) -> Columns:
 
 
 def rule_arguments(rule: GapRule, columns: Columns, rows: npt.NDArray[Any]) -> dict[str, Any]:
-    """The rule as `motion.gap.gap_seconds` takes it, for the rows picked by `rows`."""
+    """The rule as `motion.gap.gap_seconds` takes it, for the rows picked by `rows`.
+
+    Formula: none; wet, snow and ice take the factors of the rule, snow that of ice.
+
+    Args:
+        rule: of the catalogue.
+        columns: the inputs of the table, SI.
+        rows: which of them, as an index of numpy.
+
+    Returns:
+        Arguments by name: s, s/m, m, m/s.
+
+    Raises:
+        Nothing.
+
+    Source: the rule's own.
+    """
     state = columns["state"][rows]
     factors = [rule.wet_factor, rule.ice_factor]
     return {
@@ -71,7 +101,22 @@ def rule_arguments(rule: GapRule, columns: Columns, rows: npt.NDArray[Any]) -> d
 
 
 def gap_known(rule: GapRule, columns: Columns) -> npt.NDArray[np.bool_]:
-    """True for each row whose gap the rule can tell: one by length needs the vehicle's."""
+    """True for each row whose gap the rule can tell: one by length needs the vehicle's.
+
+    Formula: none.
+
+    Args:
+        rule: of the catalogue.
+        columns: the inputs of the table.
+
+    Returns:
+        Truths, one a row.
+
+    Raises:
+        Nothing.
+
+    Source: the rule's own.
+    """
     known = np.full(len(columns["row"]), rule.per_length_s_per_m is None)
     return np.asarray(known | ~np.isnan(columns["length_m"]))
 

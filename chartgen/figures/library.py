@@ -112,6 +112,16 @@ def tables() -> tuple[PublishedTable, ...]:
     """Every table that comes with the program, in the order of its index.
 
     Raises MachineFault where a file of the library is missing.
+
+    Formula: none.
+
+    Returns:
+        The tables as printed, in their own units.
+
+    Raises:
+        MachineFault: a file of the library is missing.
+
+    Source: each table's own, a key of the bibliography.
     """
     try:
         index = json.loads((FOLDER / "index.json").read_text(encoding="utf-8"))
@@ -123,7 +133,21 @@ def tables() -> tuple[PublishedTable, ...]:
 
 
 def table(id: str) -> PublishedTable:
-    """The table of that id. Raises KeyError where there is none."""
+    """The table of that id. Raises KeyError where there is none.
+
+    Formula: none.
+
+    Args:
+        id: of a table, as in the index.
+
+    Returns:
+        The table as printed.
+
+    Raises:
+        KeyError: there is none of that id; MachineFault: a file is missing.
+
+    Source: the table's own.
+    """
     found = {t.id: t for t in tables()}
     return found[id]
 

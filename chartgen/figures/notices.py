@@ -39,7 +39,22 @@ REASONS: Final[Mapping[str, str]] = {
 
 
 def notices(table: pd.DataFrame, edition: Edition) -> tuple[Notice, ...]:
-    """All notices of an edition's finished table, in a fixed order; equal ones once."""
+    """All notices of an edition's finished table, in a fixed order; equal ones once.
+
+    Formula: none; each notice says what it compares.
+
+    Args:
+        table: the finished table.
+        edition: the same edition.
+
+    Returns:
+        The notices, equal ones once.
+
+    Raises:
+        Nothing.
+
+    Source: requirements of the trade, said at each notice; the Green Book for 4.5 m/s² (from memory).
+    """
     # Plain lists: a few thousand look-ups in them cost less than one merge of frames.
     rows = [_Row(*values) for values in zip(*(table[name].tolist() for name in _Row._fields), strict=True)]
     at = {_key(row): row for row in rows}
@@ -237,7 +252,22 @@ def _may_be_short(table: pd.DataFrame, edition: Edition) -> Iterator[Notice]:
 
 def may_be_short(rows: pd.DataFrame, edition: Edition) -> dict[str, float]:
     """How much the printed distances of `rows` may fall short of the exact ones, by printed unit, as a reader is told:
-    up to the next tenth of a step. Units that fall short nowhere are left out. Works for one sheet's rows as well."""
+    up to the next tenth of a step. Units that fall short nowhere are left out. Works for one sheet's rows as well.
+
+    Formula: ``max(exact - printed)``, up to the next tenth of a step.
+
+    Args:
+        rows: of the table.
+        edition: for its units and steps.
+
+    Returns:
+        Amounts by printed unit.
+
+    Raises:
+        Nothing.
+
+    Source: none needed; arithmetic.
+    """
     out: dict[str, float] = {}
     for prefix, unit, step in (
         ("printed", edition.distance_unit, edition.rounding.step),

@@ -55,7 +55,19 @@ def _values(counts: Floats, step: float) -> Floats:
 def nearest(values: npt.ArrayLike, step: float = 1.0) -> Floats:
     """The nearest multiple of `step`, half away from zero. Any shape, any sign; nan stays nan.
 
-    Raises ValueError if the step is not a positive number.
+    Formula: ``step·floor(value/step + 1/2)``, of the amount, with its sign.
+
+    Args:
+        values: any shape, any sign, in any unit.
+        step: more than 0, in the same unit.
+
+    Returns:
+        Multiples of the step; nan stays nan.
+
+    Raises:
+        ValueError: the step is not a positive number.
+
+    Source: half away from zero, as in commerce; common practice.
 
     >>> nearest([14.5, 14.4999, -14.5])
     array([ 15.,  14., -15.])
@@ -66,6 +78,20 @@ def nearest(values: npt.ArrayLike, step: float = 1.0) -> Floats:
 def up(values: npt.ArrayLike, step: float = 1.0) -> Floats:
     """The next multiple of `step` that is not below the value: distances, gaps, residual speeds. nan stays nan.
 
+    Formula: ``step·ceil(value/step)``.
+
+    Args:
+        values: any shape, any sign, in any unit.
+        step: more than 0, in the same unit.
+
+    Returns:
+        Multiples of the step; nan stays nan.
+
+    Raises:
+        ValueError: the step is not a positive number.
+
+    Source: our own rule: no printed distance is shorter than the exact one.
+
     >>> up([14.0, 14.0001, 76.7], 5.0)
     array([15., 15., 80.])
     """
@@ -74,6 +100,20 @@ def up(values: npt.ArrayLike, step: float = 1.0) -> Floats:
 
 def down(values: npt.ArrayLike, step: float = 1.0) -> Floats:
     """The multiple of `step` that is not above the value: greatest safe speeds, speeds of a sight distance.
+
+    Formula: ``step·floor(value/step)``.
+
+    Args:
+        values: any shape, any sign, in any unit.
+        step: more than 0, in the same unit.
+
+    Returns:
+        Multiples of the step; nan stays nan.
+
+    Raises:
+        ValueError: the step is not a positive number.
+
+    Source: our own rule: no printed speed is faster than the exact one.
 
     >>> down([39.2, 40.0])
     array([39., 40.])
@@ -107,7 +147,21 @@ class Printed:
 
 
 def total_rule(rules: Mapping[Part, Rule]) -> Rule:
-    """The rule of a total rounded on its own: that of the parts; where they differ, the longer one, `up`."""
+    """The rule of a total rounded on its own: that of the parts; where they differ, the longer one, `up`.
+
+    Formula: none.
+
+    Args:
+        rules: a rule by part.
+
+    Returns:
+        "up" or "nearest".
+
+    Raises:
+        Nothing.
+
+    Source: our own: where a choice is open, the longer distance.
+    """
     return "up" if "up" in rules.values() else "nearest"
 
 
@@ -123,6 +177,23 @@ def print_parts(
     Totals: `sum-of-parts` adds the printed parts; `on-its-own` rounds the unrounded total (`total_rule`);
     `controlled` rounds the total to the nearest and adjusts the parts with the least distortion so that they add up.
     Raises ValueError for `controlled` with `up`: parts that all go up cannot be adjusted.
+
+    Formula: parts by `up` or `nearest`; the total as said above.
+
+    Args:
+        reaction: unrounded, in the printed unit, at least 0.
+        lag: likewise.
+        braking: likewise; nan where the stop never ends.
+        rounding: the edition's rules.
+        step: in the printed unit, more than 0.
+
+    Returns:
+        `Printed`, in the printed unit.
+
+    Raises:
+        ValueError: `controlled` with `up`, or a step that is not a positive number.
+
+    Source: largest remainders for `controlled` (common practice in apportionment).
     """
     exact = [np.asarray(part, dtype=np.float64) for part in (reaction, lag, braking)]
     q = np.stack([_steps(part, step) for part in exact])
@@ -150,6 +221,20 @@ def shortfall(exact: npt.ArrayLike, printed: npt.ArrayLike) -> float:
     """How much the worst printed figure falls short of the exact one, >= 0, in their unit; nan is passed over.
 
     A difference within 1e-9 of the figure is no shortfall: it counts as exactly printed.
+
+    Formula: ``max(exact - printed, 0)``.
+
+    Args:
+        exact: any shape, any unit.
+        printed: the same shape and unit.
+
+    Returns:
+        The worst, at least 0.
+
+    Raises:
+        Nothing.
+
+    Source: none needed; arithmetic.
     """
     exact_ = np.asarray(exact, dtype=np.float64)
     short = exact_ - np.asarray(printed, dtype=np.float64)
@@ -159,6 +244,20 @@ def shortfall(exact: npt.ArrayLike, printed: npt.ArrayLike) -> float:
 
 def shortfall_printed(short: float, step: float) -> float:
     """A shortfall as a reader is told it: up to the next tenth of a step, so that "up to N" is never an understatement.
+
+    Formula: ``up(short, step/10)``.
+
+    Args:
+        short: at least 0, in the printed unit.
+        step: in the printed unit, more than 0.
+
+    Returns:
+        A multiple of a tenth of the step.
+
+    Raises:
+        ValueError: the step is not a positive number.
+
+    Source: our own rule.
 
     >>> shortfall_printed(0.4321, 1.0)
     0.5

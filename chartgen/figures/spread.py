@@ -86,6 +86,20 @@ def printed_step(error: npt.ArrayLike, step: float) -> float:
     """The step to which percentiles are printed: the edition's, or the first of its 2, 5, 10, 20, 50 … fold that is not
     smaller than the largest sampling error. Reported digits never exceed the sampling error.
 
+    Formula: the least of ``step·{1, 2, 5, 10, 20, 50 …}`` that is at least the largest error.
+
+    Args:
+        error: sampling errors, any shape, in the printed unit; nan is passed over.
+        step: the edition's, in the printed unit.
+
+    Returns:
+        A step in the printed unit.
+
+    Raises:
+        Nothing.
+
+    Source: our own rule.
+
     >>> printed_step([0.02, 0.3], 1.0), printed_step([0.02, 3.0], 1.0)
     (1.0, 5.0)
     """
@@ -124,7 +138,21 @@ def _factor(friction: Friction) -> tuple[float, float]:
 
 
 def reference_friction(friction: Friction) -> float:
-    """The friction that a stated range stands around: the constant, or the curve's value at 60 km/h."""
+    """The friction that a stated range stands around: the constant, or the curve's value at 60 km/h.
+
+    Formula: the constant, ``F(60 km/h)`` with its cap, or the table at 60 km/h (its nearest end beyond).
+
+    Args:
+        friction: a friction with one of the three laws.
+
+    Returns:
+        Friction, without unit.
+
+    Raises:
+        ValueError: it has no law.
+
+    Source: see `motion.friction.friction_at`.
+    """
     if friction.mu is not None:
         return friction.mu
     if friction.table is not None:

@@ -69,7 +69,22 @@ def stops(given: Columns, edition: Edition) -> Columns:
 
 
 def run(given: Columns, edition: Edition) -> Stop:
-    """The method's own function over all rows of `given` (see `stops` for arguments, errors and source)."""
+    """The method's own function over all rows of `given` (see `stops` for arguments, errors and source).
+
+    Formula: that of the edition's method.
+
+    Args:
+        given: the inputs, columns as in `table.COLUMNS`, SI, one length.
+        edition: for its method and frictions.
+
+    Returns:
+        A `Stop`, one element a row.
+
+    Raises:
+        ValueError: as `arguments`, or an input is outside its range.
+
+    Source: the method's.
+    """
     return METHOD_INPUTS[edition.method].function(given["speed_mps"], **arguments(given, edition))
 
 
@@ -77,6 +92,20 @@ def arguments(given: Columns, edition: Edition) -> Arguments:
     """What the edition's method takes beside the speed, from the input columns, by argument name.
 
     Raises ValueError for an input that is stated and that the method cannot use: it would print a figure without it.
+
+    Formula: none.
+
+    Args:
+        given: the input columns, SI.
+        edition: for its method and frictions.
+
+    Returns:
+        Arguments by name, SI.
+
+    Raises:
+        ValueError: an input is stated that the method cannot use.
+
+    Source: the method's.
     """
     method: Method = edition.method
     inputs = METHOD_INPUTS[method]
@@ -107,7 +136,21 @@ def _frictions(given: Columns, edition: Edition) -> Arguments:
 
 
 def friction_tables(surfaces: tuple[Surface, ...]) -> dict[str, FrictionTable]:
-    """The frictions that are tables by speed, by surface id; speeds in m/s."""
+    """The frictions that are tables by speed, by surface id; speeds in m/s.
+
+    Formula: ``m/s = (km/h)/3.6``.
+
+    Args:
+        surfaces: the edition's.
+
+    Returns:
+        Tables by surface id, speeds in m/s.
+
+    Raises:
+        ValueError: a table is none (the front door has looked).
+
+    Source: each surface's own.
+    """
     return {
         s.id: FrictionTable(
             speeds_mps=np.array([kmh for kmh, _ in s.friction.table]) / KMH_PER_MPS,

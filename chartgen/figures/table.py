@@ -73,6 +73,19 @@ def figures(edition: Edition) -> Figures:
 
     A row that does not stop keeps its reaction and lag; its braking, total and time are nan and `reason` says why.
     Where the edition leaves a choice open the longer distance is printed.
+
+    Formula: the edition's method, see `motion.methods.METHOD_INPUTS`.
+
+    Args:
+        edition: from the front door.
+
+    Returns:
+        `Figures`: the table, its notices and its sources.
+
+    Raises:
+        ValueError: an input that the method cannot use (the front door has looked).
+
+    Source: each value's own; they stand in `Figures.sources`.
     """
     columns = _assumptions(edition)
     if edition.adopted is None:
@@ -114,7 +127,25 @@ def select(
     surface: str | Iterable[str] | None = None,
     grade: float | None = None,
 ) -> pd.DataFrame:
-    """The rows with these ids (one, several, or None for any) and this grade, in speed order; may be empty."""
+    """The rows with these ids (one, several, or None for any) and this grade, in speed order; may be empty.
+
+    Formula: none.
+
+    Args:
+        figures: of an edition.
+        driver: one id, several, or None for any.
+        vehicle: likewise.
+        surface: likewise.
+        grade: a fraction, or None for any.
+
+    Returns:
+        The rows in speed order; may be none.
+
+    Raises:
+        Nothing.
+
+    Source: none needed.
+    """
     table = figures.table
     keep = np.ones(len(table), dtype=bool)
     for column, wanted in (("driver", driver), ("vehicle", vehicle), ("surface", surface)):

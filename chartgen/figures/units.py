@@ -21,5 +21,20 @@ MPS_IN: Final = {"mph": 1609.344 / 3600.0, "km/h": 1.0 / 3.6}
 
 
 def from_metres(distance_m: npt.ArrayLike, unit: str) -> Floats:
-    """A distance in m, any shape, as a number of `unit` ("m" or "ft"), unrounded. Raises KeyError for another unit."""
+    """A distance in m, any shape, as a number of `unit` ("m" or "ft"), unrounded. Raises KeyError for another unit.
+
+    Formula: ``distance / metres in the unit``.
+
+    Args:
+        distance_m: metres, any shape.
+        unit: "m" or "ft".
+
+    Returns:
+        A number of the unit, unrounded.
+
+    Raises:
+        KeyError: another unit.
+
+    Source: sources:yard-1959.
+    """
     return np.asarray(distance_m, dtype=np.float64) / METRES_IN[unit]

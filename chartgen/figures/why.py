@@ -38,7 +38,24 @@ class Why:
 
 
 def whys(record: Mapping[str, Any], published: PublishedRow, table: PublishedTable, edition: Edition) -> Iterator[Why]:
-    """What differs between a row of the edition's table and the published row beside it, in a fixed order."""
+    """What differs between a row of the edition's table and the published row beside it, in a fixed order.
+
+    Formula: values differ where they are more than 1e-4 apart, relative.
+
+    Args:
+        record: a row of the edition's table.
+        published: the row beside it.
+        table: its table.
+        edition: the same edition.
+
+    Returns:
+        What differs, in a fixed order.
+
+    Raises:
+        Nothing.
+
+    Source: each table's own, in the library.
+    """
     yield from _mechanics(record, published, table)
     yield from _roundings(table, edition)
     yield from _sum(published, table)

@@ -52,7 +52,8 @@ def friction_at(
         ValueError: an argument is out of its range; more than one form, or half of one, is given for one element; a
             cap without the falling form.
 
-    Source: ASTM E1960 (International Friction Index) and PIARC's experiment of 1992, equation for F(S).
+    Source: ASTM E1960 (International Friction Index) and PIARC's experiment of 1992, equation for F(S)
+    (sources:astm-e1960).
 
     >>> round(float(friction_at(60 / 3.6, f60=0.35, sp_kmh=110.0)), 6)
     0.35
@@ -116,7 +117,7 @@ def speed_constant(texture_mm: float) -> float:
     Raises:
         ValueError: a depth out of its range.
 
-    Source: ASTM E1960, International Friction Index (from memory).
+    Source: ASTM E1960, International Friction Index (sources:astm-e1960-sp, from memory).
 
     >>> round(speed_constant(0.8), 2)
     85.96

@@ -52,7 +52,7 @@ def sight_metric(
         ValueError: an argument is outside its range or not finite; the message names it.
 
     Source: AASHTO, A Policy on Geometric Design of Highways and Streets (4th to 7th ed.), equations for SSD, metric
-    half.
+    half (sources:green-book-level, sources:green-book-grades).
 
     >>> out = sight_metric(100 / 3.6, reaction_time_s=2.5, max_deceleration_mps2=3.4)
     >>> round(float(out.reaction_distance_m), 1), round(float(out.braking_distance_m), 1)
@@ -87,7 +87,7 @@ def sight_us(
         ValueError: an argument is outside its range or not finite; the message names it.
 
     Source: AASHTO, A Policy on Geometric Design of Highways and Streets (4th to 7th ed.), equations for SSD, US
-    customary half.
+    customary half (sources:green-book-level, sources:green-book-grades).
 
     >>> out = sight_us(30 * 0.44704, reaction_time_s=2.5, max_deceleration_mps2=11.2 * 0.3048)
     >>> round(float(out.braking_distance_m) / 0.3048, 1)

@@ -53,8 +53,7 @@ def lognormal(p_low: float, t_low_s: float, p_high: float, t_high_s: float) -> t
     Raises:
         ValueError: shares or times are out of order or out of range.
 
-    Source: the lognormal distribution; R. J. Koppa, Human Factors, chapter 3 of Traffic Flow Theory, 1997, uses it for
-    brake reaction times.
+    Source: the lognormal distribution; used for brake reaction times in sources:koppa-1997.
 
     >>> mu, sigma = lognormal(0.5, 1.1, 0.85, 1.6)
     >>> round(mu, 4), round(sigma, 4)

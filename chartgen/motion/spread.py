@@ -20,6 +20,8 @@ from chartgen.motion.stopping import stop
 
 SHIFTS: Final = 8
 """Independent random shifts of the sequence; their scatter is the sampling error."""
+_SCATTER: Final = 0.9650304561
+"""What the scatter of 8 normal values comes to on average, of their true one: sqrt(2/7)·Γ(4)/Γ(3.5)."""
 _NODES: Final = 129
 """Factors on a friction curve at which a row's distance is worked out."""
 _CHUNK_VALUES: Final = 2_000_000
@@ -33,9 +35,10 @@ class StoppingSpread:
     """Percentiles of the stopping distance: first axis the percentiles, then the rows."""
 
     distance_m: FloatArray
-    """nan where so many of the sampled stops never end that the percentile is among them."""
+    """nan where so many of the sampled stops never end that the percentile is among them, by all the sample or by any
+    of its shifts: then it is not known to end."""
     error_m: FloatArray
-    """Standard error of each percentile, from independent random shifts; at least as large as what was seen."""
+    """Standard error of each percentile, from independent random shifts about the percentile of all; nan with it."""
     endless: FloatArray
     """Share of the sampled stops of each row that never end."""
 
@@ -47,6 +50,7 @@ def stopping_percentiles(
     reaction_sigma: ArrayLike,
     friction_low: ArrayLike,
     friction_high: ArrayLike,
+    reaction_time_s: ArrayLike = np.nan,
     percentiles: Sequence[float] = (0.50, 0.85, 0.95),
     samples: int = 4096,
     seed: int = 1,
@@ -61,9 +65,10 @@ def stopping_percentiles(
     Args:
         speed_mps: m/s, shape (n,).
         reaction_mu: location of ln(t/s), shape (n,) or a number; nan with sigma where the time is fixed.
-        reaction_sigma: scale of ln(t/s), more than 0, or nan for the fixed `reaction_time_s` of the arguments.
+        reaction_sigma: scale of ln(t/s), more than 0, or nan for the fixed `reaction_time_s`.
         friction_low: lowest factor on the friction curve, more than 0.
         friction_high: highest factor, at least `friction_low`; both 1 where friction is fixed.
+        reaction_time_s: the time where it is fixed, s, 0 to 10; elsewhere it is not used and may be nan.
         percentiles: shares between 0 and 1, rising.
         samples: stops sampled a row, a multiple of 8.
         seed: of the random shifts.
@@ -73,7 +78,7 @@ def stopping_percentiles(
         A `StoppingSpread` for the n rows.
 
     Raises:
-        ValueError: as `stopping.stop`; factors, shares or a number of samples out of their range.
+        ValueError: as `stopping.stop`; factors, shares or a number of samples out of their range; mu without sigma; no time where it is fixed.
 
     Source: equation of motion; the sequence is the additive recurrence of the plane with the root of x³ = x + 1, a
     generalised golden ratio (common practice), shifted at random modulo 1 (Cranley and Patterson, SIAM Journal on
@@ -92,7 +97,11 @@ def stopping_percentiles(
     if samples % SHIFTS:
         raise ValueError(f"samples: {samples} is not a multiple of {SHIFTS}")
     rows = len(speed)
-    own = {n: v if n == "tables" else np.broadcast_to(np.asarray(v), (rows,)) for n, v in arguments.items()}
+    time = _times(reaction_time_s, reaction_mu, reaction_sigma)
+    own = {
+        n: v if n == "tables" else np.broadcast_to(np.asarray(v), (rows,))
+        for n, v in {"reaction_time_s": time, **arguments}.items()
+    }
     spread = {
         name: np.broadcast_to(np.asarray(value, dtype=np.float64), (rows,))
         for name, value in (
@@ -112,10 +121,22 @@ def stopping_percentiles(
         out[:, part] = _quantile(np.sort(sample.reshape(samples, -1), axis=0), shares)
         by_shift = np.stack([_quantile(np.sort(one, axis=0), shares) for one in sample])
         with np.errstate(invalid="ignore"):
-            error[:, part] = by_shift.std(axis=0, ddof=1) / np.sqrt(SHIFTS)
-    lost = np.isinf(out)
+            apart = by_shift - out[:, part]
+        error[:, part] = np.sqrt(np.sum(apart * apart, axis=0) / (SHIFTS * (SHIFTS - 1))) / _SCATTER
+    lost = ~np.isfinite(out) | ~np.isfinite(error)
     out[lost], error[lost] = np.nan, np.nan
-    return StoppingSpread(distance_m=out, error_m=np.nan_to_num(error, nan=0.0), endless=endless)
+    return StoppingSpread(distance_m=out, error_m=error, endless=endless)
+
+
+def _times(reaction_time_s: ArrayLike, mu: ArrayLike, sigma: ArrayLike) -> FloatArray:
+    """The fixed times, a stand-in for the mechanics where they are not used."""
+    time, mu, sigma = (np.asarray(x, dtype=np.float64) for x in (reaction_time_s, mu, sigma))
+    if (np.isnan(mu) != np.isnan(sigma)).any() or (sigma <= 0.0).any() or np.isinf(mu).any() or np.isinf(sigma).any():
+        raise ValueError("reaction_mu, reaction_sigma: both are needed, finite and the scale above 0, or both nan")
+    fixed = np.isnan(sigma)
+    if not ((~fixed | ((time >= 0.0) & (time <= RANGES["reaction_time_s"].high))).all()):
+        raise ValueError(f"reaction_time_s: where no lognormal is given it must be {RANGES['reaction_time_s']}")
+    return np.asarray(np.where(fixed, time, 0.0))
 
 
 def _checked(percentiles: Sequence[float], samples: int, low: ArrayLike, high: ArrayLike) -> FloatArray:

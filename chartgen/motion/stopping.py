@@ -112,7 +112,7 @@ def stop(
         ValueError: an argument is outside its range or not finite, friction is given twice or by halves, or nothing
             limits the deceleration; the message names the argument. Also where the shapes do not broadcast.
 
-    Source: equation of motion; friction ASTM E1960 (see `friction.friction_at`).
+    Source: equation of motion; standard gravity of sources:cgpm-1901; friction of sources:astm-e1960.
 
     >>> lorry = {"brake_lag_s": 0.4, "build_up_s": 0.3, "max_deceleration_mps2": 5.0}
     >>> out = stop(50 * 0.44704, reaction_time_s=1.0, grade=-0.09, **lorry)

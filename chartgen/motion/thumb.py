@@ -90,7 +90,7 @@ def square_feet(speed_mps: ArrayLike) -> Stop:
     Raises:
         ValueError: a speed outside its range or not finite.
 
-    Source: school rule in the United Kingdom; the distances in feet of The Highway Code, rule 126.
+    Source: school rule in the United Kingdom; the distances in feet of sources:highway-code-126.
 
     >>> out = square_feet(50 * 0.44704)
     >>> round(float(out.stopping_distance_m) / 0.3048, 9)

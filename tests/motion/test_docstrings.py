@@ -13,6 +13,7 @@ from types import FunctionType, ModuleType
 import pytest
 
 import chartgen.motion
+from chartgen.sources import BIBLIOGRAPHY
 
 MODULES = [importlib.import_module(f"chartgen.motion.{m.name}") for m in pkgutil.iter_modules(chartgen.motion.__path__)]
 
@@ -61,3 +62,10 @@ def test_every_called_function_has_an_example() -> None:
     finder = doctest.DocTestFinder(recurse=False)
     for function in CALLED:
         assert any(test.examples for test in finder.find(function)), function.__name__
+
+
+def test_works_are_cited_from_the_bibliography() -> None:
+    """`sources:KEY` in a docstring is a work of the one bibliography; manuals, norms and studies are cited so."""
+    cited = {key for f in CALLED for key in re.findall(r"sources:([a-z0-9.-]+[a-z0-9])", inspect.getdoc(f) or "")}
+    assert cited <= set(BIBLIOGRAPHY)
+    assert {"green-book-level", "astm-e1960", "koppa-1997", "highway-code-126"} <= cited
