@@ -47,12 +47,12 @@ def document(figures: Figures) -> dict[str, Any]:
     """The figures as public data.
 
     `{"edition", "issue", "issued", "speed_unit", "distance_unit", "also_unit", "warnings", "sources", "questions",
-    "spread", "rows"}`; what does not exist (a braking distance where the vehicle does not stop) is null. Whole numbers in `printed` are
-    written as integers. `questions` and `spread`: what the edition asks for, null where it does not. Each row's trace:
-    its inputs stand beside its results, `method`, `rounding`, and `sources`, keys into the list
-    of sources at the top. What an edition does not ask for has no key: `perception_distance_m` where a source keeps
-    perception apart, `spread` with `[figures.spread]`, `residual_speed_mps`, `greatest_speed_mps`, `added_m` and `gaps`
-    with `[questions]`; what they print stands in `printed` too.
+    "spread", "rows"}`; what does not exist (a braking distance where the vehicle does not stop) is null. Whole numbers
+    in `printed` are written as integers. `questions` and `spread` are what the edition asks for, null where it does
+    not. Each row's trace: its inputs stand beside its results, `method`, `rounding`, and `sources`, keys into the list
+    of sources at the top. What an edition does not ask for has no key in a row: `perception_distance_m` where a source
+    keeps perception apart, `spread` with `[figures.spread]`, `residual_speed_mps`, `greatest_speed_mps`, `added_m` and
+    `gaps` with `[questions]`; what they print stands in `printed` too.
     """
     return {
         "edition": figures.edition_id,
