@@ -67,7 +67,7 @@ def spread(columns: Columns, edition: Edition) -> Columns:
         seed=edition.spread.seed,
         **given,
     )
-    out["spread_error_m"][rows] = made.error_m.max(axis=0)
+    out["spread_error_m"][rows] = np.fmax.reduce(made.error_m, axis=0)
     for place, percent in enumerate(PERCENTILES):
         out[f"stopping_p{percent}_m"][rows] = made.distance_m[place]
     for prefix, unit, step in (

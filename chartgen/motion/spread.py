@@ -35,10 +35,10 @@ class StoppingSpread:
     """Percentiles of the stopping distance: first axis the percentiles, then the rows."""
 
     distance_m: FloatArray
-    """nan where so many of the sampled stops never end that the percentile is among them, by all the sample or by any
-    of its shifts: then it is not known to end."""
+    """nan where so many of the sampled stops never end that the percentile, or one a standard error higher, is among
+    them: then it is not known to end."""
     error_m: FloatArray
-    """Standard error of each percentile, from independent random shifts about the percentile of all; nan with it."""
+    """Standard error of each percentile, from independent random shifts; nan with it."""
     endless: FloatArray
     """Share of the sampled stops of each row that never end."""
 
@@ -78,7 +78,8 @@ def stopping_percentiles(
         A `StoppingSpread` for the n rows.
 
     Raises:
-        ValueError: as `stopping.stop`; factors, shares or a number of samples out of their range; mu without sigma; no time where it is fixed.
+        ValueError: as `stopping.stop`; factors, shares or a number of samples out of their range; mu without
+            sigma; no time where it is fixed.
 
     Source: equation of motion; the sequence is the additive recurrence of the plane with the root of x³ = x + 1, a
     generalised golden ratio (common practice), shifted at random modulo 1 (Cranley and Patterson, SIAM Journal on
@@ -118,11 +119,9 @@ def stopping_percentiles(
         some = {name: value[part] for name, value in spread.items()}
         sample = _sampled(speed[part], here, some, each, seed)
         endless[part] = np.isinf(sample).mean(axis=(0, 1))
-        out[:, part] = _quantile(np.sort(sample.reshape(samples, -1), axis=0), shares)
-        by_shift = np.stack([_quantile(np.sort(one, axis=0), shares) for one in sample])
-        with np.errstate(invalid="ignore"):
-            apart = by_shift - out[:, part]
-        error[:, part] = np.sqrt(np.sum(apart * apart, axis=0) / (SHIFTS * (SHIFTS - 1))) / _SCATTER
+        ordered = np.sort(sample.reshape(samples, -1), axis=0)
+        out[:, part] = _quantile(ordered, shares)
+        error[:, part] = _error(ordered, sample, out[:, part], shares)
     lost = ~np.isfinite(out) | ~np.isfinite(error)
     out[lost], error[lost] = np.nan, np.nan
     return StoppingSpread(distance_m=out, error_m=error, endless=endless)
@@ -218,6 +217,22 @@ def _after_reaction(speed: FloatArray, arguments: dict[str, Any], factor: FloatA
         given["brake_efficiency"] = np.minimum(np.asarray(given.get("brake_efficiency", 1.0)) * factor / top, 1.0)
     made = stop(speed, **given)
     return np.where(made.stops, made.stopping_distance_m, np.inf)
+
+
+def _error(ordered: FloatArray, sample: FloatArray, found: FloatArray, shares: FloatArray) -> FloatArray:
+    """Standard errors of the percentiles found: half of what lies between the percentiles of the shares one standard
+    error below and above, that error being the scatter by shift of the share that does not exceed what was found.
+
+    The scatter of the shifts' own percentiles would be too small where a shift has few samples."""
+    count = len(ordered)
+    seen = np.stack([(sample <= metres).mean(axis=1) for metres in found], axis=1)
+    apart = np.sqrt(np.sum((seen - shares[:, None]) ** 2, axis=0) / (SHIFTS * (SHIFTS - 1))) / _SCATTER
+    apart = np.maximum(apart, 0.5 / count)
+    below = np.floor((shares[:, None] - apart) * count).astype(int) - 1
+    above = np.ceil((shares[:, None] + apart) * count).astype(int) - 1
+    low, high = (np.take_along_axis(ordered, np.clip(place, 0, count - 1), axis=0) for place in (below, above))
+    with np.errstate(invalid="ignore"):
+        return np.asarray(0.5 * (high - low))
 
 
 def _quantile(ordered: FloatArray, shares: FloatArray) -> FloatArray:
