@@ -6,5 +6,7 @@ Must not know: editions, files, units other than SI (but for the printed constan
 languages, rounding for print, drawings. It imports numpy and nothing else of this program.
 
 `stopping` exact mechanics from first principles; `methods` printed formulas of manuals; `gap` following gaps.
+On them stand `course` (one stop over time), `inverse` (which speed?) and `spread` (percentiles); beside them `thumb`
+(rules of thumb) and `reaction` (times from what a group measures).
 Below them `braking` (full braking), `phases` (lag and build-up), `friction` and `limits` (constants, accepted ranges).
 """

@@ -33,6 +33,13 @@ def test_the_reaction_time_lies_in_the_rule(name: str) -> None:
     assert not out.lag_distance_m.any()
 
 
+@pytest.mark.parametrize("name", IMPLIED_REACTION_S)
+def test_nothing_but_the_speed_can_be_used(name: str) -> None:
+    """Every input of first principles, each of which an edition may state, is a fault beside such a rule."""
+    whole, rule = METHOD_INPUTS["first-principles"], METHOD_INPUTS[name]
+    assert [given for given in whole.required | whole.optional if rule.usable(given)] == []
+
+
 def test_the_values_that_lie_in_the_rules() -> None:
     """1.08 s and 0.6818 s; 3.858 and 7.716 m/s² (worked out from the rules)."""
     assert IMPLIED_REACTION_S["square-metric"] == pytest.approx(1.08)
