@@ -10,7 +10,6 @@ from markupsafe import Markup, escape
 from chartgen.charts.rungs import Rung
 from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
 from chartgen.figures.export import asked_greatest
-from chartgen.language.sentences import assumption_line_html
 from chartgen.site.answer_tables import (
     WIDE_MM,
     Answer,
@@ -55,7 +54,7 @@ def greatest(pen: Pen) -> Answer:
         ),
         figures=figures,
         assumptions=tuple(
-            Markup("<b>{}</b> {}").format(name, assumption_line_html(language, site.edition, series.assumption))
+            Markup("<b>{}</b> {}").format(name, series.line(language, site.edition))
             for group, series in every(pen)
             for name in (whose(pen, group, series)[0],)
         ),

@@ -14,7 +14,6 @@ from chartgen.charts.rungs import Rung, rungs
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS
-from chartgen.language.sentences import assumption_line_html
 from chartgen.site.drawings import Figure, inline
 from chartgen.site.edition_site import Group, Record, Series, Site, decimals, named, slope, slope_plain
 
@@ -159,7 +158,7 @@ def by_speed(
             AnswerRow(escape(speed), trace(record), cells)
             for speed, record, cells in zip(_speeds(pen, series), records, zip(*columns, strict=True), strict=True)
         ),
-        assumptions=(assumption_line_html(pen.language, pen.site.edition, series.assumption),),
+        assumptions=(series.line(pen.language, pen.site.edition),),
     )
 
 

@@ -7,13 +7,11 @@ page) and each edge is written from the last point, level and upright edges with
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator
 from functools import lru_cache
 from typing import Final
 
 _DATA: Final = re.compile(r' d="([^"]*)"')
 _ALLOWED: Final = re.compile(r"[MLz0-9 .,\-]*")
-_NUMBER: Final = re.compile(r"-?\d*\.?\d+")
 _SCALE: Final = 100
 
 
@@ -26,27 +24,30 @@ def compact(marks_svg: str) -> str:
 def _path(data: str) -> str:
     if not _ALLOWED.fullmatch(data):
         raise ValueError(f"a path of a drawing has only M, L and z: {data[:60]!r}")
-    return "".join(piece for ring in data.split("z") for piece in _ring(ring))
+    # Numbers apart by spaces alone: plain splitting is the quickest way to them.
+    apart = data.replace("M", " ").replace("L", " ").replace(",", " ").replace("-", " -")
+    return "".join(map(_ring, apart.split("z")))
 
 
-def _ring(ring: str) -> Iterator[str]:
-    numbers = [round(float(n) * _SCALE) for n in _NUMBER.findall(ring)]
+def _ring(ring: str) -> str:
+    numbers = [round(float(n) * _SCALE) for n in ring.split()]
     points = list(zip(numbers[::2], numbers[1::2], strict=True))
     if len(points) > 1 and points[0] == points[-1]:
         points.pop()
     if len(points) < 3:
-        return
+        return ""
     x, y = points[0]
-    yield f"M{_written(x)}{_after(y)}"
+    out = [f"M{_written(x)}{_after(y)}"]
     for nx, ny in points[1:]:
         if ny == y:
-            yield f"h{_written(nx - x)}"
+            out.append(f"h{_written(nx - x)}")
         elif nx == x:
-            yield f"v{_written(ny - y)}"
+            out.append(f"v{_written(ny - y)}")
         else:
-            yield f"l{_written(nx - x)}{_after(ny - y)}"
+            out.append(f"l{_written(nx - x)}{_after(ny - y)}")
         x, y = nx, ny
-    yield "z"
+    out.append("z")
+    return "".join(out)
 
 
 @lru_cache(maxsize=65536)
@@ -58,6 +59,7 @@ def _written(hundredths: int) -> str:
     return ("-" if hundredths < 0 else "") + text
 
 
+@lru_cache(maxsize=65536)
 def _after(hundredths: int) -> str:
     """A number behind another: its sign parts them, else a space."""
     text = _written(hundredths)

@@ -14,7 +14,6 @@ from chartgen.figures.why import Why
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS
-from chartgen.language.sentences import assumption_line_html
 from chartgen.site.answer_tables import AnswerHead, AnswerRow, signed_html
 from chartgen.site.edition_site import Series, Site, colon, decimals, named
 from chartgen.site.tables import deceleration
@@ -125,7 +124,7 @@ def _beside(site: Site, language: Language, series: Series, rows: tuple[Compared
         note=_note(language, rows) if len(split) < len(rows) else "",
         why_title=language.t("compare.why"),
         why=tuple(dict.fromkeys(_why(site, language, w) for row in rows for w in row.why if _shown(w, row, rows))),
-        assumptions=assumption_line_html(language, edition, series.assumption),
+        assumptions=series.line(language, edition),
     )
 
 

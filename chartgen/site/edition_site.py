@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 from markupsafe import Markup, escape
@@ -16,6 +16,7 @@ from chartgen.figures.compare import Comparison
 from chartgen.figures.record import Figures, Notice
 from chartgen.language.bidi import isolated
 from chartgen.language.load import Language
+from chartgen.language.sentences import assumption_line_html
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -45,6 +46,13 @@ class Series:
     frame: pd.DataFrame
     records: tuple[Record, ...]
     assumption: Assumption
+    _lines: dict[str, Markup] = field(default_factory=dict, compare=False, repr=False)
+
+    def line(self, language: Language, edition: Edition) -> Markup:
+        """The assumption line, made once a language: it stands under every table of the series."""
+        if language.tag not in self._lines:
+            self._lines[language.tag] = assumption_line_html(language, edition, self.assumption)
+        return self._lines[language.tag]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -12,7 +12,7 @@ from chartgen.figures.rounding import up
 from chartgen.figures.units import from_metres
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
-from chartgen.language.sentences import REASONS, assumption_line_html, verdict
+from chartgen.language.sentences import REASONS, verdict
 from chartgen.site.edition_site import Group, Record, Series, Site, colon, decimals, named, slope, slope_plain
 
 TIME_STEP_S: Final = 0.1
@@ -87,6 +87,8 @@ def tables(site: Site, language: Language, group: Group) -> tuple[Table, ...]:
 def _columns(site: Site, group: Group) -> Iterator[_Column]:
     unit, also = site.figures.distance_unit, site.figures.also_unit
     yield _Column("printed_reaction", "quantity.reaction", unit)
+    if group.any_positive("printed_perception"):
+        yield _Column("printed_perception", "quantity.perception", unit)
     if group.any_positive("printed_lag"):
         yield _Column("printed_lag", "quantity.lag", unit)
     yield _Column("printed_braking", "quantity.braking", unit, ends=True)
@@ -121,7 +123,7 @@ def _table(site: Site, language: Language, group: Group, series: Series, columns
         heads=heads,
         rows=tuple(_rows(site, language, series, columns, own_reason=len(reasons) > 1)),
         reason=_reason(site, language, reasons.pop()) if len(reasons) == 1 else Markup(""),
-        assumptions=assumption_line_html(language, edition, series.assumption),
+        assumptions=series.line(language, edition),
     )
 
 

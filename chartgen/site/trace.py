@@ -11,7 +11,7 @@ from markupsafe import Markup, escape
 
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
-from chartgen.language.sentences import assumption_line_html, verdict
+from chartgen.language.sentences import verdict
 from chartgen.site.edition_site import Group, Record, Series, Site, decimals, grade_id, named, slope, slope_plain
 from chartgen.site.tables import Head
 
@@ -78,7 +78,7 @@ def _trace(site: Site, language: Language, group: Group, series: Series) -> Trac
         label=" · ".join(
             (*(language.text(x.name) for x in (driver, vehicle, surface)), slope_plain(language, group.grade))
         ),
-        assumptions=assumption_line_html(language, edition, series.assumption),
+        assumptions=series.line(language, edition),
         heads=(
             Head(language.t("quantity.speed"), isolate(language.unit(site.figures.speed_unit)), "printed_speed"),
             *(Head(language.t(word), _unit(language, unit), quantity) for quantity, word, unit in columns),
