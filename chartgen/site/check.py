@@ -8,7 +8,8 @@ from __future__ import annotations
 
 import posixpath
 import re
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
+from functools import lru_cache
 from typing import Any, Final
 from urllib.parse import unquote, urlsplit
 
@@ -16,11 +17,12 @@ import numpy as np
 
 from chartgen.edition.model import Edition
 from chartgen.errors import Finding
-from chartgen.figures.compare import compare
+from chartgen.figures.compare import Comparison, compare
 from chartgen.figures.record import Figures
 from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS, number_style
 from chartgen.language.sentences import caution_sentences, verdict
+from chartgen.output import File
 from chartgen.site.downloads import data_files
 from chartgen.site.edition_site import page_names
 from chartgen.site.frame import CSP
@@ -29,6 +31,7 @@ from chartgen.site.tables import TIME_STEP_S
 
 _SAME: Final = 1e-9
 _ROW_LINK: Final = re.compile(r"method\.html#r(\d+)")
+_PLAIN_NUMBER: Final = re.compile(r"-?\d+(\.\d+)?")
 _ROW_ID: Final = re.compile(r"r(\d+)")
 _FORBIDDEN: Final = frozenset({"script", "style", "iframe", "object", "embed", "form", "base", "audio", "video"})
 _FIGURES: Final = ("printed_reaction", "printed_lag", "printed_braking", "printed_stopping", "printed_speed")
@@ -42,7 +45,9 @@ def check_pages(
     """Everything wrong with the finished files of an edition (`files`: bytes by path); () where all is right."""
     records = records_of(figures)
     pages = {path: read_page(data) for path, data in files.items() if path.endswith(".html")}
-    findings = [*_expected(files, edition, figures, languages), *_data(files, figures, edition)]
+    found = compare(figures, edition) if edition.compare else ()
+    findings = [*_expected(files, edition, figures, languages, found)]
+    findings += _data(files, data_files(figures, edition, found))
     for path, page in pages.items():
         findings += _safe(path, page)
         findings += _links(path, page, files, pages)
@@ -56,11 +61,12 @@ def check_pages(
 
 
 def _expected(
-    files: Mapping[str, bytes], edition: Edition, figures: Figures, languages: tuple[Language, ...]
-) -> Iterator[Finding]:
+    files: Mapping[str, bytes], edition: Edition, figures: Figures, languages: tuple[Language, ...],
+    found: tuple[Comparison, ...],
+) -> Iterator[Finding]:  # fmt: skip
     """The pages that must be there."""
     surfaces, vehicles = set(figures.table["surface"]), set(figures.table["vehicle"])
-    names = list(page_names(edition, compare(figures, edition) if edition.compare else ()))
+    names = list(page_names(edition, found))
     names += [f"surface-{s.id}.html" for s in edition.surfaces if s.id in surfaces]
     names += [f"vehicle-{v.id}.html" for v in edition.vehicles if v.id in vehicles]
     for path in ("index.html", *(f"{language.tag}/{name}" for language in languages for name in names)):
@@ -68,8 +74,8 @@ def _expected(
             yield Finding("site.missing", path, "the file is not there")
 
 
-def _data(files: Mapping[str, bytes], figures: Figures, edition: Edition) -> Iterator[Finding]:
-    for wanted in data_files(figures, edition):
+def _data(files: Mapping[str, bytes], due: Iterable[File]) -> Iterator[Finding]:
+    for wanted in due:
         if wanted.path not in files:
             yield Finding("site.missing", wanted.path, "the file is not there")
         elif files[wanted.path] != wanted.data:
@@ -157,6 +163,7 @@ def row_number(row: ReadRow) -> int | None:
 
 def _table(path: str, table: ReadTable, language: Language, records: Records) -> Iterator[Finding]:
     heads = [cell.quantity for cell in table.rows[0].cells] if table.rows else []
+    none, verdicts = language.t("word.none"), _Verdicts(language)
     for row in table.rows[1:]:
         number = row_number(row)
         if number is None or number not in records:
@@ -167,17 +174,32 @@ def _table(path: str, table: ReadTable, language: Language, records: Records) ->
         for cell in row.cells:
             quantities = heads[column : column + cell.span]
             column += cell.span
-            for wrong in _cell(cell.text.strip(), quantities, record, language, table.kind, never=cell.never):
+            words = (verdicts[str(record["reason"])], none)
+            for wrong in _cell(cell.text.strip(), quantities, record, language, table.kind, words, never=cell.never):
                 yield Finding("site.figure", path, f"row {number}: {wrong}")
         if column != len(heads):
             yield Finding("site.table", path, f"row {number} has {column} columns, its head has {len(heads)}")
 
 
+class _Verdicts(dict[str, str]):
+    """The words in place of a figure by reason, each asked of the language once."""
+
+    def __init__(self, language: Language) -> None:
+        super().__init__()
+        self._language = language
+
+    def __missing__(self, reason: str) -> str:
+        self[reason] = verdict(self._language, reason)
+        return self[reason]
+
+
 def _cell(
-    text: str, quantities: list[str], record: Mapping[str, Any], language: Language, kind: str, *, never: bool
-) -> Iterator[str]:
-    wanted = verdict(language, str(record["reason"]))
-    if never or text in (wanted, language.t("word.none")):
+    text: str, quantities: list[str], record: Mapping[str, Any], language: Language, kind: str,
+    words: tuple[str, str], *, never: bool,
+) -> Iterator[str]:  # fmt: skip
+    """What is wrong with one cell. `words`: what stands in place of a figure, for the row's reason and at all."""
+    wanted = words[0]
+    if never or text in words:
         if never and not text.startswith(wanted):
             yield f"says {text!r} where it must say {wanted!r}"
         for quantity in quantities:
@@ -224,15 +246,17 @@ def read_number(text: str, tag: str) -> float | None:
 
     Where thousands are parted by a space, either no-break space is read: a drawing takes the wide one for the narrow.
     """
+    return _number(text, tag)
+
+
+@lru_cache(maxsize=16384)
+def _number(text: str, tag: str) -> float | None:
     style = number_style(tag)
-    groups = "\u00a0\u202f" if style.group.isspace() else style.group
-    plain = (
-        text.removeprefix("+")
-        .translate(dict.fromkeys(map(ord, groups)))
-        .replace(style.decimal, ".")
-        .replace(MINUS, "-")
-    )
-    return float(plain) if re.fullmatch(r"-?\d+(\.\d+)?", plain) else None
+    plain = text.removeprefix("+")
+    for group in "\u00a0\u202f" if style.group.isspace() else style.group:
+        plain = plain.replace(group, "")
+    plain = plain.replace(style.decimal, ".").replace(MINUS, "-")
+    return float(plain) if _PLAIN_NUMBER.fullmatch(plain) else None
 
 
 def _chart(

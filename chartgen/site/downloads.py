@@ -10,7 +10,7 @@ from markupsafe import Markup, escape
 from chartgen.edition.model import Edition
 from chartgen.figures import changes_text, compare_text
 from chartgen.figures.changes import changes
-from chartgen.figures.compare import compare
+from chartgen.figures.compare import Comparison
 from chartgen.figures.export import document, to_csv, to_json
 from chartgen.figures.record import Figures
 from chartgen.language.html import isolate
@@ -43,11 +43,10 @@ class DownloadsPage:
     licence: Markup
 
 
-def data_files(figures: Figures, edition: Edition) -> Iterator[File]:
+def data_files(figures: Figures, edition: Edition, found: tuple[Comparison, ...]) -> Iterator[File]:
     """All figures with the public names, as CSV and as JSON; the comparison and the changes where there are any."""
     yield File(CSV, to_csv(figures).encode("utf-8"))
     yield File(JSON, to_json(figures).encode("utf-8"))
-    found = compare(figures, edition) if edition.compare else ()
     if found:
         yield File(COMPARED, compare_text.to_csv(found).encode("utf-8"))
     if edition.previous is not None:

@@ -92,7 +92,7 @@ def pages(
     """
     site = _site(edition, figures, languages, sheets, sizes or {})
     drawings = Drawings(site)
-    data = tuple(data_files(figures, edition))
+    data = tuple(data_files(figures, edition, site.comparisons))
     yield File("index.html", choose_page(site))
     for language in languages:
         yield from _language_pages(site, language, drawings, data)
@@ -109,7 +109,7 @@ def sized_pages(
 ) -> Iterator[File]:
     """The downloads pages alone, once the sheets' sizes are known: the same files as `pages` gives with `sizes`."""
     site = _site(edition, figures, languages, sheets, sizes)
-    data = tuple(data_files(figures, edition))
+    data = tuple(data_files(figures, edition, site.comparisons))
     for language in languages:
         yield _downloads(site, language, data)
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass, field
+from functools import lru_cache
 from html import unescape
 from html.parser import HTMLParser
 from typing import Final
@@ -16,6 +17,7 @@ _DOCTYPE: Final = re.compile(r"\s*<!doctype html>", re.IGNORECASE)
 _RAW: Final = re.compile(r"<(?:script|style|textarea|iframe|noscript|xmp|plaintext|!--|!\[)", re.IGNORECASE)
 _DIGIT: Final = re.compile(r"\d")
 _URLS: Final = ("href", "src", "srcset", "action", "data", "poster", "xlink:href")
+_URL_NAMES: Final = frozenset(_URLS)
 
 
 @dataclass(slots=True)
@@ -96,13 +98,19 @@ def _read_plain(reader: _Reader, text: str) -> bool:
         if end:
             reader.handle_endtag(tag)
             continue
-        pairs: list[tuple[str, str | None]] = [
-            (name.lower(), unescape(value) if "&" in value else value) for name, value in _PAIR.findall(attributes)
-        ]
-        (reader.handle_startendtag if closed else reader.handle_starttag)(tag, pairs)
+        reader.begin(tag, _attributes(attributes))
+        if closed:
+            reader.handle_endtag(tag)
     if rest:
         reader.handle_data(rest)
     return True
+
+
+@lru_cache(maxsize=8192)
+def _attributes(source: str) -> dict[str, str]:
+    """The attributes of a tag; many tags have the same, so what comes back is not to be changed."""
+    pairs = _PAIR.findall(source) if source else ()
+    return {name.lower(): unescape(value) if "&" in value else value for name, value in pairs}
 
 
 def _plain_tokens(text: str) -> tuple[list[tuple[str, bool, str, str, bool]], str] | None:
@@ -132,13 +140,18 @@ class _Reader(HTMLParser):
         self.chart: ReadChart | None = None
 
     def handle_starttag(self, tag: str, attrs: list[tuple[str, str | None]]) -> None:
-        values = {name: value or "" for name, value in attrs}
+        self.begin(tag, {name: value or "" for name, value in attrs})
+
+    def begin(self, tag: str, values: dict[str, str]) -> None:
+        """A tag with its attributes, which may be shared with others."""
         page = self.page
         page.elements.add(tag)
-        page.attributes.update(values)
-        if "id" in values:
-            page.ids.append(values["id"])
-        page.links += [(tag, values[name], values) for name in _URLS if name in values]
+        if values:
+            page.attributes.update(values)
+            if "id" in values:
+                page.ids.append(values["id"])
+            if not _URL_NAMES.isdisjoint(values):
+                page.links += [(tag, values[name], values) for name in _URLS if name in values]
         if tag == "html":
             page.lang, page.dir = values.get("lang", ""), values.get("dir", "")
         elif tag == "meta" and values.get("http-equiv") == "Content-Security-Policy":
@@ -190,7 +203,8 @@ class _Reader(HTMLParser):
         self.words.append(data)
         if self.table is None:
             return
-        if any(tag == "caption" for tag, _ in self.open):
+        inside = {tag for tag, _ in self.open}
+        if "caption" in inside:
             self.table.caption += data
-        elif self.table.rows and self.table.rows[-1].cells and any(tag in ("td", "th") for tag, _ in self.open):
+        elif self.table.rows and self.table.rows[-1].cells and not inside.isdisjoint(("td", "th")):
             self.table.rows[-1].cells[-1].text += data
