@@ -19,7 +19,7 @@ from chartgen.edition.adopt import adopted
 from chartgen.edition.find import edition_file, read_text, read_toml
 from chartgen.edition.limits import limits as speed_limits
 from chartgen.edition.methods import ADOPTED, FIRST_PRINCIPLES
-from chartgen.edition.model import Edition, Method
+from chartgen.edition.model import Adopted, Edition, Method
 from chartgen.edition.previous import previous
 from chartgen.edition.reading import TAG_PATTERN, Reading, Row, listed, near
 from chartgen.edition.walk import read_table
@@ -98,6 +98,7 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     limits = speed_limits(reading, root.get("limit", []), speed_unit, head.get("issued"))
     posters = _there(prints.poster(reading, row, made) for row in root.get("poster", []))
     cards = prints.cards(reading, root["cards"], folder, made) if "cards" in root else None
+    _sheets_need_parts(reading, root, table)
     if reading.faults or speed_unit is None or distance_unit is None:
         return None
     settings: Row = root["languages"]
@@ -142,6 +143,18 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
         previous=before,
         compare=figures.get("compare", True),
     )
+
+
+def _sheets_need_parts(reading: Reading, root: Row, table: Adopted | None) -> None:
+    """A table of totals alone goes onto pages and into data, but not onto sheets, which are drawn of parts."""
+    if table is None or all(row.reaction is not None and row.braking is not None for row in table.rows):
+        return
+    for row in (*root.get("poster", []), *([root["cards"]] if "cards" in root else [])):
+        reading.fault(
+            row.path,
+            f"sheets are drawn of reaction and braking, and {table.file} gives totals alone",
+            f"reaction and braking in {table.file}, or leave the sheet out",
+        )
 
 
 def _ids(rows: Sequence[Row]) -> tuple[str, ...]:

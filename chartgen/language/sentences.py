@@ -147,6 +147,9 @@ def _lag(language: Language, assumption: Assumption) -> Fragment:
 
 def _braking(language: Language, edition: Edition, braking: Braking, method: str) -> Fragment:
     limit = {} if braking.limit_mps2 is None else {"deceleration": _deceleration(language, edition, braking.limit_mps2)}
+    if braking.friction is None and not limit:
+        # A rule of thumb: its deceleration lies in its formula.
+        return "assume.deceleration", {"deceleration": _deceleration(language, edition, braking.full_mps2.low)}
     if braking.friction is None:
         return ("assume.deceleration" if method.startswith("sight-") else "assume.limit"), limit
     suffix = "_limit" if limit else ""

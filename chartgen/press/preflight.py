@@ -46,11 +46,13 @@ def _deceleration(language: Language, x: float, figures: Figures) -> str:
 WRITERS: Mapping[str, Writer] = {
     "speed": lambda language, x, figures: language.speed(x, figures.speed_unit),
     "reaction_time_s": lambda language, x, _: language.seconds(x),
+    "perception_s": lambda language, x, _: language.seconds(x),
     "brake_lag_s": lambda language, x, _: language.seconds(x),
     "build_up_s": lambda language, x, _: language.seconds(x),
     "printed_gap_s": lambda language, x, _: language.seconds(x),
     "friction": lambda language, x, _: language.number(x, 2),
     "max_deceleration_mps2": _deceleration,
+    "full_deceleration_mps2": _deceleration,
     "brake_efficiency": lambda language, x, _: language.percent(x),
     "grade": lambda language, x, _: language.percent(abs(x)),
     **{f"printed_{name}": _distance for name in ("reaction", "lag", "braking", "stopping", "gap_distance")},

@@ -6,6 +6,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
+import numpy as np
 from markupsafe import Markup, escape
 
 from chartgen.edition.model import Edition
@@ -91,6 +92,9 @@ def _enter(fragment: Fragment, rows: pd.DataFrame, language: Language, account: 
     for placeholder, value in values.items():
         if placeholder in columns:
             row = rows["row"].iloc[-1 if placeholder in _AT_HIGHEST_SPEED else 0]
-            account.enter(int(row), columns[placeholder], language.tag)
+            column = columns[placeholder]
+            if column == "max_deceleration_mps2" and not np.isfinite(rows[column].iloc[0]):
+                column = "full_deceleration_mps2"  # the one that lies in a rule of thumb
+            account.enter(int(row), column, language.tag)
         else:
             account.fact(value)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
@@ -66,7 +67,10 @@ class Drawings:
         self._palette = palette(site.edition.palette)
 
     def figures(self, language: Language, group: Group) -> tuple[Figure, ...]:
-        """The charts of a group in one language: one for up to three drivers."""
+        """The charts of a group in one language: one for up to three drivers; none of a table of totals alone, since
+        the columns are made of parts."""
+        if not all(math.isfinite(float(r["reaction_distance_m"])) for one in group.series for r in one.records):
+            return ()
         return tuple(self._figure(language, group, index, series) for index, series in enumerate(_threes(group.series)))
 
     def _names(self, series: Sequence[Series]) -> list[Text]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Iterator
 from dataclasses import dataclass
@@ -198,7 +199,9 @@ def _drivers(site: Site, language: Language) -> ValueTable:
         if driver.id not in used:
             continue
         reaction = driver.reaction
-        value = isolate(language.seconds(reaction.time_s))
+        # A table adopted as it stands need not tell a time.
+        told = math.isfinite(reaction.time_s)
+        value = isolate(language.seconds(reaction.time_s)) if told else escape(language.t("word.not_given"))
         if reaction.percentile is not None:
             share = language.percent(int(reaction.percentile[1:]) / 100)
             value = Markup("{}. {}").format(value, language.html("method.lognormal", share=share))
@@ -241,7 +244,7 @@ def friction_text(language: Language, friction: Friction, *, with_range: bool = 
         )
         pieces.append(language.html("method.friction_gradient", formula=GRADIENT, start=start, gradient=gradient))
     if friction.valid_kmh is not None:
-        low, high = (language.speed(x, "km/h") for x in friction.valid_kmh)
+        low, high = (_speed(language, x) for x in friction.valid_kmh)
         pieces.append(language.html("method.friction_valid", low=low, high=high))
     if with_range and friction.mu is None and friction.low is not None and friction.high is not None:
         low, high = (language.number(x, 2) for x in (friction.low, friction.high))
@@ -252,18 +255,23 @@ def friction_text(language: Language, friction: Friction, *, with_range: bool = 
     return Markup(" · ").join(pieces)
 
 
+def _speed(language: Language, kmh: float) -> str:
+    """A speed of a friction law, in km/h as the laws have it; one that was stated in mph to two decimals."""
+    return language.speed(round(kmh, 2), "km/h")
+
+
 def _law(language: Language, friction: Friction) -> Markup:
     if friction.mu is not None:
         return isolate(language.number(friction.mu, 2))
     if friction.table is not None:
         pairs = Markup(", ").join(
-            language.html("method.at_speed", value=language.number(mu, 2), speed=language.speed(kmh, "km/h"))
+            language.html("method.at_speed", value=language.number(mu, 2), speed=_speed(language, kmh))
             for kmh, mu in friction.table
         )
         return language.html("method.friction_table", pairs=pairs)
     if friction.f60 is None or friction.sp_kmh is None:
         return escape(language.t("word.none"))
-    grip, sp = language.number(friction.f60, 2), language.speed(friction.sp_kmh, "km/h")
+    grip, sp = language.number(friction.f60, 2), _speed(language, friction.sp_kmh)
     text = language.html("method.friction_falls", formula=FALLING, grip=f"F60 = {grip}", sp=f"Sp = {sp}")
     if friction.max_mu is not None:
         cap = language.html("method.friction_cap", max=language.number(friction.max_mu, 2))

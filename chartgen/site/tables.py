@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Final
@@ -80,8 +81,18 @@ class _Column:
 
 def tables(site: Site, language: Language, group: Group) -> tuple[Table, ...]:
     """One table a driver; the same columns in all of them."""
-    columns = tuple(_columns(site, group))
+    columns = tuple(c for c in _columns(site, group) if _told(group, c.quantity))
     return tuple(_table(site, language, group, series, columns) for series in group.series)
+
+
+def _told(group: Group, quantity: str) -> bool:
+    """Whether any row has a figure in the column, or has none because it does not stop: an adopted table may leave a
+    whole column out."""
+    return any(
+        not record["stops"] or math.isfinite(float(record[quantity]))
+        for series in group.series
+        for record in series.records
+    )
 
 
 def _columns(site: Site, group: Group) -> Iterator[_Column]:
@@ -149,6 +160,8 @@ def _rows(
 
 def _cell(language: Language, record: Record, column: _Column, places: int) -> Markup:
     value = float(record[column.quantity])
+    if math.isnan(value):
+        return escape(language.t("word.none"))
     if column.unit == "s":
         value = float(up(value, TIME_STEP_S))
     return escape(language.number(value, places))
