@@ -30,6 +30,8 @@ LEAST_BAR_MM: Final = 0.6
 NAME_SHARE: Final = 0.36
 """Names take at most this part of the width, then they go to another line."""
 ROOM_FOR_FIGURE: Final = 1.0
+HEAVIER: Final = 1.06
+"""Pages set the words of a drawing a step heavier than they are measured here, and so wider."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -104,8 +106,8 @@ class _Plan:
 
 def _plan(bars: Sequence[Rung], width: float) -> _Plan:
     room = NAME_SHARE * width
-    lines = tuple(wrap(bar.name, "text", NAME_MM, room) for bar in bars)
-    names = max(width_mm(line, "text", NAME_MM) for block in lines for line in block)
+    lines = tuple(wrap(bar.name, "text", NAME_MM, room / HEAVIER) for bar in bars)
+    names = HEAVIER * max(width_mm(line, "text", NAME_MM) for block in lines for line in block)
     figures = max(
         width_mm(bar.figure, "text-bold", NAME_MM) if bar.words else width_mm(bar.figure, "numeral-bold", FIGURE_MM)
         for bar in bars
