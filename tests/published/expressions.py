@@ -9,12 +9,12 @@ import ast
 import math
 import operator
 from collections.abc import Callable, Mapping
-from statistics import NormalDist
 from typing import Any
 
 import numpy as np
 
 from chartgen.figures.rounding import down, nearest, up
+from chartgen.motion.reaction import lognormal, lognormal_percentile
 from chartgen.motion.stopping import stop
 
 UNITS: Mapping[str, float] = {
@@ -27,10 +27,6 @@ UNITS: Mapping[str, float] = {
 
 def _stop(v: float, t: float = 0.0, a: float = 5.0, lag: float = 0.0, ramp: float = 0.0) -> Any:
     return stop(v, reaction_time_s=t, max_deceleration_mps2=a, brake_lag_s=lag, build_up_s=ramp)
-
-
-def _z(p: float) -> float:
-    return NormalDist().inv_cdf(p / 100.0)
 
 
 # SI throughout: v in m/s, t in s, a in m/s², distances in m.
@@ -46,8 +42,8 @@ FUNCTIONS: Mapping[str, Callable[..., Any]] = {
     "braking": lambda v, a, ramp=0.0: _stop(v, a=a, ramp=ramp).braking_distance_m,
     "stopping": lambda v, t, a: _stop(v, t, a).stopping_distance_m,
     # Lognormals of reaction times: mu and sigma are of ln(t/s); `spread` is the sigma that two percentiles come to.
-    "percentile": lambda mu, sigma, p: math.exp(mu + sigma * _z(p)),
-    "spread": lambda t1, p1, t2, p2: math.log(t2 / t1) / (_z(p2) - _z(p1)),
+    "percentile": lambda mu, sigma, p: lognormal_percentile(mu, sigma, p / 100.0),
+    "spread": lambda t1, p1, t2, p2: lognormal(p1 / 100.0, t1, p2 / 100.0, t2)[1],
 }
 
 _SIGNS: Mapping[type[ast.operator], Callable[[float, float], float]] = {
