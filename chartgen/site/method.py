@@ -20,6 +20,7 @@ from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.sentences import notice_sentence_html
 from chartgen.site.edition_site import Site, answer_ids, colon, named
+from chartgen.site.method_steps import Step, steps
 from chartgen.site.tables import TIME_STEP_S, deceleration, least_deceleration
 from chartgen.site.trace import Trace, traces
 
@@ -27,57 +28,6 @@ GRAVITY_MPS2: Final = 9.80665
 """Standard gravity, exact by definition; a test holds it to the mechanics' own."""
 
 _PLACEHOLDER: Final = re.compile(r"\{[a-z_]+\}")
-
-# The formulas of architecture's mechanics as they are worked out; one-letter symbols, explained below them.
-_BRAKES = Markup(
-    "<var>β</var> = min(<var>η</var> <var>μ</var> <var>g</var> cos <var>θ</var>, <var>A</var>), "
-    "<var>a</var> = <var>β</var> + <var>g</var> sin <var>θ</var>"
-)
-_STEPS: Final[tuple[tuple[str, tuple[Markup, ...]], ...]] = (
-    ("method.step.reaction", (Markup("<var>d</var> = <var>v</var> <var>t</var>"),)),
-    ("method.step.grade", ()),
-    (
-        "method.step.lag",
-        (
-            Markup(
-                "<var>d</var> = <var>v</var> <var>l</var> − <var>g</var> sin <var>θ</var> <var>l</var><sup>2</sup> / 2"
-            ),
-        ),
-    ),
-    (
-        "method.step.build_up",
-        (
-            Markup(
-                "<var>d</var> = <var>v</var> <var>b</var> − <var>g</var> sin <var>θ</var> <var>b</var><sup>2</sup> / 2"
-                " − <var>β</var> <var>b</var><sup>2</sup> / 6"
-            ),
-        ),
-    ),
-    (
-        "method.step.braking",
-        (_BRAKES, Markup("<var>d</var> = <var>v</var><sup>2</sup> / (2 <var>a</var>)")),
-    ),
-    (
-        "method.step.friction",
-        (Markup("<var>d</var> = ∫ <var>v</var> d<var>v</var> / <var>a</var>(<var>v</var>)"),),
-    ),
-)
-# As printed in the manuals; the same text stands beside each method of the mechanics.
-_PRINTED: Final[dict[str, tuple[str, ...]]] = {
-    "sight-metric": ("0.278 V t + 0.039 V² / a", "0.278 V t + V² / (254 ((a / 9.81) ± G))"),
-    "sight-us": ("1.47 V t + 1.075 V² / a", "1.47 V t + V² / (30 ((a / 32.2) ± G))"),
-    "slide-metric": ("0.278 V t + V² / (254 (f ± G))",),
-    "slide-us": ("1.47 V t + V² / (30 (f ± G))",),
-    "square-metric": ("3 V / 10 + (V / 10)²",),
-    "square-half-metric": ("3 V / 10 + (V / 10)² / 2",),
-    "square-feet": ("V + V² / 20",),
-}
-
-
-@dataclass(frozen=True, slots=True)
-class Step:
-    text: str
-    formulas: tuple[Markup, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -134,31 +84,13 @@ def method_page(site: Site, language: Language) -> MethodPage:
         notices=tuple(notice_sentence_html(language, n) for n in site.notices(every)),
         steps_title=language.t("method.steps"),
         method_name=language.html("assume.method", name=language.t(f"method.name.{method}")),
-        steps=tuple(_steps(site, language)),
+        steps=tuple(steps(site, language)),
         gravity=language.html("method.gravity", value=language.deceleration(GRAVITY_MPS2, decimals=5)),
         parts=tuple(_parts(site, language)),
         trace_title=language.t("method.rows"),
         trace_text=language.t("method.rows_text"),
         traces=tuple(traces(site, language)),
     )
-
-
-def _steps(site: Site, language: Language) -> Iterator[Step]:
-    method = site.edition.method
-    if site.edition.adopted is not None:
-        yield Step(language.t("method.adopted_text"), ())
-        return
-    if method in _PRINTED:
-        printed = tuple(escape(formula) for formula in _PRINTED[method])
-        text = language.t("method.printed_formula")
-        if method.startswith("square-"):
-            own = float(site.figures.table["reaction_time_s"].iloc[0])
-            text = language.plain("method.square_text", time=language.seconds(own))
-        yield Step(text, printed)
-        return
-    for key, formulas in _STEPS:
-        yield Step(language.t(key), formulas)
-    yield Step(language.t("method.symbols"), ())
 
 
 def _parts(site: Site, language: Language) -> Iterator[Part]:
