@@ -84,7 +84,7 @@ def press(paths: Sequence[str | Path], build: Path, *, workers: int, progress: P
         printed = print_sheets(sheets, crew, progress)
 
         with output.staging(build, lambda: progress.done(WAITING)) as stage:
-            manifests = write(stage, works, pages(), printed())
+            manifests = write(stage, works, *with_sizes(works, sheets, pages(), printed()))
             progress.step(5, "Checking every number on the finished files", sum(len(s) + 1 for s in sheets))
             check(stage.path, works, sheets, crew, progress)
 
@@ -234,6 +234,23 @@ def print_sheets(
         return [tuple(output.File(sheet.path, next(data)) for sheet in made) for made in sheets]
 
     return printed
+
+
+def with_sizes(
+    works: Sequence[Work],
+    sheets: Sequence[tuple[Sheet, ...]],
+    pages: Sequence[tuple[output.File, ...]],
+    printed: Sequence[tuple[output.File, ...]],
+) -> tuple[list[tuple[output.File, ...]], Sequence[tuple[output.File, ...]]]:
+    """The pages again, with how large each printed sheet is on the pages that offer it, and the sheets as they are."""
+    from chartgen.site.pages import sized_pages
+
+    made = []
+    for work, sheet, files, pdfs in zip(works, sheets, pages, printed, strict=True):
+        sizes = {file.path: len(file.data) for file in pdfs}
+        sized = {f.path: f for f in sized_pages(work.edition, work.figures, work.languages, sheet, sizes, files)}
+        made.append(tuple(sized.get(file.path, file) for file in files))
+    return made, printed
 
 
 def write(

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import posixpath
 import re
+from collections import Counter
 from collections.abc import Iterable, Iterator, Mapping
 from functools import lru_cache
 from typing import Any, Final
@@ -23,7 +24,7 @@ from chartgen.language.load import Language
 from chartgen.language.numbers import MINUS, number_style
 from chartgen.language.sentences import caution_sentences, verdict
 from chartgen.output import File
-from chartgen.site.downloads import data_files
+from chartgen.site.downloads import data_files, size
 from chartgen.site.edition_site import page_names
 from chartgen.site.frame import CSP
 from chartgen.site.reading import ReadChart, ReadPage, ReadRow, ReadTable, read_page
@@ -56,6 +57,8 @@ def check_pages(
             if path.startswith(f"{language.tag}/"):
                 findings += _language(path, page, language, languages)
                 findings += check_numbers(path, page, language, records)
+                if path.endswith("/downloads.html"):
+                    findings += _sizes(path, page, language, files)
         findings += _every_row(pages, language, records)
     return tuple(findings)
 
@@ -66,7 +69,7 @@ def _expected(
 ) -> Iterator[Finding]:  # fmt: skip
     """The pages that must be there."""
     surfaces, vehicles = set(figures.table["surface"]), set(figures.table["vehicle"])
-    names = list(page_names(edition, found))
+    names = list(page_names(edition, bool(found)))
     names += [f"surface-{s.id}.html" for s in edition.surfaces if s.id in surfaces]
     names += [f"vehicle-{v.id}.html" for v in edition.vehicles if v.id in vehicles]
     for path in ("index.html", *(f"{language.tag}/{name}" for language in languages for name in names)):
@@ -108,6 +111,18 @@ def _links(path: str, page: ReadPage, files: Mapping[str, bytes], pages: Mapping
             yield Finding("site.link", path, f"leads to nothing: {address}")
         elif parts.fragment and target in pages and parts.fragment not in pages[target].ids:
             yield Finding("site.link", path, f"leads to no place of that name: {address}")
+
+
+def _sizes(path: str, page: ReadPage, language: Language, files: Mapping[str, bytes]) -> Iterator[Finding]:
+    """How large a file is stands beside each that is offered."""
+    folder = posixpath.dirname(path)
+    offers = {a for element, a, attributes in page.links if element == "a" and "type" in attributes}
+    offered = sorted({posixpath.normpath(posixpath.join(folder, address)) for address in offers})
+    sizes = (size(language, len(files[there])) for there in offered if there in files)
+    due = Counter(read_page(said.encode()).text for said in sizes)
+    for words, count in due.items():
+        if page.text.count(words) < count:
+            yield Finding("site.size", path, f"names the size {words!r} {page.text.count(words)} times, not {count}")
 
 
 def _language(path: str, page: ReadPage, language: Language, languages: tuple[Language, ...]) -> Iterator[Finding]:

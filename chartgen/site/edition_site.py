@@ -88,11 +88,8 @@ class Site:
     groups: tuple[Group, ...]
     comparisons: tuple[Comparison, ...] = ()
     changes: Changes | None = None
-
-    @property
-    def page_names(self) -> tuple[str, ...]:
-        """File names of the pages beside those of surfaces and vehicles."""
-        return page_names(self.edition, self.comparisons)
+    page_names: tuple[str, ...]
+    """File names of the pages beside those of surfaces and vehicles."""
 
     def on_surface(self, surface: str) -> tuple[Group, ...]:
         return tuple(g for g in self.groups if g.surface == surface)
@@ -118,12 +115,15 @@ class Site:
         return tuple(found.values())
 
 
-def page_names(edition: Edition, comparisons: tuple[Comparison, ...]) -> tuple[str, ...]:
-    """The pages that every language of an edition has, beside those of its surfaces and vehicles."""
+def page_names(edition: Edition, compared: bool) -> tuple[str, ...]:
+    """The pages that every language of an edition has, beside those of its surfaces and vehicles.
+
+    `compared`: a published table was found that can stand beside its rows.
+    """
     names = ["index.html"]
     if answer_ids(edition):
         names += ["answers.html", *(f"answers-{id}.html" for id in answer_ids(edition))]
-    if comparisons:
+    if compared:
         names.append("compare.html")
     if edition.previous is not None:
         names.append("changes.html")

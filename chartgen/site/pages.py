@@ -24,9 +24,9 @@ from chartgen.site.catalogue_page import catalogue_page
 from chartgen.site.changes_page import changes_page
 from chartgen.site.choose import choose_page
 from chartgen.site.compare_page import compare_page
-from chartgen.site.downloads import FileItem, data_files, downloads_page, leaflet_items
+from chartgen.site.downloads import COMPARED, FileItem, data_files, downloads_page, leaflet_items
 from chartgen.site.drawings import Drawings
-from chartgen.site.edition_site import Group, Leaflet, Site, groups, named, slope
+from chartgen.site.edition_site import Group, Leaflet, Site, groups, named, page_names, slope
 from chartgen.site.frame import Link, frame
 from chartgen.site.limits import Limits, limits
 from chartgen.site.method import method_page
@@ -106,10 +106,21 @@ def sized_pages(
     languages: tuple[Language, ...],
     sheets: Iterable[Printed],
     sizes: Mapping[str, int],
+    files: Iterable[File],
 ) -> Iterator[File]:
-    """The downloads pages alone, once the sheets' sizes are known: the same files as `pages` gives with `sizes`."""
-    site = _site(edition, figures, languages, sheets, sizes)
-    data = tuple(data_files(figures, edition, site.comparisons))
+    """The downloads pages alone, once the sheets' sizes are known: the same files as `pages` gives with `sizes`.
+
+    `files`: what `pages` gave before; the data files among them are not made a second time.
+    """
+    data = tuple(file for file in files if file.path.startswith("data/"))
+    site = Site(
+        edition=edition,
+        figures=figures,
+        languages=languages,
+        leaflets=tuple(_leaflet(sheet, sizes.get(sheet.path)) for sheet in sheets),
+        groups=(),
+        page_names=page_names(edition, any(file.path == COMPARED for file in data)),
+    )
     for language in languages:
         yield _downloads(site, language, data)
 
@@ -121,14 +132,16 @@ def _site(
     sheets: Iterable[Printed],
     sizes: Mapping[str, int],
 ) -> Site:
+    found = compare(figures, edition) if edition.compare else ()
     return Site(
         edition=edition,
         figures=figures,
         languages=languages,
         leaflets=tuple(_leaflet(sheet, sizes.get(sheet.path)) for sheet in sheets),
         groups=tuple(groups(edition, figures)),
-        comparisons=compare(figures, edition) if edition.compare else (),
+        comparisons=found,
         changes=None if edition.previous is None else changes(edition.previous.figures, document(figures)),
+        page_names=page_names(edition, bool(found)),
     )
 
 

@@ -117,6 +117,10 @@ def test_planted_fault_is_found(old: str, new: str, code: str) -> None:
     assert code in codes(WET, old, new)
 
 
+def test_another_size_is_found() -> None:
+    assert codes("en-GB/downloads.html", r">1\u00a0kB<", ">9\u00a0kB<", regex=True) == {"site.size"}
+
+
 def test_missing_page_and_foreign_data() -> None:
     it = small()
     files = {path: data for path, data in it.files.items() if path != "cy/vehicle-lorry.html"}

@@ -18,6 +18,7 @@ import numpy as np
 import pytest
 
 from chartgen.language.load import Language
+from chartgen.output import File
 from chartgen.site.check import check_pages
 from chartgen.site.reading import read_page
 from tests.site.made import DEMOS, Leaf, made
@@ -222,7 +223,9 @@ def test_sizes_come_with_the_sheets() -> None:
     first = it.languages[0]
     said = tuple((language.tag, "…") for language in it.languages)
     sheet = Leaf("sheets/poster.pdf", first.text(it.edition.title), first.tag, said)
-    again = {f.path: f.data for f in sized_pages(it.edition, it.figures, it.languages, [sheet], {sheet.path: 19})}
+    made_before = [File(path, data) for path, data in it.files.items()]
+    sized = sized_pages(it.edition, it.figures, it.languages, [sheet], {sheet.path: 19}, made_before)
+    again = {f.path: f.data for f in sized}
     assert set(again) == {f"{language.tag}/downloads.html" for language in it.languages}
     assert all(it.files[path] == data for path, data in again.items())
     for data in again.values():
