@@ -91,14 +91,17 @@ def _edition(reading: Reading, raw: dict[str, Any], folder: Path) -> Edition | N
     )
     questions = asked.questions(reading, root.get("questions", Row("questions")), made, method)
     spread = asked.spread(reading, figures.get("spread"), method, drivers, surfaces, made)
+    so_far = len(reading.faults)
     table = adopted(reading, figures, folder, made)
+    table_is_sound = len(reading.faults) == so_far
     if table is not None:
         scales.rounding_is_used(reading, figures, table.distance_unit, distance_unit, also_unit)
     before = previous(reading, head, folder, speed_unit, distance_unit)
     limits = speed_limits(reading, root.get("limit", []), speed_unit, head.get("issued"))
     posters = _there(prints.poster(reading, row, made) for row in root.get("poster", []))
     cards = prints.cards(reading, root["cards"], folder, made) if "cards" in root else None
-    _sheets_need_parts(reading, root, table)
+    if table_is_sound:  # a cell that is wrong is said already, and its lack is no second fault
+        _sheets_need_parts(reading, root, table)
     if reading.faults or speed_unit is None or distance_unit is None:
         return None
     settings: Row = root["languages"]

@@ -11,6 +11,7 @@ from typing import Any
 import pytest
 
 from chartgen.edition.model import AdoptedRow, Edition, Friction, Previous, SpeedLimit
+from tests.edition.conftest import SOUND
 
 Changed = Callable[..., Edition]
 ONE_CASE = [('vehicle = ["car", "lorry"]', 'vehicle = ["car"]'), ('surface = ["dry", "wet"]', 'surface = ["dry"]')]
@@ -20,6 +21,8 @@ BARE = [
     ('friction = { f60 = 0.35, sp = "110 km/h" }\n', ""),
     ('max_deceleration = "5 m/s^2"\nbrake_lag = "0.4 s"\n', ""),
 ]
+# Sheets are drawn of reaction and braking.
+NO_POSTER = (SOUND[SOUND.index("[[poster]]") :], "")
 
 
 def figures(text: str) -> tuple[str, str]:
@@ -74,7 +77,7 @@ def test_windows_line_ends_a_mark_and_quotes_are_csv_too(edition: Changed) -> No
 def test_a_table_in_the_other_units_is_converted(edition: Changed) -> None:
     text = "speed (km/h),stopping (ft)\n32.18688,40\n48.28032,75\n112.65408,315\n"
     rounding = '\n[figures.rounding]\nstep = "1 m"\nrule = "nearest"'
-    made = edition(*ONE_CASE, *BARE, figures(ADOPT + rounding), files={"table.csv": text})
+    made = edition(*ONE_CASE, *BARE, NO_POSTER, figures(ADOPT + rounding), files={"table.csv": text})
     assert made.adopted is not None
     assert made.adopted.distance_unit == "ft"
     assert [(row.speed, row.stopping) for row in made.adopted.rows] == [(20, 40), (30, 75), (70, 315)]
@@ -88,7 +91,7 @@ def test_a_table_may_name_its_rows(edition: Changed) -> None:
         for vehicle in ("lorry", "car") for surface in ("dry", "wet") for grade in (-6, 0) for speed in (70, 20, 30)
     ]  # fmt: skip
     text = "\n".join(["vehicle,surface,grade,speed (mph),stopping (m)", *rows])
-    made = edition(*BARE, case, figures(ADOPT), files={"table.csv": text})
+    made = edition(*BARE, NO_POSTER, case, figures(ADOPT), files={"table.csv": text})
     assert made.adopted is not None
     assert len(made.adopted.rows) == 24
     assert {row.grade for row in made.adopted.rows} == {grade for case in made.cases for grade in case.grades}
