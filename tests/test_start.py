@@ -138,6 +138,18 @@ def test_a_change_of_what_is_pinned_sets_up_again(machine: Machine, changed: str
     assert machine.start().returncode == 3
 
 
+def test_whoever_has_the_packages_of_the_tests_keeps_them(machine: Machine) -> None:
+    """Where what is pinned changes and another command runs first; not without Chromium, which the tests need."""
+    machine.set_up_as("check")
+    (machine.root / "pyproject.toml").write_text("")
+    machine.tool("apt-get", "exit 1")
+    machine.tool("id", "echo 1000")
+    asked = "apt-get install -y --no-install-recommends"
+    assert f"{asked} python3 python3-venv {PANGO} \n" in machine.start().stderr
+    machine.tool("chromium", "")
+    assert f"{asked} python3 python3-venv {PANGO} libatomic1 \n" in machine.start().stderr
+
+
 def test_a_folder_that_was_moved_sets_up_again(machine: Machine, tmp_path: Path) -> None:
     machine.set_up_as("run")
     machine.root = machine.root.rename(tmp_path / "elsewhere")

@@ -2,6 +2,8 @@
 
 Source: the international yard and pound agreement of 1959 (1 ft = 0.3048 m, 1 mile = 1609.344 m); a test holds the
 factors to scipy.constants.
+
+Two constants of the mechanics that pages and sheets say aloud go through here, so that nobody writes them twice.
 """
 
 from __future__ import annotations
@@ -10,6 +12,10 @@ from typing import Final
 
 import numpy as np
 import numpy.typing as npt
+
+from chartgen.motion.limits import GRAVITY_MPS2, LEAST_DECELERATION_MPS2
+
+__all__ = ["GRAVITY_MPS2", "LEAST_DECELERATION_MPS2", "METRES_IN", "MPS_IN", "from_metres"]
 
 Floats = npt.NDArray[np.float64]
 

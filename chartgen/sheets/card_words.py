@@ -10,7 +10,7 @@ from markupsafe import Markup
 
 from chartgen.edition.catalogue import GAP_RULES
 from chartgen.figures.table import select
-from chartgen.figures.units import from_metres
+from chartgen.figures.units import LEAST_DECELERATION_MPS2, from_metres
 from chartgen.language.sentences import REASONS
 from chartgen.sheets import card_plan as plan
 from chartgen.sheets.account import Account
@@ -26,8 +26,6 @@ if TYPE_CHECKING:
 
 SHORT_CAUTION: Final = ("caution.no_guarantee", "caution.law")
 """What the back says where the four sentences, which stand on the front, have no room a second time."""
-LEAST_DECELERATION_MPS2: Final = 0.1
-"""Under it a vehicle counts as one that does not stop."""
 _SIDES: Final = 2
 
 

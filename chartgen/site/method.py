@@ -15,7 +15,7 @@ from chartgen.edition.model import Friction, Source, Vehicle
 from chartgen.figures.notices import may_be_short
 from chartgen.figures.rounding import up
 from chartgen.figures.spread import printed_step
-from chartgen.figures.units import from_metres
+from chartgen.figures.units import GRAVITY_MPS2, from_metres
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.sentences import notice_sentence_html
@@ -23,9 +23,6 @@ from chartgen.site.edition_site import Site, answer_ids, colon, named
 from chartgen.site.method_steps import Step, steps
 from chartgen.site.tables import TIME_STEP_S, deceleration, least_deceleration
 from chartgen.site.trace import Trace, traces
-
-GRAVITY_MPS2: Final = 9.80665
-"""Standard gravity, exact by definition; a test holds it to the mechanics' own."""
 
 _PLACEHOLDER: Final = re.compile(r"\{[a-z_]+\}")
 

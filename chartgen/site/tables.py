@@ -10,15 +10,13 @@ from typing import Final
 from markupsafe import Markup, escape
 
 from chartgen.figures.rounding import up
-from chartgen.figures.units import from_metres
+from chartgen.figures.units import LEAST_DECELERATION_MPS2, from_metres
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.sentences import REASONS, verdict
 from chartgen.site.edition_site import Group, Record, Series, Site, colon, decimals, named, slope, slope_plain
 
 TIME_STEP_S: Final = 0.1
-LEAST_DECELERATION_MPS2: Final = 0.1
-"""Below this a vehicle counts as not stopping; the mechanics hold the same value, and a test compares the two."""
 
 
 @dataclass(frozen=True, slots=True)

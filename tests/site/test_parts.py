@@ -17,8 +17,7 @@ from chartgen.charts.inks import HOUSE, contrast
 from chartgen.edition.model import Driver, Edition, Reaction, Source, Surface, Vehicle
 from chartgen.language.load import languages
 from chartgen.language.numbers import MINUS
-from chartgen.motion.limits import GRAVITY_MPS2, LEAST_DECELERATION_MPS2
-from chartgen.site import assets, method, opening, tables
+from chartgen.site import assets, opening
 from chartgen.site.check import check_pages
 from chartgen.site.compact import compact
 from chartgen.site.reading import read_page
@@ -27,11 +26,6 @@ from tests.site.made import make
 
 MakeEdition = Callable[..., Edition]
 TAGS = ("en-GB", "cy", "en-US", "es-US", "fr", "ar")
-
-
-def test_constants_are_those_of_the_mechanics() -> None:
-    assert tables.LEAST_DECELERATION_MPS2 == LEAST_DECELERATION_MPS2
-    assert method.GRAVITY_MPS2 == GRAVITY_MPS2
 
 
 def test_ice_on_a_downgrade_says_does_not_stop(make_edition: MakeEdition) -> None:
