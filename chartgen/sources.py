@@ -21,6 +21,7 @@ class Work:
 
 
 # ruff: noqa: E501 - one work is one line
+# fmt: off
 BIBLIOGRAPHY: dict[str, Work] = {
     "cgpm-1901": Work("3rd General Conference on Weights and Measures, 1901, declaration on gravity: 9.80665 m/s² exactly", STATUTE, False),
     "yard-1959": Work("International yard and pound agreement, 1959: 1 ft = 0.3048 m, 1 mile = 1609.344 m exactly", STATUTE, False),
@@ -77,6 +78,7 @@ BIBLIOGRAPHY: dict[str, Work] = {
     "france-r313-3": Work("Code de la route (France), article R313-3, dipped beam", STATUTE, True),
     "cdl-manual-2.11": Work("AAMVA, model Commercial Driver License Manual (2005 revision and later), section 2.11, driving at night", STATUTE, False),
 }
+# fmt: on
 
 
 def cite(key: str) -> str:

@@ -103,8 +103,10 @@ def parse_words(tag: str, data: bytes) -> WordList:
         entries[key] = _entry(key, message.id, text, message.auto_comments, message.user_comments)
     header = data.decode("utf-8").split("\n\nmsg", 1)[0].split("\n\n#", 1)[0]
     return WordList(
-        tag=tag, entries=entries,
-        native_reader=_named(header, "X-Native-Reader"), back_translated=_named(header, "X-Back-Translated"),
+        tag=tag,
+        entries=entries,
+        native_reader=_named(header, "X-Native-Reader"),
+        back_translated=_named(header, "X-Back-Translated"),
     )
 
 
@@ -112,10 +114,13 @@ def _entry(key: str, english: str, text: str, context: list[str], remarks: list[
     about = " ".join(context)
     limit = _MAX_CHARS.search(about)
     return Entry(
-        key=key, english=english, text=text,
+        key=key,
+        english=english,
+        text=text,
         context=_MAX_CHARS.sub("", about).rstrip(" ."),
         max_chars=int(limit[1]) if limit else None,
-        doubtful=_remark(remarks, "doubtful:"), term=_remark(remarks, "term:"),
+        doubtful=_remark(remarks, "doubtful:"),
+        term=_remark(remarks, "term:"),
     )
 
 

@@ -19,7 +19,8 @@ def untranslated(edition: Edition, tag: str) -> tuple[str, ...]:
     own = edition.own_words.get(tag, {})
     entries = read_words(tag).entries if tag in available() else {}
     return tuple(
-        key for key, entry in read_words(MASTER).entries.items()
+        key
+        for key, entry in read_words(MASTER).entries.items()
         if key not in own and (key not in entries or not entries[key].text or entries[key].english != entry.english)
     )
 
@@ -51,8 +52,11 @@ def _faults(edition: Edition, position: int, tag: str) -> Iterator[Fault]:
         for key in untranslated(edition, tag):
             english = read_words(MASTER).entries[key].english
             yield Fault(
-                edition.file, place, f'the word "{key}" ("{english}") is not translated',
-                'a translation in the word list or in the edition\'s own words, or status = "draft"', tag,
+                edition.file,
+                place,
+                f'the word "{key}" ("{english}") is not translated',
+                'a translation in the word list or in the edition\'s own words, or status = "draft"',
+                tag,
             )
 
 

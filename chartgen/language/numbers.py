@@ -48,8 +48,11 @@ def number_style(tag: str) -> NumberStyle:
     space = NARROW_NO_BREAK if tag in {"fr", "fr-FR"} else NO_BREAK
     around = locale.percent_formats[None].pattern.replace("%", "")
     return NumberStyle(
-        decimal=symbols["decimal"], group=symbols["group"], min_grouping_digits=_MIN_GROUPING.get(tag, 1),
-        unit_space=space, percent_space=space if around != around.rstrip() else "",
+        decimal=symbols["decimal"],
+        group=symbols["group"],
+        min_grouping_digits=_MIN_GROUPING.get(tag, 1),
+        unit_space=space,
+        percent_space=space if around != around.rstrip() else "",
     )
 
 

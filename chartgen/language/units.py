@@ -21,13 +21,21 @@ from chartgen.language.numbers import babel_locale
 UnitStyle = Literal["si", "locale", "own"]
 
 WORD_KEYS = {
-    "mph": "unit.mph", "km/h": "unit.kmh", "m": "unit.m", "ft": "unit.ft", "s": "unit.s",
-    "m/s²": "unit.mps2", "ft/s²": "unit.ftps2",
+    "mph": "unit.mph",
+    "km/h": "unit.kmh",
+    "m": "unit.m",
+    "ft": "unit.ft",
+    "s": "unit.s",
+    "m/s²": "unit.mps2",
+    "ft/s²": "unit.ftps2",
 }
 _SI = frozenset({"km/h", "m", "s", "m/s²"})
 _CLDR = {
-    "mph": "speed-mile-per-hour", "km/h": "speed-kilometer-per-hour",
-    "m": "length-meter", "ft": "length-foot", "s": "duration-second",
+    "mph": "speed-mile-per-hour",
+    "km/h": "speed-kilometer-per-hour",
+    "m": "length-meter",
+    "ft": "length-foot",
+    "s": "duration-second",
 }
 _PRIMES = ("′", "″", "'", '"')
 _ONE_OF_EACH_PLURAL = (0, 1, 2, 3, 6, 11, 100)

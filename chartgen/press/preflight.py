@@ -61,9 +61,7 @@ WRITERS: Mapping[str, Writer] = {
 """How each quantity of the table is written on a sheet; the number in it is what is looked for."""
 
 
-def check_pdf(
-    data: bytes, sheet: PrintPage, figures: Figures, languages: Sequence[Language]
-) -> tuple[Finding, ...]:
+def check_pdf(data: bytes, sheet: PrintPage, figures: Figures, languages: Sequence[Language]) -> tuple[Finding, ...]:
     """Everything wrong with a finished file, empty when all is well.
 
     Codes: preflight.number-unknown (on the page, not in the table nor among the facts), preflight.number-missing,
@@ -132,9 +130,7 @@ def _texts_within(middles: Iterable[tuple[float, float, str]], box: Box) -> Iter
     return [text for across, down, text in middles if left <= across <= right and top <= down <= bottom]
 
 
-def _sentence_problems(
-    reading: Reading, sheet: PrintPage, by_tag: Mapping[str, Language]
-) -> Iterator[tuple[str, str]]:
+def _sentence_problems(reading: Reading, sheet: PrintPage, by_tag: Mapping[str, Language]) -> Iterator[tuple[str, str]]:
     whole = squeezed("".join(piece.text for piece in reading.pieces))
     words = Counter(word for piece in reading.pieces for word in _words(piece.text))
     for tag, sentence in sheet.sentences:

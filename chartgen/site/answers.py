@@ -55,13 +55,16 @@ def answer_pages(site: Site, language: Language) -> Iterator[tuple[str, AnswersP
     for id, answer in ((None, None), *answers.items()):
         name = f"answers-{id}.html" if id else "answers.html"
         links = (Link(f"answers-{a.id}.html", escape(a.title), a.id == id) for a in answers.values())
-        yield name, AnswersPage(
-            title=answer.title if answer else language.t("page.answers"),
-            intro=language.t("answers.intro"),
-            question_word=language.t("page.answers"),
-            questions=tuple(links),
-            trace_hint=language.t("page.trace_hint"),
-            answer=answer,
+        yield (
+            name,
+            AnswersPage(
+                title=answer.title if answer else language.t("page.answers"),
+                intro=language.t("answers.intro"),
+                question_word=language.t("page.answers"),
+                questions=tuple(links),
+                trace_hint=language.t("page.trace_hint"),
+                answer=answer,
+            ),
         )
 
 

@@ -31,7 +31,6 @@ POSTER: dict[str, Any] = {
 WEB: dict[str, Any] = {**POSTER, "languages": (EN,), "width_mm": 180, "height_mm": 104, "medium": "web"}
 
 
-
 def spread(frame: pd.DataFrame) -> pd.DataFrame:
     """The rows with whiskers, invented: from a fifth under the stopping distance to a quarter over it."""
     shares = {"stopping_p50_m": 0.8, "stopping_p85_m": 1.0, "stopping_p95_m": 1.25}

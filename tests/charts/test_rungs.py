@@ -87,9 +87,7 @@ def test_less_runs_to_the_other_side_with_its_figure_beyond() -> None:
 
 
 def test_long_names_break_and_keep_clear_of_the_bars() -> None:
-    long = replace(
-        BARS[0], name="a long name that nobody can say in one breath, on packed snow, downhill"
-    )
+    long = replace(BARS[0], name="a long name that nobody can say in one breath, on packed snow, downhill")
     drawing = draw(long, *BARS[1:])
     names = [label for label in drawing.labels if label.role == "name"]
     assert len(names) > len(BARS)

@@ -20,9 +20,7 @@ from chartgen.sheets.qr import QUIET_MODULES, qr
 A4 = Paper(name="A4", width_mm=210, height_mm=297)
 LYING = Paper(name="A4 lying", width_mm=297, height_mm=210)
 A6 = Paper(name="A6", width_mm=105, height_mm=148)
-PAPERS = st.builds(
-    lambda w, h: Paper(name="any", width_mm=w, height_mm=h), st.floats(40, 220), st.floats(40, 320)
-)
+PAPERS = st.builds(lambda w, h: Paper(name="any", width_mm=w, height_mm=h), st.floats(40, 220), st.floats(40, 320))
 
 
 @pytest.mark.parametrize(("step", "decimals"), [(1.0, 0), (5.0, 0), (10.0, 0), (0.5, 1), (0.25, 2), (2.5, 1)])
@@ -138,7 +136,9 @@ def test_cut_marks_lie_on_cut_lines_and_inside_the_printable_sheet() -> None:
     assert max(x + width for x, _, width, _ in across) <= 207
 
 
-@pytest.mark.parametrize("address", ["https://two-ways.example/", "https://tarnholt.example/stopping/and/further/down/"])
+@pytest.mark.parametrize(
+    "address", ["https://two-ways.example/", "https://tarnholt.example/stopping/and/further/down/"]
+)
 def test_the_code_is_the_one_of_an_independent_drawing(address: str) -> None:
     # The module matrix is segno's (ISO/IEC 18004); what is ours is the path, so it is painted here and held against it.
     matrix = segno.make(address, error="m", micro=False).matrix
