@@ -8,7 +8,6 @@ from collections.abc import Sequence
 from markupsafe import Markup, escape
 
 from chartgen.charts.rungs import Rung
-from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
 from chartgen.figures.export import asked_greatest
 from chartgen.site.answer_tables import (
     WIDE_MM,
@@ -26,13 +25,14 @@ from chartgen.site.answer_tables import (
 )  # fmt: skip
 from chartgen.site.drawings import Figure
 from chartgen.site.edition_site import Record
+from chartgen.site.tables import condition
 
 
 def greatest(pen: Pen) -> Answer:
     """One row a driver, vehicle, surface and slope; one chart a condition."""
     language, site = pen.language, pen.site
     kinds = asked_greatest(site.edition.questions)
-    names = {kind: _condition(pen, kind) for kind in kinds}
+    names = {kind: condition(site, language, kind) for kind in kinds}
     heads = (
         AnswerHead(Markup(""), Markup(""), ""),
         *(AnswerHead(escape(names[kind]), pen.speed_unit(), f"printed_greatest_{kind}") for kind in kinds),
@@ -64,17 +64,6 @@ def greatest(pen: Pen) -> Answer:
         id="greatest", title=pen.t("answers.greatest_title"), tables=(table,),
         paragraphs=(language.html("answers.greatest_text", top=top),),
     )  # fmt: skip
-
-
-def _condition(pen: Pen, kind: str) -> str:
-    asked, language, unit = pen.site.edition.questions, pen.language, pen.site.figures.distance_unit
-    shown = pen.site.figures.answer_distances
-    if kind == "sight":
-        return language.plain("answers.sight", distance=language.distance(shown["sight"], unit))
-    if kind == "headlight":
-        name = language.text(HEADLIGHTS[asked.headlight or ""].name)
-        return language.plain("answers.headlight", distance=language.distance(shown["headlight"], unit), name=name)
-    return language.plain("answers.in_gap", rule=language.text(GAP_RULES[asked.gaps[0]].name))
 
 
 def _greatest_cell(pen: Pen, record: Record, kind: str) -> str:

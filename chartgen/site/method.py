@@ -61,6 +61,7 @@ class MethodPage:
     parts: tuple[Part, ...]
     trace_title: str
     trace_text: str
+    greatest_title: str
     traces: tuple[Trace, ...]
 
 
@@ -86,6 +87,7 @@ def method_page(site: Site, language: Language) -> MethodPage:
         parts=tuple(_parts(site, language)),
         trace_title=language.t("method.rows"),
         trace_text=language.t("method.rows_text"),
+        greatest_title=language.t("quantity.greatest_speed"),
         traces=tuple(traces(site, language)),
     )
 

@@ -9,6 +9,7 @@ from typing import Final
 
 from markupsafe import Markup, escape
 
+from chartgen.edition.catalogue import GAP_RULES, HEADLIGHTS
 from chartgen.figures.rounding import up
 from chartgen.figures.units import LEAST_DECELERATION_MPS2, from_metres
 from chartgen.language.html import isolate
@@ -174,6 +175,17 @@ def _reason(site: Site, language: Language, reason: str) -> Markup:
 def least_deceleration(site: Site, language: Language) -> str:
     """The deceleration under which a vehicle counts as not stopping, as this edition writes decelerations."""
     return deceleration(site, language, LEAST_DECELERATION_MPS2)
+
+
+def condition(site: Site, language: Language, kind: str) -> str:
+    """What a greatest speed is for: a clear view, a headlight's reach, a following gap (`asked_greatest`)."""
+    asked, unit, shown = site.edition.questions, site.figures.distance_unit, site.figures.answer_distances
+    if kind == "sight":
+        return language.plain("answers.sight", distance=language.distance(shown["sight"], unit))
+    if kind == "headlight":
+        name = language.text(HEADLIGHTS[asked.headlight or ""].name)
+        return language.plain("answers.headlight", distance=language.distance(shown["headlight"], unit), name=name)
+    return language.plain("answers.in_gap", rule=language.text(GAP_RULES[asked.gaps[0]].name))
 
 
 def deceleration(site: Site, language: Language, mps2: float) -> str:

@@ -9,11 +9,12 @@ from typing import Final
 
 from markupsafe import Markup, escape
 
+from chartgen.figures.export import asked_greatest
 from chartgen.language.html import isolate
 from chartgen.language.load import Language
 from chartgen.language.sentences import verdict
-from chartgen.site.edition_site import Group, Record, Series, Site, decimals, grade_id, named, slope, slope_plain
-from chartgen.site.tables import Head
+from chartgen.site.edition_site import Group, Record, Series, Site, colon, decimals, grade_id, named, slope, slope_plain
+from chartgen.site.tables import Head, condition
 
 _PLACES: Final = 2
 
@@ -27,7 +28,12 @@ _COLUMNS: Final = (
     ("braking_distance_m", "quantity.braking", "m"),
     ("stopping_distance_m", "quantity.stopping", "m"),
     ("stopping_time_s", "quantity.stopping_time", "s"),
+    ("stopping_p50_m", "quantity.percentile", "m"),
+    ("stopping_p85_m", "quantity.percentile", "m"),
+    ("stopping_p95_m", "quantity.percentile", "m"),
+    ("residual_speed_mps", "quantity.residual_speed", "m/s"),
 )
+_SHARE: Final = {"stopping_p50_m": 0.50, "stopping_p85_m": 0.85, "stopping_p95_m": 0.95}
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +45,7 @@ class TraceRow:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Trace:
-    """One driver, vehicle, surface and slope."""
+    """One driver, vehicle, surface and slope. `greatest`: what its greatest speeds are before they are rounded down."""
 
     id: str
     title: Markup
@@ -47,6 +53,7 @@ class Trace:
     assumptions: Markup
     heads: tuple[Head, ...]
     rows: tuple[TraceRow, ...]
+    greatest: tuple[Markup, ...]
 
 
 def traces(site: Site, language: Language) -> Iterator[Trace]:
@@ -81,7 +88,7 @@ def _trace(site: Site, language: Language, group: Group, series: Series) -> Trac
         assumptions=series.line(language, edition),
         heads=(
             Head(language.t("quantity.speed"), isolate(language.unit(site.figures.speed_unit)), "printed_speed"),
-            *(Head(language.t(word), _unit(language, unit), quantity) for quantity, word, unit in columns),
+            *(Head(_head(language, *column[:2]), _unit(language, column[2]), column[0]) for column in columns),
         ),
         rows=tuple(
             TraceRow(
@@ -91,7 +98,23 @@ def _trace(site: Site, language: Language, group: Group, series: Series) -> Trac
             )
             for record in series.records
         ),
+        greatest=tuple(_greatest(site, language, series.records[0])),
     )
+
+
+def _head(language: Language, quantity: str, word: str) -> str:
+    share = _SHARE.get(quantity)
+    return language.t(word) if share is None else language.html(word, share=language.percent(share))
+
+
+def _greatest(site: Site, language: Language, record: Record) -> Iterator[Markup]:
+    """The greatest speed within each distance that was asked about, none where the answer is in words."""
+    for kind in asked_greatest(site.edition.questions):
+        value = float(record[f"greatest_{kind}_mps"])
+        if math.isnan(value) or record[f"greatest_{kind}_at_top"] or record[f"printed_greatest_{kind}"] == 0.0:
+            continue
+        speed = Markup("{}\u00a0{}").format(isolate(language.number(value, _PLACES)), _unit(language, "m/s"))
+        yield Markup("{}{}{}").format(condition(site, language, kind), colon(language), speed)
 
 
 def _unit(language: Language, unit: str) -> Markup:

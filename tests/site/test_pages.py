@@ -127,6 +127,34 @@ def test_each_row_leads_to_its_inputs(name: str, language: Language) -> None:
         assert language.number(record["reaction_distance_m"], 2) in cells
         if np.isfinite(record["full_deceleration_mps2"]):
             assert language.number(record["full_deceleration_mps2"], 2) in cells
+        for quantity in ("stopping_p50_m", "stopping_p85_m", "stopping_p95_m", "residual_speed_mps"):
+            if np.isfinite(record[quantity]):
+                assert language.number(record[quantity], 2) in cells, quantity
+
+
+@EACH
+def test_greatest_speeds_are_shown_before_they_are_rounded(name: str, language: Language) -> None:
+    """Under each case's table; none where the answer is in words, and none at all where nothing was asked."""
+    it = made(name)
+    page = tree(name, f"{language.tag}/method.html")
+    shown = [[text(one) for one in part.iter(f"{HTML}li")] for part in page.iter(f"{HTML}section")
+             if str(part.get("id")).startswith("case-")]  # fmt: skip
+    wanted, asked = [], list[str]()
+    for _, case in it.figures.table.groupby(["driver", "vehicle", "surface", "grade"], sort=False):
+        first = case.iloc[0]
+        asked = [kind for kind in ("sight", "headlight", "gap") if np.isfinite(first[f"printed_greatest_{kind}"])]
+        wanted.append([
+            language.number(first[f"greatest_{kind}_mps"], 2)
+            for kind in asked
+            if first[f"printed_greatest_{kind}"] > 0 and not first[f"greatest_{kind}_at_top"]
+        ])  # fmt: skip
+    assert sorted(map(len, shown)) == sorted(map(len, wanted))
+    assert any(wanted) or not asked
+    for numbers in wanted:
+        assert any(
+            len(lines) == len(numbers) and all(n in line for n, line in zip(numbers, lines, strict=True))
+            for lines in shown
+        ), numbers
 
 
 @EACH
