@@ -227,9 +227,13 @@ assert sorted(os.listdir(folder)) == ["build", "edition.toml"], os.listdir(folde
 """
 
 
-def test_killed_at_twenty_random_moments_the_folder_is_the_old_or_the_new_one(tmp_path: Path) -> None:
+def test_killed_at_twenty_random_moments_the_folder_is_the_old_or_the_new_one(
+    tmp_path: Path, tmp_path_factory: pytest.TempPathFactory
+) -> None:
     command = [sys.executable, "-c", KILLER, str(tmp_path), SMALL]
-    done = subprocess.run(command, cwd=ROOT, capture_output=True, text=True, timeout=300, check=False)
+    # What killed engines leave behind lies where pytest clears away.
+    beside = os.environ | {"TMPDIR": str(tmp_path_factory.mktemp("left"))}
+    done = subprocess.run(command, cwd=ROOT, env=beside, capture_output=True, text=True, timeout=300, check=False)
     assert done.returncode == 0, done.stdout + done.stderr
     kills = [line.split() for line in done.stdout.splitlines()]
     assert len(kills) == 20

@@ -9,6 +9,7 @@ import gc
 import importlib
 import logging
 import os
+import tempfile
 import warnings
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -42,6 +43,22 @@ def _own_fontconfig() -> Iterator[None]:
             del os.environ["FONTCONFIG_FILE"]
         else:
             os.environ["FONTCONFIG_FILE"] = before
+
+
+@contextmanager
+def _own_scratch() -> Iterator[None]:
+    """Let the engine lay its copies of the fonts into a folder that goes with the rendering.
+
+    It clears them away when its objects are collected, which a worker that is dismissed never comes to: they would
+    pile up among the machine's temporary files.
+    """
+    before = tempfile.tempdir
+    with tempfile.TemporaryDirectory(prefix="chartgen-", ignore_cleanup_errors=True) as folder:
+        tempfile.tempdir = folder
+        try:
+            yield
+        finally:
+            tempfile.tempdir = before
 
 
 @cache
@@ -107,7 +124,7 @@ class _Collector(logging.Handler):
 
 @contextmanager
 def session() -> Iterator[list[str]]:
-    """One rendering: our fonts only, a calmer collector, and every warning of the engine gathered in the list given."""
+    """One rendering: our fonts only, a folder of its own; every warning of the engine goes into the list given."""
     load()
     logger = logging.getLogger("weasyprint")
     collector = _Collector()
@@ -115,7 +132,7 @@ def session() -> Iterator[list[str]]:
     logger.addHandler(collector)
     logger.propagate = False
     try:
-        with _own_fontconfig():
+        with _own_fontconfig(), _own_scratch():
             yield collector.messages
     finally:
         logger.propagate = propagate

@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import dataclasses
+import gc
 import hashlib
 import importlib
 import os
 import subprocess
 import sys
+import tempfile
 from pathlib import Path
 from types import ModuleType
 
@@ -41,6 +43,17 @@ def codes(body: str, **changes: object) -> list[str]:
 
 def test_a_plain_sheet_is_a_pdf() -> None:
     assert render(sheet("<h1>Stop in 96 m.</h1>")).startswith(b"%PDF-1.7")
+
+
+def test_nothing_is_left_among_the_temporary_files(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    """A worker never comes to collect what the engine keeps; here nothing is collected either."""
+    monkeypatch.setattr(tempfile, "tempdir", str(tmp_path))
+    gc.disable()
+    try:
+        render(sheet("<h1>Stop in 96 m.</h1>"))
+    finally:
+        gc.enable()
+    assert not list(tmp_path.iterdir())
 
 
 @pytest.mark.parametrize(
