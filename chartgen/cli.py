@@ -62,14 +62,20 @@ def main(argv: Sequence[str]) -> int:
         code = 130
     except Exception as error:  # noqa: BLE001  # no traceback ever reaches a person; it goes into a file
         what = f"{type(error).__name__}: {str(error)[:200]!r}"
-        _say(f"Something went wrong inside chartgen: {what}. Details: {_details()}")
+        _say(f"Something went wrong inside chartgen: {what}. Details: {_details(error)}")
         code = 3
     return code
 
 
-def _details() -> str:
-    with tempfile.NamedTemporaryFile("w", prefix="chartgen-", suffix=".log", delete=False, encoding="utf-8") as log:
-        log.write(f"chartgen {__version__}, Python {sys.version}\n{sys.argv}\n{traceback.format_exc()}")
+def _details(fault: Exception) -> str:
+    """Where the details stand; the place of the fault itself where no file can be written."""
+    told = f"chartgen {__version__}, Python {sys.version}\n{sys.argv}\n{traceback.format_exc()}"
+    try:
+        with tempfile.NamedTemporaryFile("w", prefix="chartgen-", suffix=".log", delete=False, encoding="utf-8") as log:
+            log.write(told)
+    except OSError as error:
+        last = traceback.extract_tb(fault.__traceback__)[-1]
+        return f"{Path(last.filename).name}, line {last.lineno}; no file could be written ({error.strerror or error})."
     return log.name
 
 

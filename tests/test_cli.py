@@ -190,6 +190,22 @@ def test_what_nobody_foresaw_is_one_line_and_a_log(
     assert "Traceback" in log.read_text()
 
 
+def test_what_nobody_foresaw_is_one_line_even_where_no_log_can_be_written(
+    monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
+    def fail(*_: object) -> int:
+        raise ZeroDivisionError("division by zero")
+
+    monkeypatch.setattr(cli, "_figures", fail)
+    monkeypatch.setattr(tempfile, "tempdir", str(tmp_path / "gone"))
+    assert cli.main(["figures", "x"]) == 3
+    (line,) = capsys.readouterr().err.splitlines()
+    assert line.startswith(
+        "Something went wrong inside chartgen: ZeroDivisionError: 'division by zero'. Details: test_cli.py, line "
+    )
+    assert line.endswith("; no file could be written (No such file or directory).")
+
+
 @pytest.mark.parametrize("how", [signal.SIGINT, signal.SIGTERM])
 def test_stopped_midway_nothing_is_left_behind(tmp_path: Path, how: signal.Signals) -> None:
     command = [sys.executable, "-m", "chartgen", "press", "tarnholt", "--into", str(tmp_path / "build")]

@@ -53,7 +53,12 @@ def _own_scratch() -> Iterator[None]:
     pile up among the machine's temporary files.
     """
     before = tempfile.tempdir
-    with tempfile.TemporaryDirectory(prefix="chartgen-", ignore_cleanup_errors=True) as folder:
+    try:
+        scratch = tempfile.TemporaryDirectory(prefix="chartgen-", ignore_cleanup_errors=True)
+    except OSError as error:
+        problem = f"No folder for temporary files can be made ({error.strerror or error})."
+        raise MachineFault(problem, "Make room there, or name another folder in TMPDIR") from error
+    with scratch as folder:
         tempfile.tempdir = folder
         try:
             yield

@@ -65,7 +65,7 @@ WANTED = {
     "Brake efficiency: 85% · Surface: Dry · Grade: level · Load: loaded · Rounded up to 1 m",
     "cy": "Ymateb: 0.8 s · Oedi’r brêcs: 0.4 s, cynnydd y grym: 0.3 s · Brecio: ffrithiant 0.67, 5 m/s² ar y mwyaf · "
     "Effeithlonrwydd: 85% · Wyneb: Dry · Graddiant: gwastad · Cerbyd: llwythog · Talgrynnu i fyny: 1 m",
-    "fr": "Réaction : 0,8 s · Réponse : 0,4 s, montée en pression : 0,3 s · Freinage : adhérence 0,67, 5 m/s² au plus "
+    "fr": "Réaction : 0,8 s · Freins : réponse 0,4 s, pression en 0,3 s · Freinage : adhérence 0,67, 5 m/s² au plus "
     "· Efficacité freins : 85 % · Chaussée : Dry · Pente : à plat · Véhicule : en charge · Arrondi au supérieur : 1 m",
     "ar": "رد الفعل: 0.8 s · تأخر الفرامل: 0.4 s، التصاعد: 0.3 s · الفرملة: احتكاك 0.67، 5 m/s² على الأكثر · "
     "كفاءة الفرامل: 85% · سطح الطريق: Dry · ميل الطريق: مستوٍ · المركبة: محمّلة · مقرّب إلى الأعلى: 1 m",

@@ -56,6 +56,14 @@ def test_nothing_is_left_among_the_temporary_files(tmp_path: Path, monkeypatch: 
     assert not list(tmp_path.iterdir())
 
 
+def test_without_room_for_temporary_files_it_says_so(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(tempfile, "tempdir", str(tmp_path / "gone"))
+    with pytest.raises(MachineFault) as caught:
+        render(sheet("<h1>Stop in 96 m.</h1>"))
+    assert str(caught.value) == "No folder for temporary files can be made (No such file or directory)."
+    assert caught.value.remedy == "Make room there, or name another folder in TMPDIR"
+
+
 @pytest.mark.parametrize(
     "body",
     [
